@@ -1,0 +1,83 @@
+// The carbon in one section for one or many ensemble members ("lanes"), and the step that advances it.
+//
+// Equation: dC/dt = (1/A) d/dx( A D(C,T) dC/dx ), zero flux at the centre; at the surface
+//   flux = forced + (equilibrium - C_s) / resistance,   C_s behind half a cell of metal in series,
+// where for a gas resistance = 1/(beta k) and equilibrium = Cp/k, for a fixed surface resistance = 0,
+// and for a prescribed flux resistance = infinity.
+// Method: finite volumes in flux form (carbon is conserved to round-off by construction); in time the
+// two-stage linearly implicit method of order 2, L-stable with gamma = 1 - 1/sqrt(2) (J. G. Verwer et al.,
+// SIAM J. Sci. Comput. 20 (1999) 1456, "ROS2"), analytic Jacobian, one tridiagonal factorisation a step.
+//
+// Every lane's arithmetic is the same whether it runs alone or beside others, so a member's result does
+// not depend on how members are grouped. No allocation, I/O, clock or exception after construction.
+#pragma once
+
+#include <cstddef>
+#include <cstdint>
+#include <memory>
+#include <span>
+#include <vector>
+
+#include "solver/diffusion/mesh.h"
+#include "solver/material/diffusivity.h"
+
+namespace hearthfront::solver {
+
+// State. Copying it is how a mark is set.
+struct CarbonField {
+  CarbonField(std::shared_ptr<const Mesh> mesh, std::size_t lanes, double carbon_wt_pct);
+
+  double carbon_wt_pct(std::size_t lane, std::size_t cell) const { return values[index(lane, cell)]; }
+  void set_carbon_wt_pct(std::size_t lane, std::size_t cell, double value) {
+    values[index(lane, cell)] = value;
+  }
+  // Carbon inside, per unit of surface area, in wt% m.
+  double inventory_wt_pct_m(std::size_t lane) const;
+
+  static constexpr std::size_t block = 8;  // lanes side by side in memory when there is more than one
+  std::size_t index(std::size_t lane, std::size_t cell) const {
+    return width == 1 ? cell : ((lane / block) * mesh->cells() + cell) * block + lane % block;
+  }
+
+  std::shared_ptr<const Mesh> mesh;
+  std::size_t lanes, width;              // width: 1 or `block`
+  std::vector<double> values;            // wt%
+  std::vector<double> crossed_wt_pct_m;  // carbon that crossed the surface since the start, positive inward
+};
+
+struct SurfaceCondition {
+  double equilibrium_wt_pct = 0;
+  double resistance_s_per_m = 0;
+  double forced_wt_pct_m_per_s = 0;
+};
+
+struct LaneConditions {
+  DiffusivityForm diffusivity;
+  SurfaceCondition surface;
+};
+
+struct WorkCounters {
+  std::uint64_t steps = 0;             // time steps, each of two stages
+  std::uint64_t cell_evaluations = 0;  // diffusivities computed, over all lanes
+};
+
+class DiffusionStepper {
+ public:
+  DiffusionStepper(std::size_t cells, std::size_t lanes);
+  // One step of dt_s > 0. `conditions` has one entry for each lane; all lanes share the law's rise and fold.
+  void step(CarbonField& field, std::span<const LaneConditions> conditions, double dt_s);
+  const WorkCounters& work() const { return work_; }
+
+ private:
+  std::vector<double> slope_left_, slope_right_, flux_, pivot_, k1_, k2_, trial_;
+  WorkCounters work_;
+};
+
+// Surface carbon and the flux that crosses there now, for one lane.
+struct SurfaceState {
+  double carbon_wt_pct = 0;
+  double flux_wt_pct_m_per_s = 0;
+};
+SurfaceState surface_state(const CarbonField& field, std::size_t lane, const LaneConditions& conditions);
+
+}  // namespace hearthfront::solver

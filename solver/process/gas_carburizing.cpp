@@ -1,0 +1,173 @@
+#include "solver/process/gas_carburizing.h"
+
+#include <algorithm>
+#include <cmath>
+#include <limits>
+
+#include "solver/atmosphere/carbon_gas.h"
+#include "solver/material/activity.h"
+#include "solver/material/alloy.h"
+#include "solver/material/constants.h"
+
+namespace hearthfront::solver {
+namespace {
+
+// After a jump of the inputs steps start short and grow with the time since: the profile near the surface
+// then has the time scale of its own age, and the two-stage method keeps its order and its bounds.
+constexpr double first_step_s = 2.0;
+constexpr double step_growth = 0.3;
+// What counts as a jump: well above the noise of a probe (about 0.01 wt%) and of a thermocouple.
+constexpr double jump_carbon_potential_wt_pct = 0.05;
+constexpr double jump_temperature_k = 10.0;
+
+double kelvin(double degc) {
+  return degc + zero_celsius_k;
+}
+
+}  // namespace
+
+GasCarburizing::Workspace::Workspace(const GasCarburizing& model)
+    : stepper_(model.mesh().cells(), model.lanes()),
+      part_mean_degc_(model.lanes()),
+      part_end_degc_(model.lanes()) {
+  const CarbonField shape(model.mesh_, model.lanes(), 0.0);
+  good_values_.resize(shape.values.size());
+  good_crossed_.resize(shape.crossed_wt_pct_m.size());
+}
+
+GasCarburizing::GasCarburizing(const CarburizingPart& part, const MeshDensity& density,
+                               std::vector<Member> members)
+    : part_(part),
+      members_(std::move(members)),
+      mesh_(std::make_shared<const Mesh>(make_mesh(part.section, density))),
+      alloy_factor_(alloy_factor_k(part.steel)),
+      diffusivity_factor_(diffusivity_factor(part.steel)),
+      austenite_from_degc_(ae3_degc(part.steel, part.core_carbon_wt_pct)) {}
+
+GasCarburizing::State GasCarburizing::start(double charge_temperature_degc) const {
+  State state{CarbonField(mesh_, lanes(), part_.core_carbon_wt_pct),
+              std::vector<double>(lanes(), charge_temperature_degc),
+              std::vector<LaneConditions>(lanes()),
+              {}};
+  for (std::size_t lane = 0; lane < lanes(); ++lane) {
+    for (std::size_t i = 0; i < mesh_->cells(); ++i)
+      state.field.set_carbon_wt_pct(lane, i,
+                                    part_.core_carbon_wt_pct + members_[lane].core_carbon_offset_wt_pct);
+    state.initial_wt_pct_m.push_back(state.field.inventory_wt_pct_m(lane));
+    LaneConditions& c = state.conditions[lane];
+    c.diffusivity = diffusivity_form(DiffusivityLaw::constant, 0, 1, 1e-30);
+    c.surface = {part_.core_carbon_wt_pct, std::numeric_limits<double>::infinity(), 0.0};
+  }
+  return state;
+}
+
+// Fills state.conditions for every lane; returns the notes of the nominal lane.
+std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs& inputs,
+                                             std::span<const double> part_degc) const {
+  std::uint32_t notes = 0;
+  for (std::size_t lane = 0; lane < lanes(); ++lane) {
+    const Member& member = members_[lane];
+    const double t_k = kelvin(part_degc[lane]);
+    LaneConditions& c = state.conditions[lane];
+    const bool austenite = part_degc[lane] > austenite_from_degc_;
+    // A member that is still too cold stands still while the nominal one moves: a vanishing diffusivity.
+    const double scale = austenite ? diffusivity_factor_ * member.diffusivity_scale : 1e-30;
+    c.diffusivity = diffusivity_form(part_.law, t_k, scale, part_.constant_diffusivity_m2_s);
+    const double beta = member.beta_scale * part_.beta_m_per_s.value_or(transfer_coefficient_m_per_s(
+                                                part_.co_fraction, part_.h2_fraction, t_k));
+    const double potential =
+        std::max(0.0, inputs.carbon_potential_wt_pct + member.carbon_potential_offset_wt_pct);
+    const double limit = cementite_limit_wt_pct(t_k);
+    const double equilibrium = potential / alloy_factor_;
+    c.surface.equilibrium_wt_pct = std::min(equilibrium, limit);
+    c.surface.resistance_s_per_m = austenite ? 1.0 / (beta * alloy_factor_) : 1e30;
+    c.surface.forced_wt_pct_m_per_s = 0.0;
+    if (lane == 0) {
+      if (equilibrium > limit) notes |= note_capped_at_carbide_limit;
+      const double furnace_k = kelvin(inputs.furnace_temperature_degc);
+      if (potential > graphite_limit_wt_pct(furnace_k)) notes |= note_sooting_gas;
+      const TemperatureRange range = diffusivity_range(part_.law);
+      if (t_k < range.low_k || t_k > range.high_k) notes |= note_outside_diffusivity_range;
+    }
+  }
+  return notes;
+}
+
+bool GasCarburizing::note_jump(State& state, const IntervalInputs& inputs, double part_degc) const {
+  const bool jump = !state.moving ||
+                    std::fabs(inputs.carbon_potential_wt_pct - state.last_carbon_potential_wt_pct) >
+                        jump_carbon_potential_wt_pct ||
+                    std::fabs(part_degc - state.last_part_temperature_degc) > jump_temperature_k;
+  state.last_carbon_potential_wt_pct = inputs.carbon_potential_wt_pct;
+  state.last_part_temperature_degc = part_degc;
+  return jump;
+}
+
+Outcome GasCarburizing::advance(State& state, const IntervalInputs& inputs, Workspace& ws) const {
+  if (state.failed) return {OutcomeKind::failed, 0};
+  const double dt = inputs.duration_s;
+  for (std::size_t lane = 0; lane < lanes(); ++lane) {
+    const Member& member = members_[lane];
+    if (inputs.load_temperature_degc) {
+      ws.part_mean_degc_[lane] = ws.part_end_degc_[lane] =
+          *inputs.load_temperature_degc + member.temperature_offset_k;
+      continue;
+    }
+    const double furnace = inputs.furnace_temperature_degc + member.temperature_offset_k;
+    const double lag = std::max(1e-3, part_.lag_s * member.lag_scale);
+    const double behind = state.part_temperature_degc[lane] - furnace;
+    const double decay = -std::expm1(-dt / lag);
+    ws.part_end_degc_[lane] = furnace + behind * (1.0 - decay);
+    ws.part_mean_degc_[lane] = furnace + behind * decay * lag / dt;
+  }
+  std::copy(ws.part_end_degc_.begin(), ws.part_end_degc_.end(), state.part_temperature_degc.begin());
+
+  if (!(ws.part_mean_degc_[0] > austenite_from_degc_)) {
+    state.moving = false;
+    for (LaneConditions& c : state.conditions) {
+      c.surface = {0.0, std::numeric_limits<double>::infinity(), 0.0};
+    }
+    return {OutcomeKind::reached_with_note, note_paused_below_austenite};
+  }
+
+  const std::uint32_t notes = set_conditions(state, inputs, ws.part_mean_degc_);
+  if (note_jump(state, inputs, ws.part_mean_degc_[0])) state.settled_s = 0.0;
+  state.moving = true;
+
+  std::copy(state.field.values.begin(), state.field.values.end(), ws.good_values_.begin());
+  std::copy(state.field.crossed_wt_pct_m.begin(), state.field.crossed_wt_pct_m.end(),
+            ws.good_crossed_.begin());
+  double done = 0.0;
+  while (done < dt) {
+    const double left = dt - done;
+    const double wanted = std::max(first_step_s, step_growth * (state.settled_s + done));
+    // Equal parts of what is left, so that the last one is no sliver.
+    const double step = left / std::ceil(left / wanted - 1e-9);
+    ws.stepper_.step(state.field, state.conditions, step);
+    done = step < left ? done + step : dt;
+  }
+  state.settled_s += dt;
+
+  const bool finite = std::all_of(state.field.crossed_wt_pct_m.begin(), state.field.crossed_wt_pct_m.end(),
+                                  [](double crossed) { return std::isfinite(crossed); });
+  if (!finite) {
+    std::copy(ws.good_values_.begin(), ws.good_values_.end(), state.field.values.begin());
+    std::copy(ws.good_crossed_.begin(), ws.good_crossed_.end(), state.field.crossed_wt_pct_m.begin());
+    state.failed = true;
+    return {OutcomeKind::failed, notes};
+  }
+  if (notes & note_outside_diffusivity_range) return {OutcomeKind::outside_range, notes};
+  return {notes ? OutcomeKind::reached_with_note : OutcomeKind::reached, notes};
+}
+
+double expected_diffusion_length_m(DiffusivityLaw law, std::span<const TimeAtTemperature> pieces) {
+  constexpr double mid_case_wt_pct = 0.6;
+  double sum = 0.0;
+  for (const TimeAtTemperature& piece : pieces) {
+    const DiffusivityForm form = diffusivity_form(law, kelvin(piece.temperature_degc), 1.0);
+    sum += diffusivity_m2_s(form, mid_case_wt_pct) * piece.duration_s;
+  }
+  return std::max(1e-4, 2.0 * std::sqrt(sum));
+}
+
+}  // namespace hearthfront::solver

@@ -1,0 +1,119 @@
+// Gas carburizing of one part: surface flux beta (Cp - k C_s) into a steel whose diffusivity follows
+// carbon and temperature, from a logged furnace temperature (or load thermocouple) and carbon potential.
+//
+// The model is immutable and may be shared by threads; State is a value (copying it sets a mark);
+// a Workspace belongs to one thread. advance() never throws, allocates or blocks.
+//
+// Below the austenite range of the core (Andrews' Ae3) the section is not single-phase austenite: carbon
+// transport is paused and the outcome says so. A gas above the cementite limit of the steel is capped
+// there, and noted. Temperatures outside the range of the diffusivity law are still computed with it, and
+// noted as outside. Part temperature: the load thermocouple where given, else a first-order lag behind the
+// furnace (lumped body, textbook heat transfer), advanced exactly over the interval.
+#pragma once
+
+#include <cstdint>
+#include <memory>
+#include <optional>
+#include <vector>
+
+#include "solver/diffusion/field.h"
+#include "solver/material/steel.h"
+
+namespace hearthfront::solver {
+
+struct CarburizingPart {
+  Section section;
+  Composition steel;
+  double core_carbon_wt_pct = 0.2;  // 0.02-0.6
+  double lag_s = 1200;              // time constant of the part behind the furnace, 0-36000
+  DiffusivityLaw law = DiffusivityLaw::agren;
+  double constant_diffusivity_m2_s = 0;  // for DiffusivityLaw::constant only
+  std::optional<double> beta_m_per_s;    // overrides the value from the gas
+  double co_fraction = 0.20, h2_fraction = 0.40;
+};
+
+// How one ensemble member departs from the nominal part and furnace. Lane 0 is the nominal one: pauses,
+// jumps and therefore step sizes are decided on it alone.
+struct Member {
+  double diffusivity_scale = 1, beta_scale = 1, lag_scale = 1;
+  double temperature_offset_k = 0, carbon_potential_offset_wt_pct = 0, core_carbon_offset_wt_pct = 0;
+};
+
+// Means over one lattice interval.
+struct IntervalInputs {
+  double duration_s = 60;
+  double furnace_temperature_degc = 20;
+  std::optional<double> load_temperature_degc;
+  double carbon_potential_wt_pct = 0;
+};
+
+// The closed list of outcomes. Negative: the state stays at the farthest good point.
+enum class OutcomeKind : int { failed = -1, reached = 0, reached_with_note = 1, outside_range = 2 };
+
+enum Note : std::uint32_t {
+  note_paused_below_austenite = 1,
+  note_capped_at_carbide_limit = 2,
+  note_sooting_gas = 4,
+  note_outside_diffusivity_range = 8,
+};
+
+struct Outcome {
+  OutcomeKind kind = OutcomeKind::reached;
+  std::uint32_t notes = 0;  // Note bits
+};
+
+class GasCarburizing {
+ public:
+  struct State {
+    CarbonField field;
+    std::vector<double> part_temperature_degc;  // each lane, at the end of the last interval
+    std::vector<LaneConditions> conditions;     // each lane, of the last interval
+    std::vector<double> initial_wt_pct_m;       // inventory at the start
+    double settled_s = 0;                       // since the last jump of the inputs
+    double last_carbon_potential_wt_pct = 0, last_part_temperature_degc = 0;
+    bool moving = false;  // false at the start and while paused
+    bool failed = false;
+  };
+
+  class Workspace {
+   public:
+    explicit Workspace(const GasCarburizing& model);
+    const WorkCounters& work() const { return stepper_.work(); }
+
+   private:
+    friend class GasCarburizing;
+    DiffusionStepper stepper_;
+    std::vector<double> part_mean_degc_, part_end_degc_, good_values_, good_crossed_;
+  };
+
+  // Throws std::invalid_argument where the section is outside its range.
+  GasCarburizing(const CarburizingPart& part, const MeshDensity& density,
+                 std::vector<Member> members = {Member{}});
+
+  State start(double charge_temperature_degc) const;
+  Outcome advance(State& state, const IntervalInputs& inputs, Workspace& workspace) const;
+
+  const Mesh& mesh() const { return *mesh_; }
+  const CarburizingPart& part() const { return part_; }
+  double alloy_factor() const { return alloy_factor_; }
+  std::size_t lanes() const { return members_.size(); }
+
+ private:
+  std::uint32_t set_conditions(State& state, const IntervalInputs& inputs,
+                               std::span<const double> part_degc) const;
+  bool note_jump(State& state, const IntervalInputs& inputs, double part_degc) const;
+
+  CarburizingPart part_;
+  std::vector<Member> members_;
+  std::shared_ptr<const Mesh> mesh_;
+  double alloy_factor_, diffusivity_factor_, austenite_from_degc_;
+};
+
+// 2 sqrt(int D dt) over pieces of constant temperature at mid-case carbon (0.6 wt%): the length a mesh is
+// laid out for. At least 0.1 mm.
+struct TimeAtTemperature {
+  double duration_s, temperature_degc;
+};
+double expected_diffusion_length_m(DiffusivityLaw law, std::span<const TimeAtTemperature> pieces);
+
+}  // namespace hearthfront::solver
