@@ -24,7 +24,7 @@ enum class StorageFault { busy, full, io, corrupt, unknown_fate, newer_schema, l
 
 class StorageError : public std::runtime_error {
  public:
-  StorageError(StorageFault fault, const std::string& what) : std::runtime_error(what), fault(fault) {}
+  StorageError(StorageFault kind, const std::string& what) : std::runtime_error(what), fault(kind) {}
   StorageFault fault;
 };
 
@@ -39,10 +39,18 @@ struct Reading {
 // arrival must not matter).
 enum class Taken : std::uint8_t { stored, duplicate, conflict };
 
+// The texts are kept as they came, cut to 200 bytes at a character boundary; they need not be valid UTF-8.
 struct RefusedReading {
   std::int64_t received_us = 0;
-  std::string furnace, channel, time_text, value_text;  // as they came, at most 200 bytes each
-  std::string reason;                                   // short stable words, e.g. "future time"
+  std::string furnace, channel, time_text, value_text;
+  std::string reason;  // short stable words, e.g. "future time"
+};
+
+// Counted for ever, also after the row itself made room for newer ones. Names that belong to no registered
+// channel are counted one by one up to a bound, then together as furnace and channel "(other)".
+struct RefusedCount {
+  std::string furnace, channel, reason;
+  std::int64_t count = 0;
 };
 
 struct LoadRow {
@@ -53,6 +61,13 @@ struct LoadRow {
   std::int64_t created_us = 0;
   std::int64_t revision = 1;
   std::string definition_json;  // complete copy: steels, furnace settings, model version
+};
+
+// One step of a load's history; revision 1 is its creation. `what` is the action of the audit row.
+struct LoadRevision {
+  std::int64_t load = 0, revision = 0, at_us = 0;
+  std::string person, what, definition_before, definition_after;
+  std::optional<std::int64_t> ended_before_us, ended_after_us;
 };
 
 struct LoadNote {
@@ -75,7 +90,7 @@ struct ChannelCounts {
   std::int64_t stored = 0;     // rows
   std::int64_t conflicts = 0;  // times with two or more values
   std::map<std::string, std::int64_t> refused;
-  std::optional<Reading> last;  // newest time
+  std::optional<Reading> last;  // newest accepted one: a time in conflict has no value to show
 };
 
 // Which rows became new since it was last taken: for each channel the span of changed times. Coalescing,
@@ -84,9 +99,11 @@ struct ChangedSpan {
   std::int64_t channel = 0, from_us = 0, to_us = 0;
 };
 
-// Read-only view. Each call is one short read transaction.
+// Read-only view. Each call is one short read transaction. `limit` must be 1 or more. Throws StorageError:
+// io (file missing, replaced or unreadable), newer_schema, corrupt, busy, misuse.
 class Reader {
  public:
+  // Opens an existing, migrated file; the Store creates it.
   explicit Reader(const std::string& path);
   ~Reader();
   Reader(const Reader&) = delete;
@@ -99,12 +116,18 @@ class Reader {
   ChannelCounts counts(std::int64_t channel);
   std::optional<LoadRow> load(std::int64_t id);
   // Newest first; pages by id: rows with id < `before_id` (0 = from the newest). Filters empty = all.
-  std::vector<LoadRow> loads(std::string_view furnace, std::optional<bool> open, std::int64_t before_id, int limit);
-  std::vector<LoadRow> open_loads();
-  std::vector<LoadNote> notes(std::int64_t load);
-  std::optional<ResultRow> result(std::int64_t load);  // the newest not superseded
-  std::vector<ResultRow> results(std::int64_t load);   // all, oldest first
+  std::vector<LoadRow> loads(std::string_view furnace, std::optional<bool> open, std::int64_t before_id,
+                             int limit);
+  std::vector<LoadRow> open_loads();                                         // oldest first
+  // Ended loads of a furnace that were in it at some time of [from, to], oldest first.
+  std::vector<LoadRow> ended_touching(std::string_view furnace, std::int64_t from_us, std::int64_t to_us);
+  std::vector<LoadRow> ended_without_result();  // none for their present revision; oldest first
+  std::vector<LoadRevision> revisions(std::int64_t load);                    // oldest first
+  std::vector<LoadNote> notes(std::int64_t load);                            // oldest first
+  std::optional<ResultRow> result(std::int64_t load);                        // the newest not superseded
+  std::vector<ResultRow> results(std::int64_t load);                         // all, oldest first
   std::vector<RefusedReading> refused(std::string_view furnace, int limit);  // newest first
+  std::vector<RefusedCount> refused_counts(std::string_view furnace);        // empty = every furnace
   std::vector<AuditRow> audit(std::string_view subject, int limit);          // newest first
 
  private:
@@ -114,14 +137,18 @@ class Reader {
 
 struct StoreOptions {
   std::string path;
-  std::size_t queue_readings = 50'000;  // above this append throws busy at once
+  std::size_t queue_readings = 50'000;  // waiting readings; above this append throws busy at once
   bool check_integrity_after_crash = true;
+  // Of the database file; the write-ahead file comes on top. 0 = no limit, else writes that need more fail
+  // as `full`.
+  std::int64_t max_file_bytes = 0;
 };
 
 struct StoreCounters {
   std::uint64_t commits = 0, readings_stored = 0, readings_duplicate = 0, readings_conflict = 0;
-  std::size_t queued_readings = 0;
-  std::int64_t wal_bytes = 0;
+  std::size_t queued_readings = 0, queued_jobs = 0;  // waiting; a job is one call of a writing method
+  std::int64_t wal_bytes = 0;                        // size of the write-ahead file on disk
+  std::uint64_t checkpoint_failures = 0;             // nothing is lost by one, but the write-ahead file grows
   bool poisoned = false;
 };
 
@@ -134,26 +161,38 @@ class Store {
   Store(const Store&) = delete;
   Store& operator=(const Store&) = delete;
 
-  std::int64_t register_channel(std::string_view furnace, std::string_view channel);  // id, stable for ever
-  // One entry of Taken for each reading, in order. Duplicates inside one batch are seen as such.
+  // The channel's id, stable for ever. Names are 1 to 200 bytes, else misuse.
+  std::int64_t register_channel(std::string_view furnace, std::string_view channel);
+  // One entry of Taken for each reading, in order. Duplicates inside one batch are seen as such. A batch is
+  // stored whole or not at all. misuse: a value that is not finite, an unknown channel, a batch larger
+  // than the queue.
   std::vector<Taken> append(std::vector<Reading> readings, std::vector<RefusedReading> refused);
 
-  // Fails with misuse where another load is open in that furnace and chamber at an overlapping time.
+  // Fails with misuse where another load is in that furnace and chamber at an overlapping time (from its
+  // start up to, but not at, its end; without an end, for ever). `id` and `revision` of `row` are ignored;
+  // created_us 0 and an empty audit subject are filled in: the audit's time, and "load <id>".
   std::int64_t create_load(LoadRow row, AuditRow audit);
-  // A dated revision: new definition and/or end time; revision + 1. Fails with misuse on a wrong `expected_revision`.
+  // A dated revision; revision + 1. An empty `definition_json` keeps the stored one; `ended_us` is the end
+  // from now on (none = the load is open). Fails with misuse on a wrong `expected_revision` and on overlap.
   void revise_load(std::int64_t id, std::int64_t expected_revision, std::string definition_json,
                    std::optional<std::int64_t> ended_us, AuditRow audit);
   std::int64_t add_note(LoadNote note);
   void save_result(ResultRow row);  // marks earlier results of the load as superseded
+  void add_audit(AuditRow row);     // a change that is not a load's
 
   std::vector<ChangedSpan> take_changes();
-  void on_change(std::function<void()> wake);  // called after each commit with new rows; set before writing starts
+  // Called after each commit with new rows, on the writer thread with no lock held; set before writing
+  // starts. `wake` must not throw and must not write to the store.
+  void on_change(std::function<void()> wake);
 
+  // Keys that begin with "store." are the store's own: misuse.
   void set_meta(std::string_view key, std::string_view value);
   std::optional<std::string> meta(std::string_view key);
   StoreCounters counters() const;
   const std::string& path() const;
-  void close();  // idempotent
+  // Refuses new writes, stores what is queued, checkpoints, gives up the lock. Idempotent; writing calls
+  // that come later throw `closing`.
+  void close();
 
  private:
   class Impl;

@@ -27,15 +27,15 @@ struct Channel {
   std::string name;
   Role role = Role::temperature;
   Unit unit = Unit::degc;
-  std::string chamber;          // id
-  double low = 0, high = 0;     // plausible range, in `unit`, both ends allowed
+  std::string chamber;       // id
+  double low = 0, high = 0;  // plausible range, in `unit`, both ends allowed
   double expected_interval_s = 60;
-  double gap_limit_s = 300;     // a reading speaks for the time after it for so long ...
-  double hold_limit_s = 600;    // ... then its value is carried as `held` until so long after it, then `planned`
+  double gap_limit_s = 300;   // a reading speaks for the time after it for so long ...
+  double hold_limit_s = 600;  // ... then its value is `held` until so long after it, then `planned`
 };
 
 struct CsvColumn {
-  std::string column;   // header text, or "#3" for the third column
+  std::string column;  // header text, or "#3" for the third column
   std::string channel;
   std::optional<Unit> unit;  // of the file, where it differs from the channel's
 };

@@ -1,0 +1,174 @@
+#!/usr/bin/env node
+// Plays the people of the INVENTED demo plant over the public API: puts loads in when their data time comes (and
+// those already begun), leaves a shift note, ends each load on time. Follows the daemon's own clock. May be
+// stopped and started at will: what is already there is left alone. Needs node 18 or newer.
+//
+//   node play.mjs --url http://127.0.0.1:8473 --schedule FOLDER/schedule.json [--clock-file FILE]
+//
+// --clock-file keeps the last data time seen, so that a restarted demo goes on from there. Exit: 0 stopped by a
+// signal or at the end of the schedule, 2 wrong words.
+
+import { readFileSync, renameSync, writeFileSync } from 'node:fs';
+import { setTimeout as sleep } from 'node:timers/promises';
+
+const POLL_MS = 1000;
+
+const NOTES = [
+  { after_min: 95, person: 'Early shift', text: 'Invented note: charge fans quiet, seal pot topped up.' },
+  { after_min: 190, person: 'Late shift', text: 'Invented note: foil taken at the sample port, sent to the lab.' },
+];
+
+function options(words) {
+  const chosen = {};
+  for (let i = 0; i < words.length; i += 2) {
+    const name = words[i].replace(/^--/, '');
+    if (!['url', 'schedule', 'clock-file'].includes(name) || words[i + 1] === undefined) {
+      throw new Error(`I do not know "${words[i]}" here. Use --url URL --schedule FILE [--clock-file FILE].`);
+    }
+    chosen[name] = words[i + 1];
+  }
+  if (!chosen.url || !chosen.schedule) throw new Error('Both --url and --schedule are needed.');
+  return chosen;
+}
+
+class Refused extends Error {
+  constructor(status, body) {
+    super(`${status} ${body?.title ?? ''}: ${body?.detail ?? 'no detail'}`);
+    this.status = status;
+  }
+}
+
+function client(base) {
+  return async (method, path, body) => {
+    const answer = await fetch(base + path, {
+      method,
+      headers: body ? { 'content-type': 'application/json' } : {},
+      body: body ? JSON.stringify(body) : undefined,
+      signal: AbortSignal.timeout(10000),
+    });
+    const text = await answer.text();
+    let document = null;
+    try {
+      document = JSON.parse(text);
+    } catch {
+      document = { detail: text.slice(0, 200) };
+    }
+    if (!answer.ok) throw new Refused(answer.status, document);
+    return document;
+  };
+}
+
+const keyOf = (load) => `${load.furnace}/${load.name}/${Date.parse(load.started_at)}`;
+
+// Every load the daemon has, by furnace, number and start.
+async function knownLoads(api) {
+  const known = new Map();
+  for (const state of ['open', 'ended']) {
+    let cursor = '';
+    do {
+      const page = await api('GET', `/api/v1/loads?state=${state}&limit=100${cursor}`);
+      for (const load of page.loads) known.set(keyOf(load), { id: load.id, state });
+      cursor = page.next_cursor ? `&cursor=${encodeURIComponent(page.next_cursor)}` : '';
+    } while (cursor);
+  }
+  return known;
+}
+
+async function writeNotes(api, entry, state, now_ms) {
+  const due = NOTES.filter((note) => now_ms >= Date.parse(entry.body.started_at) + note.after_min * 60000);
+  if (!due.length || state.noted >= due.length) return;
+  if (state.noted === undefined) {
+    const snapshot = await api('GET', `/api/v1/loads/${state.id}/snapshot`);
+    const texts = new Set((snapshot.shift_notes ?? []).map((note) => note.text));
+    state.noted = NOTES.filter((note) => texts.has(note.text)).length;
+  }
+  for (; state.noted < due.length; state.noted++) {
+    const { person, text } = due[state.noted];
+    await api('POST', `/api/v1/loads/${state.id}/notes`, { person, text });
+  }
+}
+
+async function actOn(api, entry, known, now_ms) {
+  const key = keyOf(entry.body);
+  if (!known.has(key)) {
+    const load = await api('POST', '/api/v1/loads', entry.body);
+    known.set(key, { id: load.id, state: 'open', noted: 0 });
+    console.log(`Load ${entry.body.name} is in ${entry.body.furnace} (${entry.body.recipe.name}).`);
+  }
+  const state = known.get(key);
+  if (state.state !== 'open') return;
+  await writeNotes(api, entry, state, now_ms);
+  if (now_ms >= Date.parse(entry.ended_at)) {
+    const end = { person: entry.body.person, ended_at: entry.ended_at };
+    await api('POST', `/api/v1/loads/${state.id}/end`, end);
+    state.state = 'ended';
+    console.log(`Load ${entry.body.name} is out of ${entry.body.furnace}.`);
+  }
+}
+
+// One look at the clock: does what has come due. In order of start, so that a chamber is emptied before it is
+// filled. What the daemon refuses is told once and left: a visitor may have put in or ended a load by hand.
+async function act(api, plan, known, now_ms) {
+  for (const entry of plan.loads) {
+    if (now_ms < Date.parse(entry.body.started_at)) continue;
+    try {
+      await actOn(api, entry, known, now_ms);
+    } catch (error) {
+      if (!(error instanceof Refused) || error.status >= 500) throw error;
+      console.error(`play: load ${entry.body.name} is left alone, the daemon says ${error.message}`);
+      known.set(keyOf(entry.body), { state: 'left alone' });
+    }
+  }
+}
+
+function keepClock(file, now) {
+  if (!file) return;
+  writeFileSync(`${file}.part`, now + '\n');
+  renameSync(`${file}.part`, file);
+}
+
+async function main() {
+  const chosen = options(process.argv.slice(2));
+  const plan = JSON.parse(readFileSync(chosen.schedule, 'utf8'));
+  plan.loads.sort((a, b) => Date.parse(a.body.started_at) - Date.parse(b.body.started_at));
+  const api = client(chosen.url.replace(/\/$/, ''));
+  let stopped = false;
+  const stop = new AbortController();
+  for (const signal of ['SIGINT', 'SIGTERM']) {
+    process.on(signal, () => {
+      stopped = true;
+      stop.abort();
+    });
+  }
+  let known = null;
+  let told = '';
+  while (!stopped) {
+    try {
+      const status = await api('GET', '/api/v1/status');
+      known ??= await knownLoads(api);
+      await act(api, plan, known, Date.parse(status.now));
+      keepClock(chosen['clock-file'], status.now);
+      told = '';
+      if (Date.parse(status.now) > Date.parse(plan.end)) {
+        console.log('The demo logs are at their end. Start the demo again for new ones.');
+        return 0;
+      }
+    } catch (error) {
+      if (stopped) break;
+      known = null; // after a restart of the daemon, look again at what it has
+      const text = error instanceof Refused ? error.message : `the daemon does not answer (${error.message})`;
+      if (text !== told) console.error(`play: ${text}. Trying again.`);
+      told = text;
+    }
+    await sleep(POLL_MS, undefined, { signal: stop.signal }).catch(() => {});
+  }
+  return 0;
+}
+
+main().then(
+  (code) => process.exit(code),
+  (error) => {
+    console.error(`play: ${error.message}`);
+    process.exit(2);
+  },
+);

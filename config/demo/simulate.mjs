@@ -1,0 +1,85 @@
+// An invented furnace, minute by minute: a heater with a PI controller, the load as one lagging mass, a gas that
+// follows its set point slowly, thermocouples and probes with noise. Enough to look like a log, no more: the
+// figures are plausible, not measured. Deterministic from its seed; no clock, no files.
+
+// Small counter-based generator (Weyl sequence through a 32-bit mixer): the same numbers on every machine.
+export function randomSource(seed) {
+  let state = seed >>> 0;
+  const uniform = () => {
+    state = (state + 0x9e3779b9) >>> 0;
+    let word = state;
+    word = Math.imul(word ^ (word >>> 16), 0x85ebca6b);
+    word = Math.imul(word ^ (word >>> 13), 0xc2b2ae35);
+    return ((word ^ (word >>> 16)) >>> 0) / 4294967296;
+  };
+  // The sum of twelve uniforms has variance 1: near enough to normal for noise, and without Math.log.
+  const normal = () => {
+    let sum = -6;
+    for (let i = 0; i < 12; i++) sum += uniform();
+    return sum;
+  };
+  return { uniform, normal };
+}
+
+const STEP_MIN = 1 / 6;
+const IDLE = { temperature_degc: 870, carbon_potential_wt_pct: 0.35 }; // empty, hot, lean gas
+
+// Set points at `minute` for loads [{start_min, end_min, segments}], in order of time.
+function setPoint(loads, minute) {
+  const load = loads.find((one) => minute >= one.start_min && minute < one.end_min);
+  if (!load) return { load: null, ...IDLE };
+  let left = minute - load.start_min;
+  for (const segment of load.segments) {
+    if (left < segment.duration_min) return { load, ...segment };
+    left -= segment.duration_min;
+  }
+  return { load, ...load.segments.at(-1) };
+}
+
+// Yields one sample a minute: {minute, temperature_degc, load_temperature_degc | null,
+// carbon_potential_wt_pct, co_fraction}, as the instruments show them (noise included).
+export function* simulateFurnace({ loads, minutes, seed, load_lag_min, load_mass_ratio }) {
+  const random = randomSource(seed);
+  let furnace = IDLE.temperature_degc;
+  let part = 20;
+  let carbon = IDLE.carbon_potential_wt_pct;
+  let co = 0.2;
+  let integral = 0.37; // heater share that holds the idle temperature
+  let wave = random.uniform() * 2 * Math.PI;
+  let gasWave = random.uniform() * 2 * Math.PI;
+  let current = null;
+
+  for (let minute = 0; minute < minutes; minute++) {
+    for (let step = 0; step < 6; step++) {
+      const wanted = setPoint(loads, minute + step * STEP_MIN);
+      if (wanted.load !== current) {
+        if (wanted.load) {
+          part = 20; // a cold load goes in ...
+          carbon *= 0.45; // ... and air comes in with it
+          co *= 0.8;
+        }
+        current = wanted.load;
+      }
+      const error = wanted.temperature_degc - furnace;
+      const heat = Math.min(1, Math.max(0, integral + 0.06 * error));
+      if (Math.abs(error) < 30) integral = Math.min(0.8, Math.max(0.1, integral + 0.0025 * error * STEP_MIN));
+      const toLoad = current ? (load_mass_ratio / load_lag_min) * (furnace - part) : 0;
+      furnace += STEP_MIN * (9 * heat - 0.0037 * (furnace - 20) - toLoad);
+      if (current) part += (STEP_MIN * (furnace - part)) / load_lag_min;
+      // Enriching is quick, thinning out the furnace volume is slow.
+      const lag = wanted.carbon_potential_wt_pct > carbon ? 8 : 17;
+      carbon += (STEP_MIN * (wanted.carbon_potential_wt_pct - carbon)) / lag;
+      co += (STEP_MIN * (0.2 - co)) / 12;
+      wave += STEP_MIN * (2 * Math.PI) / 11 * (1 + 0.5 * random.normal());
+      gasWave += STEP_MIN * (2 * Math.PI) / 7 * (1 + 0.5 * random.normal());
+    }
+    yield {
+      minute,
+      // The controller hunts: slow waves beside the white noise of thermocouple and probe.
+      temperature_degc: furnace + 1.3 * Math.sin(wave) + 0.35 * random.normal(),
+      load_temperature_degc: current ? part + 0.4 * random.normal() : null,
+      carbon_potential_wt_pct: Math.max(0.05, carbon + 0.012 * Math.sin(gasWave) + 0.004 * random.normal()),
+      co_fraction: co + 0.0012 * Math.sin(0.37 * gasWave) + 0.0004 * random.normal(),
+    };
+  }
+}

@@ -1,0 +1,91 @@
+// The routes of /api/v1 and their handlers. Handlers run on many threads at once: everything they reach
+// is thread-safe. Each answers from published views or short read transactions, never from the engine.
+#pragma once
+
+#include <atomic>
+#include <cstdint>
+#include <functional>
+#include <map>
+#include <memory>
+#include <mutex>
+#include <string>
+#include <utility>
+
+#include "server/api/documents.h"
+#include "server/api/http_server.h"
+#include "server/api/reader_pool.h"
+#include "server/base/clock.h"
+#include "server/base/metrics.h"
+#include "server/base/plant.h"
+#include "server/base/settings.h"
+#include "server/ingest/accept.h"
+#include "server/live/view.h"
+#include "storage/store.h"
+
+namespace hearthfront::server {
+
+enum class ServiceState { starting, ready, stopping };
+
+struct ApiParts {
+  const Settings& settings;
+  const Plant& plant;
+  const Clock& clock;
+  storage::Store& store;
+  const Board& board;
+  const Acceptor& acceptor;
+  Metrics& metrics;
+  HttpServer& http;
+  const std::atomic<ServiceState>& state;
+  std::function<void()> loads_changed;
+};
+
+class Api {
+ public:
+  explicit Api(ApiParts parts);
+  // Adds every route, the event stream and the dashboard's files to the server.
+  void add_routes();
+  std::string floor() const;
+  // Brings counters that other parts keep into the metrics.
+  void update_metrics() const;
+
+ private:
+  void add_system_routes();
+  void add_reading_routes();
+  void add_load_routes();
+  void add_view_routes();
+  void add_furnace_routes();
+
+  Response status(const Request& request) const;
+  Response ready(const Request& request) const;
+  Response take_readings(const Request& request);
+  Response take_log(const Request& request);
+  Response create_load(const Request& request);
+  Response list_loads(const Request& request);
+  Response show_load(const Request& request);
+  Response add_note(const Request& request);
+  Response end_load(const Request& request);
+  Response snapshot(const Request& request);
+  Response result(const Request& request);
+  Response history(const Request& request);
+  Response furnaces(const Request& request);
+  Response furnace(const Request& request);
+  Response readings(const Request& request);
+
+  struct FoundLoad {
+    storage::LoadRow row;
+    std::shared_ptr<const LoadDefinition> definition;
+  };
+  FoundLoad find_load(const Request& request);
+  const Furnace& find_furnace(const Request& request) const;
+  FurnaceState state_of(const Furnace& furnace);
+  // The view of an open load as published; of an ended load derived again from its readings.
+  std::shared_ptr<const LoadView> view_of(const FoundLoad& found);
+
+  ApiParts parts_;
+  ReaderPool readers_;
+  std::mutex past_mutex_;
+  std::map<std::pair<std::int64_t, std::int64_t>, std::shared_ptr<const LoadView>> past_views_;  // by id and age of the stored result
+};
+
+
+}  // namespace hearthfront::server

@@ -1,0 +1,154 @@
+// Loads: create, list, show, note, end. Every change names a person and is audited in its transaction.
+#include <charconv>
+
+#include "server/api/api.h"
+#include "server/api/documents.h"
+#include "server/api/route_guard.h"
+#include "server/base/json_fields.h"
+#include "server/base/time_text.h"
+#include "server/live/definition_json.h"
+
+namespace hearthfront::server {
+namespace {
+
+constexpr const char* invalid_request = "invalid-request";
+
+int limit_from(const Request& request) {
+  const auto it = request.query.find("limit");
+  if (it == request.query.end()) return 50;
+  int limit = 0;
+  const char* end = it->second.data() + it->second.size();
+  if (std::from_chars(it->second.data(), end, limit).ptr != end || limit < 1 || limit > 200)
+    throw Problem{422, invalid_request, "The limit cannot be used", "limit: expected a whole number from 1 to 200.", "limit"};
+  return limit;
+}
+
+std::int64_t cursor_from(const Request& request) {
+  const auto it = request.query.find("cursor");
+  if (it == request.query.end()) return 0;
+  std::int64_t cursor = 0;
+  const char* end = it->second.data() + it->second.size();
+  if (std::from_chars(it->second.data(), end, cursor).ptr != end || cursor < 1)
+    throw Problem{422, invalid_request, "The cursor cannot be used",
+                  "cursor: take next_cursor of the page before, unchanged.", "cursor"};
+  return cursor;
+}
+
+// Storage calls a clash of loads or revisions misuse; to a client it is a conflict of state.
+template <typename Call>
+auto as_conflict(const char* type, const char* title, Call call) {
+  try {
+    return call();
+  } catch (const storage::StorageError& error) {
+    if (error.fault == storage::StorageFault::misuse) throw Problem{409, type, title, error.what(), ""};
+    throw;
+  }
+}
+
+}  // namespace
+
+void Api::add_load_routes() {
+  HttpServer& http = parts_.http;
+  http.route("POST", "/api/v1/loads", guarded([this](const Request& r) { return create_load(r); }));
+  http.route("GET", "/api/v1/loads", guarded([this](const Request& r) { return list_loads(r); }));
+  http.route("GET", "/api/v1/loads/{}", guarded([this](const Request& r) { return show_load(r); }));
+  http.route("POST", "/api/v1/loads/{}/notes", guarded([this](const Request& r) { return add_note(r); }));
+  http.route("POST", "/api/v1/loads/{}/end", guarded([this](const Request& r) { return end_load(r); }));
+}
+
+Response Api::create_load(const Request& request) {
+  const LoadDefinition load = read_load_body(request.body, parts_.plant);
+  const std::int64_t now = parts_.clock.now_us();
+  const auto tolerance_us = static_cast<std::int64_t>(parts_.settings.ingest.future_tolerance_s * 1e6);
+  const auto past_us = static_cast<std::int64_t>(parts_.settings.ingest.past_limit_days * 86400e6);
+  if (load.started_us > now + tolerance_us || load.started_us < now - past_us)
+    throw Problem{422, "invalid-load", "The start cannot be right",
+                  "started_at: " + format_time(load.started_us) + " is " +
+                      (load.started_us > now ? "in the future" : "too long ago") + "; it is " + format_time(now) + " now.",
+                  "started_at"};
+  if (load.ended_us && *load.ended_us > now + tolerance_us)
+    throw Problem{422, "invalid-load", "The end cannot be right", "ended_at: lies in the future.", "ended_at"};
+
+  storage::LoadRow row;
+  row.name = load.name;
+  row.furnace = load.furnace.id;
+  row.chamber = load.chamber;
+  row.person = load.person;
+  row.started_us = load.started_us;
+  row.ended_us = load.ended_us;
+  row.created_us = now;
+  row.definition_json = stored_definition(load);
+  const storage::AuditRow audit{now, load.person, "start load", "", "", load_body(load)};
+  row.id = as_conflict("chamber-in-use", "Another load is in this chamber",
+                       [&] { return parts_.store.create_load(row, audit); });
+  row.revision = 1;
+  parts_.loads_changed();
+  return {201, "application/json", load_json(row, load), {{"Location", "/api/v1/loads/" + std::to_string(row.id)}}};
+}
+
+Response Api::list_loads(const Request& request) {
+  std::optional<bool> open;
+  if (const auto it = request.query.find("state"); it != request.query.end()) {
+    if (it->second != "open" && it->second != "ended")
+      throw Problem{422, invalid_request, "The state cannot be used", "state: expected open or ended.", "state"};
+    open = it->second == "open";
+  }
+  const auto furnace = request.query.find("furnace");
+  const int limit = limit_from(request);
+  auto reader = readers_.take();
+  const auto rows = reader->loads(furnace == request.query.end() ? "" : furnace->second, open, cursor_from(request), limit);
+  const bool more = rows.size() == static_cast<std::size_t>(limit);
+  return {200, "application/json", loads_json(rows, more ? std::optional(rows.back().id) : std::nullopt), {}};
+}
+
+Response Api::show_load(const Request& request) {
+  const FoundLoad found = find_load(request);
+  return {200, "application/json", load_json(found.row, *found.definition), {}};
+}
+
+Response Api::add_note(const Request& request) {
+  const FoundLoad found = find_load(request);
+  const Json body = parse_body(request.body);
+  JsonFields fields(body, "", invalid_request);
+  const storage::LoadNote note{0, found.row.id, parts_.clock.now_us(), fields.word("person", 80), fields.word("text", 1000)};
+  fields.finish();
+  const std::int64_t id = parts_.store.add_note(note);
+  parts_.loads_changed();
+  const Json json{{"id", id}, {"at", format_time(note.at_us)}, {"person", note.person}, {"text", note.text}};
+  return {201, "application/json", json.dump(-1, ' ', false, Json::error_handler_t::replace), {}};
+}
+
+Response Api::end_load(const Request& request) {
+  FoundLoad found = find_load(request);
+  const Json body = parse_body(request.body);
+  JsonFields fields(body, "", invalid_request);
+  const std::int64_t now = parts_.clock.now_us();
+  const std::string person = fields.word("person", 80);
+  const std::int64_t ended = fields.has("ended_at") ? fields.time("ended_at") : now;
+  fields.ignore_null("ended_at");
+  fields.finish();
+  if (found.row.ended_us) {
+    throw Problem{409, "load-already-ended", "The load has already ended",
+                  "Load " + found.row.name + " ended at " + format_time(*found.row.ended_us) + ".", ""};
+  }
+  const auto tolerance_us = static_cast<std::int64_t>(parts_.settings.ingest.future_tolerance_s * 1e6);
+  if (ended <= found.row.started_us || ended > now + tolerance_us)
+    throw Problem{422, invalid_request, "The end cannot be right",
+                  "ended_at: expected a time after the start (" + format_time(found.row.started_us) +
+                      ") and not in the future; it is " + format_time(now) + " now.",
+                  "ended_at"};
+  LoadDefinition load = *found.definition;
+  load.ended_us = ended;
+  const storage::AuditRow audit{now, person, "end load", "load " + std::to_string(found.row.id), "",
+                                Json{{"ended_at", format_time(ended)}}.dump()};
+  as_conflict("load-changed", "Somebody else changed this load just now", [&] {
+    parts_.store.revise_load(found.row.id, found.row.revision, stored_definition(load), ended, audit);
+    return 0;
+  });
+  parts_.loads_changed();
+  ++found.row.revision;
+  found.row.ended_us = ended;
+  return {200, "application/json", load_json(found.row, load), {}};
+}
+
+}  // namespace hearthfront::server

@@ -1,0 +1,90 @@
+// What the dashboard watches: floor, snapshot, result, history. Answers carry an ETag, so that a page that
+// already has the newest snapshot is told so in a few bytes.
+#include "server/api/api.h"
+#include "server/api/documents.h"
+#include "server/api/route_guard.h"
+#include "server/live/derive.h"
+#include "server/live/engine.h"
+#include "server/live/result_json.h"
+
+namespace hearthfront::server {
+namespace {
+
+constexpr std::size_t past_views_kept = 16;
+
+Response with_etag(const Request& request, const std::string& etag, const std::string& body) {
+  const auto known = request.headers.find("if-none-match");
+  const bool same = known != request.headers.end() && known->second == etag;
+  return {same ? 304 : 200,
+          "application/json",
+          same ? std::string() : body,
+          {{"ETag", etag}, {"Cache-Control", "no-cache"}}};
+}
+
+}  // namespace
+
+void Api::add_view_routes() {
+  HttpServer& http = parts_.http;
+  http.route("GET", "/api/v1/floor", [this](const Request&) { return Response{200, "application/json", floor(), {}}; });
+  http.route("GET", "/api/v1/loads/{}/snapshot", guarded([this](const Request& r) { return snapshot(r); }));
+  http.route("GET", "/api/v1/loads/{}/result", guarded([this](const Request& r) { return result(r); }));
+  http.route("GET", "/api/v1/loads/{}/history", guarded([this](const Request& r) { return history(r); }));
+}
+
+std::shared_ptr<const LoadView> Api::view_of(const FoundLoad& found) {
+  if (!found.row.ended_us) {
+    auto view = parts_.board.load(found.row.id);
+    if (view && view->row.revision == found.row.revision) return view;
+    throw Problem{503, "not-ready", "The load is being worked out",
+                  "The model has not caught up with this load yet; try again in a second.", ""};
+  }
+  // A late reading changes a past result without a new revision of the load, so the stored result's age
+  // is part of the key.
+  auto reader = readers_.take();
+  const auto stored = reader->result(found.row.id);
+  const auto key = std::make_pair(found.row.id, stored ? stored->computed_us : 0);
+  {
+    const std::scoped_lock lock(past_mutex_);
+    if (const auto it = past_views_.find(key); it != past_views_.end()) return it->second;
+  }
+  const auto source = stored_readings(*reader, [&](const std::string& channel) {
+    return parts_.acceptor.channel_id(found.row.furnace, channel).value_or(-1);
+  });
+  const auto load = derive(found.definition, source, *found.row.ended_us);
+  auto view = std::make_shared<LoadView>(
+      make_view(*load, found.definition, parts_.clock.now_us(), parts_.settings.live.stale_after_s));
+  view->row = found.row;
+  view->sequence = static_cast<std::uint64_t>(key.second);
+  const std::scoped_lock lock(past_mutex_);
+  if (past_views_.size() >= past_views_kept) past_views_.erase(past_views_.begin());
+  past_views_[key] = view;
+  return view;
+}
+
+Response Api::snapshot(const Request& request) {
+  const FoundLoad found = find_load(request);
+  const auto view = view_of(found);
+  auto reader = readers_.take();
+  const auto notes = reader->notes(found.row.id);
+  const std::string etag = "\"" + std::to_string(view->sequence) + "-" + std::to_string(notes.size()) + "\"";
+  return with_etag(request, etag, snapshot_json(*view, notes));
+}
+
+Response Api::result(const Request& request) {
+  const FoundLoad found = find_load(request);
+  if (!found.row.ended_us) return {200, "application/json", result_json(view_of(found)->result), {}};
+  auto reader = readers_.take();
+  const auto stored = reader->result(found.row.id);
+  if (!stored || stored->revision != found.row.revision)
+    throw Problem{503, "not-ready", "The result is being worked out",
+                  "The load has just ended; its final result follows in a second or two.", ""};
+  return {200, "application/json", stored->result_json, {}};
+}
+
+Response Api::history(const Request& request) {
+  const FoundLoad found = find_load(request);
+  const auto view = view_of(found);
+  return with_etag(request, "\"" + std::to_string(view->sequence) + "\"", history_json(*view->history));
+}
+
+}  // namespace hearthfront::server

@@ -1,0 +1,76 @@
+// The daemon's settings: every option with unit, default and reason. Read once at start from one TOML
+// file (config/hearthfront.toml shows all of them), plain data afterwards. The reader is strict: exact
+// types, ranges, no unknown keys, and all mistakes of the file reported at once.
+#pragma once
+
+#include <cstddef>
+#include <cstdint>
+#include <optional>
+#include <string>
+#include <utility>
+#include <vector>
+
+#include "server/base/plant.h"
+
+namespace hearthfront::server {
+
+struct Settings {
+  struct Listen {
+    std::string address = "127.0.0.1";  // loopback only: there is no sign-in and no TLS yet
+    int port = 8473;                    // 0 takes any free port
+  } listen;
+
+  struct Files {  // as written; see Settings::path_of
+    std::string database = "hearthfront.db";
+    std::string plant = "plant.toml";
+    std::string steels = "steels.toml";
+  } files;
+
+  struct Ingest {
+    std::size_t max_body_bytes = 8'388'608;  // half a year of minute values of one channel as CSV fits
+    std::size_t max_batch = 10'000;          // readings in one JSON body, and in one commit
+    std::size_t queue_readings = 50'000;     // waiting for the disk; above it senders are told to wait
+    double future_tolerance_s = 120;         // how far a logger's clock may run ahead of ours
+    double past_limit_days = 400;            // older is taken for a wrong year
+  } ingest;
+
+  struct Http {
+    int threads = 16;                       // workers; live streams hold none
+    int max_connections = 1024;             // above it: 503
+    int max_connections_per_address = 256;  // one machine cannot take them all
+    int max_streams = 256;                  // open live streams; above it pages poll
+    int request_timeout_s = 15;             // for a whole request, against slow senders
+    int idle_timeout_s = 60;                // between requests of one connection
+  } http;
+
+  struct Live {
+    double stale_after_s = 300;  // on the clock: no reading for so long shows "stale"
+  } live;
+
+  struct Log {
+    std::string level = "info";  // debug, info, warn, error
+  } log;
+
+  // Data time = anchor_data + speed x (real time - anchor_real).
+  struct ClockOptions {
+    double speed = 1.0;
+    std::optional<std::int64_t> anchor_real_us, anchor_data_us;
+    std::string where;  // file:line:column of [clock], for later messages
+    bool is_scaled() const { return speed != 1.0 || anchor_real_us || anchor_data_us; }
+  } clock;
+
+  std::string folder = ".";                            // of the settings file
+  std::string path_of(const std::string& file) const;  // relative names start at `folder`
+};
+
+// Reads the file; options that it leaves out keep their defaults. On errors the result must not be used.
+Settings read_settings(const std::string& path, ConfigErrors& errors);
+
+// A clock that does not show real time is allowed only for a plant file marked demo = true and a
+// loopback listener: nobody may take accelerated values for the state of a real furnace.
+void check_clock_is_allowed(const Settings& settings, const Plant& plant, ConfigErrors& errors);
+
+// Every option as "table.key" with its value in TOML text, in the order of the shipped file.
+std::vector<std::pair<std::string, std::string>> list_options(const Settings& settings);
+
+}  // namespace hearthfront::server

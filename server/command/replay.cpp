@@ -1,0 +1,125 @@
+#include <algorithm>
+#include <cmath>
+#include <cstdio>
+#include <fstream>
+#include <map>
+#include <sstream>
+
+#include "server/api/http_server.h"
+#include "server/base/time_text.h"
+#include "server/command/commands.h"
+#include "server/ingest/csv.h"
+#include "server/live/definition_json.h"
+#include "server/live/derive.h"
+#include "server/live/result_json.h"
+
+namespace hearthfront::server {
+namespace {
+
+std::string read_file(const std::string& path) {
+  std::ifstream in(path, std::ios::binary);
+  if (!in) throw std::runtime_error(path + ": cannot be opened; is the path right?");
+  std::ostringstream text;
+  text << in.rdbuf();
+  return std::move(text).str();
+}
+
+// Readings of a file by channel, under the same rules as in the daemon's store: one value for a time is
+// accepted, the same value again is the same reading, two different ones are both left out.
+class FileReadings {
+ public:
+  FileReadings(const DecodedCsv& decoded, const Furnace& furnace) {
+    std::map<std::string, std::vector<Sample>> all;
+    for (const RawReading& item : decoded.items) {
+      const Channel* channel = furnace.channel(item.channel);
+      const bool usable = item.refusal == Refusal::none && channel && std::isfinite(item.value) &&
+                          item.value >= channel->low && item.value <= channel->high;
+      if (usable) all[item.channel].push_back({item.time_us, item.value == 0 ? 0.0 : item.value});
+      refused_ += usable ? 0 : 1;
+    }
+    for (auto& [channel, samples] : all) {
+      std::sort(samples.begin(), samples.end(), [](const Sample& a, const Sample& b) {
+        return std::pair(a.time_us, a.value) < std::pair(b.time_us, b.value);
+      });
+      const auto same = [](const Sample& a, const Sample& b) { return a.time_us == b.time_us && a.value == b.value; };
+      samples.erase(std::unique(samples.begin(), samples.end(), same), samples.end());
+      std::vector<Sample>& accepted = accepted_[channel];
+      for (std::size_t i = 0; i < samples.size(); ++i) {
+        const bool clash = (i > 0 && samples[i - 1].time_us == samples[i].time_us) ||
+                           (i + 1 < samples.size() && samples[i + 1].time_us == samples[i].time_us);
+        if (!clash) accepted.push_back(samples[i]);
+        conflicts_ += clash ? 1 : 0;
+      }
+    }
+  }
+
+  std::vector<Sample> in(const std::string& channel, std::int64_t from_us, std::int64_t to_us) const {
+    std::vector<Sample> samples;
+    const auto it = accepted_.find(channel);
+    if (it == accepted_.end()) return samples;
+    for (const Sample& sample : it->second)
+      if (sample.time_us >= from_us && sample.time_us <= to_us) samples.push_back(sample);
+    return samples;
+  }
+  std::int64_t newest_us(std::int64_t otherwise) const {
+    std::int64_t newest = otherwise;
+    for (const auto& [channel, samples] : accepted_)
+      if (!samples.empty()) newest = std::max(newest, samples.back().time_us);
+    return newest;
+  }
+  std::size_t refused() const { return refused_; }
+  std::size_t conflicts() const { return conflicts_; }
+
+ private:
+  std::map<std::string, std::vector<Sample>> accepted_;
+  std::size_t refused_ = 0, conflicts_ = 0;
+};
+
+int replay(const ReplayOptions& options) {
+  ConfigErrors errors;
+  const Plant plant = read_plant(options.plant_path, options.steels_path, errors);
+  for (const std::string& message : errors.messages) std::fprintf(stderr, "%s\n", message.c_str());
+  if (!errors.ok()) return exit_bad_input;
+
+  const auto definition = std::make_shared<const LoadDefinition>(read_load_body(read_file(options.load_path), plant));
+  const Furnace& furnace = definition->furnace;
+  const CsvMapping* mapping = nullptr;
+  if (!options.mapping.empty()) mapping = furnace.csv_mapping(options.mapping);
+  else if (furnace.csv_mappings.size() == 1) mapping = &furnace.csv_mappings.front();
+  if (!mapping) {
+    std::fprintf(stderr, "%s: furnace %s has no CSV mapping \"%s\"; name one of its [[furnace.csv]] with --mapping.\n",
+                 options.plant_path.c_str(), furnace.id.c_str(), options.mapping.c_str());
+    return exit_bad_input;
+  }
+  const std::string log = read_file(options.log_path);
+  const DecodedCsv decoded = decode_csv(log, furnace, *mapping);
+  if (decoded.problem) throw *decoded.problem;
+  const FileReadings readings(decoded, furnace);
+  if (readings.refused() + readings.conflicts() > 0)
+    std::fprintf(stderr, "%s: %zu readings refused, %zu set aside because another value stands at their time.\n",
+                 options.log_path.c_str(), readings.refused(), readings.conflicts());
+
+  const std::int64_t until = definition->ended_us.value_or(readings.newest_us(definition->started_us));
+  const auto source = [&](const std::string& channel, std::int64_t from, std::int64_t to) {
+    return readings.in(channel, from, to);
+  };
+  const RunResult result = read_result(*derive(definition, source, until), definition);
+  std::printf("%s\n", (options.json ? result_json(result) : result_table(result)).c_str());
+  return exit_done;
+}
+
+}  // namespace
+
+int run_replay(const ReplayOptions& options) {
+  try {
+    return replay(options);
+  } catch (const Problem& problem) {
+    std::fprintf(stderr, "%s: %s\n", problem.title.c_str(), problem.detail.c_str());
+    return exit_bad_input;
+  } catch (const std::exception& error) {
+    std::fprintf(stderr, "%s\n", error.what());
+    return exit_failed;
+  }
+}
+
+}  // namespace hearthfront::server

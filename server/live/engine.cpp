@@ -1,0 +1,229 @@
+#include "server/live/engine.h"
+
+#include <algorithm>
+#include <chrono>
+
+#include "server/base/log.h"
+#include "server/base/time_text.h"
+#include "server/live/definition_json.h"
+#include "server/live/result_json.h"
+
+namespace hearthfront::server {
+namespace {
+
+// Bursts of commits are taken together; without any, views are refreshed so that time moves on them.
+constexpr auto shortest_round = std::chrono::milliseconds(200);
+constexpr auto longest_round = std::chrono::milliseconds(1000);
+// Followers hear from us so often even when nothing is new, so that silence means trouble.
+constexpr auto longest_silence = std::chrono::seconds(4);
+constexpr std::int64_t view_refresh_us = 10'000'000;  // of data time
+
+}  // namespace
+
+ReadingSource stored_readings(storage::Reader& reader,
+                              std::function<std::int64_t(const std::string& channel)> channel_id) {
+  return [&reader, channel_id = std::move(channel_id)](const std::string& channel, std::int64_t from_us,
+                                                       std::int64_t to_us) {
+    std::vector<Sample> samples;
+    for (const storage::Reading& reading : reader.accepted(channel_id(channel), from_us, to_us))
+      samples.push_back({reading.time_us, reading.value});
+    return samples;
+  };
+}
+
+Engine::Engine(EngineParts parts) : parts_(std::move(parts)) {
+  for (const Furnace& furnace : parts_.plant.furnaces)
+    for (const Channel& channel : furnace.channels)
+      furnace_of_channel_[parts_.channel_id(furnace.id, channel.name)] = furnace.id;
+}
+
+Engine::~Engine() {
+  stop();
+}
+
+void Engine::start() {
+  thread_ = std::thread([this] { run(); });
+}
+
+void Engine::stop() {
+  {
+    const std::scoped_lock lock(mutex_);
+    stopping_ = true;
+  }
+  condition_.notify_all();
+  if (thread_.joinable()) thread_.join();
+}
+
+void Engine::wake() {
+  {
+    const std::scoped_lock lock(mutex_);
+    work_waits_ = true;
+  }
+  condition_.notify_all();
+}
+
+void Engine::loads_changed() {
+  loads_dirty_ = true;
+  wake();
+}
+
+void Engine::run() {
+  std::unique_ptr<storage::Reader> reader;
+  while (true) {
+    try {
+      if (!reader) {
+        reader = std::make_unique<storage::Reader>(parts_.store.path());
+        for (const auto& [channel, furnace] : furnace_of_channel_)
+          if (const auto last = reader->newest(channel, latest_time_us))
+            parts_.board.set_newest_reading(furnace, last->time_us);
+      }
+      round(*reader);
+    } catch (const std::exception& error) {
+      // Loads keep their last views, which age visibly; the next round tries again from the database.
+      log_error("engine round failed", {{"what", error.what()}});
+      parts_.metrics.add(Total::engine_failures);
+      reader.reset();
+      tracked_.clear();
+      loads_dirty_ = true;
+    }
+    ++rounds_;
+    std::unique_lock lock(mutex_);
+    condition_.wait_for(lock, shortest_round, [this] { return stopping_; });
+    condition_.wait_for(lock, longest_round - shortest_round, [this] { return stopping_ || work_waits_; });
+    work_waits_ = false;
+    if (stopping_) return;
+  }
+}
+
+void Engine::round(storage::Reader& reader) {
+  // Changes are taken before the loads are listed: a load read afterwards has them from the database.
+  if (loads_dirty_.exchange(false)) {
+    try {
+      reconcile(reader);
+    } catch (...) {
+      loads_dirty_ = true;
+      throw;
+    }
+  }
+  apply_changes(reader);
+  refresh_views();
+  caught_up_ = true;
+  parts_.metrics.set(Level::open_loads, static_cast<double>(tracked_.size()));
+}
+
+ReadingSource Engine::source(storage::Reader& reader, const std::string& furnace) const {
+  return stored_readings(
+      reader, [this, furnace](const std::string& channel) { return parts_.channel_id(furnace, channel); });
+}
+
+void Engine::reconcile(storage::Reader& reader) {
+  const auto open = reader.open_loads();
+  for (auto it = tracked_.begin(); it != tracked_.end();) {
+    const bool still = std::any_of(open.begin(), open.end(), [&](const auto& row) {
+      return row.id == it->first && row.revision == it->second.row.revision;
+    });
+    it = still ? std::next(it) : tracked_.erase(it);
+  }
+  for (const storage::LoadRow& row : reader.ended_without_result()) finish(reader, row);
+  for (const storage::LoadRow& row : open) {
+    if (tracked_.contains(row.id)) continue;
+    try {
+      Tracked tracked;
+      tracked.row = row;
+      tracked.row.definition_json.clear();
+      tracked.definition =
+          std::make_shared<const LoadDefinition>(read_stored_definition(row.definition_json));
+      tracked.load = std::make_unique<LiveLoad>(tracked.definition);
+      for (const auto& used : tracked.load->channels().used())
+        tracked.channels.push_back(parts_.channel_id(row.furnace, used.name));
+      read_all(*tracked.load, source(reader, row.furnace));
+      refresh(tracked_[row.id] = std::move(tracked), parts_.clock.now_us());
+    } catch (const std::exception& error) {
+      log_error("a load cannot be run", {{"load", row.id}, {"name", row.name}, {"what", error.what()}});
+      parts_.metrics.add(Total::engine_failures);
+      tracked_.erase(row.id);
+    }
+  }
+}
+
+void Engine::note_newest(const storage::ChangedSpan& span) {
+  const auto furnace = furnace_of_channel_.find(span.channel);
+  if (furnace != furnace_of_channel_.end()) parts_.board.set_newest_reading(furnace->second, span.to_us);
+}
+
+void Engine::apply_changes(storage::Reader& reader) {
+  // Kept until every one is applied: after a failure the next round has them still.
+  for (const storage::ChangedSpan& span : parts_.store.take_changes()) pending_.push_back(span);
+  for (const storage::ChangedSpan& span : pending_) {
+    note_newest(span);
+    for (auto& [id, tracked] : tracked_) {
+      for (std::size_t used = 0; used < tracked.channels.size(); ++used) {
+        const std::int64_t from = std::max(span.from_us, tracked.load->readings_from_us());
+        if (tracked.channels[used] != span.channel || span.to_us < from) continue;
+        const std::string& name = tracked.load->channels().used()[used].name;
+        tracked.load->replace_readings(used, from, span.to_us,
+                                       source(reader, tracked.row.furnace)(name, from, span.to_us));
+        tracked.touched = true;
+      }
+    }
+    const auto furnace = furnace_of_channel_.find(span.channel);
+    if (furnace == furnace_of_channel_.end()) continue;
+    for (const storage::LoadRow& row : reader.ended_touching(furnace->second, span.from_us, span.to_us))
+      finish(reader, row);
+  }
+  pending_.clear();
+}
+
+void Engine::refresh_views() {
+  const std::int64_t now = parts_.clock.now_us();
+  double stale = 0;
+  for (auto& [id, tracked] : tracked_) {
+    const bool due = now - tracked.view_us >= view_refresh_us || now < tracked.view_us;
+    if (tracked.touched || due) refresh(tracked, now);
+    const auto view = parts_.board.load(id);
+    stale += view && view->condition == Condition::stale ? 1 : 0;
+  }
+  parts_.metrics.set(Level::stale_loads, stale);
+  const auto tick = std::chrono::steady_clock::now();
+  if (fresh_views_.empty() && tick - published_at_ < longest_silence) return;
+  if (parts_.published) parts_.published(fresh_views_);
+  fresh_views_.clear();
+  published_at_ = tick;
+}
+
+void Engine::refresh(Tracked& tracked, std::int64_t now_us) {
+  const std::uint64_t steps = tracked.load->steps();
+  tracked.load->advance_to(now_us);
+  parts_.metrics.add(Total::engine_steps, static_cast<double>(tracked.load->steps() - steps));
+  auto view =
+      std::make_shared<LoadView>(make_view(*tracked.load, tracked.definition, now_us, parts_.stale_after_s));
+  view->row = tracked.row;
+  parts_.board.publish(std::move(view));
+  tracked.touched = false;
+  tracked.view_us = now_us;
+  fresh_views_.push_back(tracked.row.id);
+}
+
+void Engine::finish(storage::Reader& reader, const storage::LoadRow& row) {
+  try {
+    const auto definition =
+        std::make_shared<const LoadDefinition>(read_stored_definition(row.definition_json));
+    const auto load = derive(definition, source(reader, row.furnace), *row.ended_us);
+    parts_.metrics.add(Total::engine_steps, static_cast<double>(load->steps()));
+    const std::string json = result_json(read_result(*load, definition));
+    const auto stored = reader.result(row.id);
+    if (!stored || stored->result_json != json)
+      parts_.store.save_result(
+          {row.id, row.revision, parts_.clock.now_us(), definition->model_version, json, false});
+  } catch (const storage::StorageError& error) {
+    log_warn("a result could not be stored yet", {{"load", row.id}, {"what", error.what()}});
+    loads_dirty_ = true;
+  } catch (const std::exception& error) {
+    log_error("an ended load has no result", {{"load", row.id}, {"name", row.name}, {"what", error.what()}});
+    parts_.metrics.add(Total::engine_failures);
+  }
+  parts_.board.remove(row.id);
+  fresh_views_.push_back(row.id);
+}
+
+}  // namespace hearthfront::server

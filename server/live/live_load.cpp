@@ -1,0 +1,127 @@
+#include "server/live/live_load.h"
+
+#include <algorithm>
+#include <bit>
+#include <cmath>
+
+namespace hearthfront::server {
+namespace {
+
+solver::GasCarburizing make_model(const LoadDefinition& load, const Item& item) {
+  solver::CarburizingPart part;
+  part.section = item.section;
+  part.steel = item.steel.composition;
+  part.core_carbon_wt_pct = item.core_carbon_wt_pct;
+  part.lag_s = item.lag_min * 60.0;
+  part.law = load.furnace.diffusivity == "tibbetts" ? solver::DiffusivityLaw::tibbetts
+                                                    : solver::DiffusivityLaw::agren;
+  part.beta_m_per_s = load.furnace.beta_m_per_s;
+  part.co_fraction = load.furnace.co_fraction;
+  part.h2_fraction = load.furnace.h2_fraction;
+
+  std::vector<solver::TimeAtTemperature> pieces;
+  for (const Segment& segment : load.recipe.segments)
+    pieces.push_back({segment.duration_min * 60.0, segment.temperature_degc});
+  solver::MeshDensity density;
+  density.diffusion_length_m = solver::expected_diffusion_length_m(part.law, pieces);
+  return solver::GasCarburizing(part, density);
+}
+
+}  // namespace
+
+LiveLoad::LiveLoad(std::shared_ptr<const LoadDefinition> definition)
+    : definition_(std::move(definition)),
+      channels_(*definition_),
+      lattice_us_(std::llround(definition_->lattice_s * 1e6)),
+      state_us_(definition_->started_us) {
+  for (const Item& item : definition_->items) models_.push_back(make_model(*definition_, item));
+  for (const auto& model : models_) {
+    workspaces_.emplace_back(model);
+    settled_.items.push_back(model.start(definition_->charge_temperature_degc));
+  }
+  marks_.push_back(settled_);
+  now_ = settled_;
+}
+
+std::int64_t LiveLoad::lattice_us(std::int64_t interval) const {
+  return definition_->started_us + interval * lattice_us_;
+}
+
+void LiveLoad::replace_readings(std::size_t used, std::int64_t from_us, std::int64_t to_us,
+                                std::vector<Sample> samples) {
+  const auto changed = channels_.replace(used, from_us, to_us, std::move(samples));
+  if (changed) rewind_before(*changed);
+}
+
+void LiveLoad::rewind_before(std::int64_t time_us) {
+  if (time_us >= lattice_us(settled_.interval)) return;
+  while (marks_.size() > 1 && lattice_us(marks_.back().interval) > time_us) marks_.pop_back();
+  settled_ = marks_.back();
+  settled_points_.resize(static_cast<std::size_t>(settled_.interval));
+}
+
+// Near the present every 8th interval keeps its mark, further back only each 16th, 32nd and so on.
+void LiveLoad::set_mark() {
+  constexpr std::int64_t densest = 8;
+  if (settled_.interval % densest != 0) return;
+  marks_.push_back(settled_);
+  std::erase_if(marks_, [&](const RunState& mark) {
+    const auto age = static_cast<std::uint64_t>((settled_.interval - mark.interval) / (4 * densest));
+    const auto spacing = densest << std::bit_width(age);
+    return mark.interval % spacing != 0;
+  });
+}
+
+RunPoint LiveLoad::advance(RunState& state, std::int64_t to_us) {
+  RunPoint point;
+  point.from_us = lattice_us(state.interval);
+  point.to_us = to_us;
+  point.input = channels_.input(*definition_, point.from_us, to_us);
+  solver::IntervalInputs inputs;
+  inputs.duration_s = static_cast<double>(to_us - point.from_us) * 1e-6;
+  inputs.furnace_temperature_degc = point.input.furnace_temperature_degc;
+  inputs.load_temperature_degc = point.input.load_temperature_degc;
+  inputs.carbon_potential_wt_pct = point.input.carbon_potential_wt_pct;
+  for (std::size_t i = 0; i < models_.size(); ++i) {
+    auto& item = state.items[i];
+    const solver::Outcome outcome = models_[i].advance(item, inputs, workspaces_[i]);
+    const solver::Profile profile = solver::read_profile(item.field, 0, item.conditions[0]);
+    const auto depth =
+        solver::depth_at_carbon_m(profile, definition_->items[i].criterion.carbon_limit_wt_pct);
+    point.items.push_back({depth.value_or(0) * 1e3, profile.carbon_wt_pct[0], item.part_temperature_degc[0],
+                           depth.has_value(), outcome.notes, outcome.kind});
+  }
+  ++state.interval;
+  return point;
+}
+
+void LiveLoad::advance_to(std::int64_t now_us) {
+  const std::int64_t target = std::max(
+      definition_->started_us, definition_->ended_us ? std::min(now_us, *definition_->ended_us) : now_us);
+  // In-time readings may still change what lies after the newest complete reading, so it is not settled
+  // yet; but a gap settles once it is longer than any reading can speak for.
+  std::int64_t settle_until = target;
+  if (!definition_->ended_us || target < *definition_->ended_us) {
+    const auto complete = channels_.complete_until_us(target);
+    settle_until = std::min(target, std::max(complete.value_or(0), target - channels_.reach_us()));
+  }
+  // A clock that was set back: what lies ahead of it is derived again when its time comes.
+  if (lattice_us(settled_.interval) > target) rewind_before(target);
+  while (lattice_us(settled_.interval + 1) <= settle_until) {
+    settled_points_.push_back(advance(settled_, lattice_us(settled_.interval + 1)));
+    set_mark();
+  }
+  now_ = settled_;
+  provisional_points_.clear();
+  while (lattice_us(now_.interval) < target)
+    provisional_points_.push_back(advance(now_, std::min(target, lattice_us(now_.interval + 1))));
+  state_us_ = target;
+}
+
+std::uint64_t LiveLoad::steps() const {
+  std::uint64_t sum = 0;
+  for (const auto& workspace : workspaces_) sum += workspace.work().steps;
+  return sum;
+}
+
+}  // namespace hearthfront::server

@@ -1,0 +1,88 @@
+// One load's model run: a pure function of its definition, its readings and the time asked for. Live
+// running, restart and replay all use this class, so their results are the same bits.
+//
+// `settled` state stands on a lattice point that no reading in time can change any more; the stretch from
+// there to the asked time is advanced on a copy and thrown away at the next call. A late reading rewinds
+// to a mark before its interval. Marks are log-spaced, so memory stays bounded. One thread at a time.
+#pragma once
+
+#include <cstdint>
+#include <memory>
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "server/live/lattice.h"
+#include "server/live/load_definition.h"
+#include "solver/solver.h"
+
+namespace hearthfront::server {
+
+// What the model made of one item in one interval, for the history plots.
+struct ItemPoint {
+  double case_depth_mm = 0, surface_carbon_wt_pct = 0, part_temperature_degc = 0;
+  bool depth_known = false;
+  std::uint32_t notes = 0;  // solver::Note bits
+  solver::OutcomeKind outcome = solver::OutcomeKind::reached;
+};
+
+struct RunPoint {
+  std::int64_t from_us = 0, to_us = 0;
+  IntervalInput input;
+  std::vector<ItemPoint> items;
+};
+
+class LiveLoad {
+ public:
+  explicit LiveLoad(std::shared_ptr<const LoadDefinition> definition);
+
+  const LoadDefinition& definition() const { return *definition_; }
+  const LoadChannels& channels() const { return channels_; }
+  // Readings before this have no influence on the run.
+  std::int64_t readings_from_us() const { return definition_->started_us - channels_.reach_us(); }
+
+  // The accepted readings of one used channel in [from, to], in the channel's own unit.
+  void replace_readings(std::size_t used, std::int64_t from_us, std::int64_t to_us,
+                        std::vector<Sample> samples);
+
+  // Brings the run to `now_us`, or to the load's end where that is earlier.
+  void advance_to(std::int64_t now_us);
+
+  // Valid after advance_to.
+  std::int64_t state_us() const { return state_us_; }
+  bool at_end() const { return definition_->ended_us && state_us_ == *definition_->ended_us; }
+  std::size_t item_count() const { return definition_->items.size(); }
+  const solver::GasCarburizing& model(std::size_t item) const { return models_[item]; }
+  const solver::GasCarburizing::State& state(std::size_t item) const { return now_.items[item]; }
+  // Every interval from the start to state_us, the provisional ones at the end included.
+  template <typename Visit>
+  void each_point(Visit visit) const {
+    for (const RunPoint& p : settled_points_) visit(p);
+    for (const RunPoint& p : provisional_points_) visit(p);
+  }
+  std::uint64_t steps() const;  // solver steps done so far, rewinds included
+  std::size_t marks() const { return marks_.size(); }
+
+ private:
+  struct RunState {
+    std::int64_t interval = 0;  // intervals done
+    std::vector<solver::GasCarburizing::State> items;
+  };
+
+  std::int64_t lattice_us(std::int64_t interval) const;
+  void rewind_before(std::int64_t time_us);
+  RunPoint advance(RunState& state, std::int64_t to_us);
+  void set_mark();
+
+  std::shared_ptr<const LoadDefinition> definition_;
+  LoadChannels channels_;
+  std::int64_t lattice_us_;
+  std::vector<solver::GasCarburizing> models_;
+  std::vector<solver::GasCarburizing::Workspace> workspaces_;
+  RunState settled_, now_;
+  std::vector<RunState> marks_;  // ascending; the first is the start
+  std::vector<RunPoint> settled_points_, provisional_points_;
+  std::int64_t state_us_;
+};
+
+}  // namespace hearthfront::server

@@ -1,0 +1,18 @@
+// The parts of the result document that snapshots share. Internal to server: brings nlohmann's header.
+#pragma once
+
+#include "server/live/definition_fields.h"
+#include "server/live/run_result.h"
+
+namespace hearthfront::server {
+
+Json result_items_json(const RunResult& result);
+Json result_notes_json(const RunResult& result);
+Json result_gaps_json(const RunResult& result);
+Json criterion_result_json(const Criterion& criterion);  // with carbon limit and words
+Json number_or_null(std::optional<double> value);
+const char* carbon_source(const RunResult& result);
+
+inline constexpr const char* band_not_computed = "band not computed";
+
+}  // namespace hearthfront::server

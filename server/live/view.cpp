@@ -1,0 +1,161 @@
+#include "server/live/view.h"
+
+#include <algorithm>
+#include <cmath>
+
+namespace hearthfront::server {
+namespace {
+
+double seconds(std::int64_t us) {
+  return static_cast<double>(us) * 1e-6;
+}
+
+std::optional<double> age_s(const ChannelSeries* series, std::int64_t now_us) {
+  const auto newest = series ? series->newest(now_us) : std::nullopt;
+  if (!newest) return std::nullopt;
+  return seconds(now_us - newest->time_us);
+}
+
+std::string silence(const std::string& what, const InputNow& input) {
+  const std::string minutes = input.age_s ? std::to_string(std::lround(*input.age_s / 60.0)) + " min" : "";
+  const std::string silent = input.age_s ? what + " silent for " + minutes : "No reading of " + what + " yet";
+  return silent + (input.basis == Basis::held ? ": last value held." : ": recipe value assumed.");
+}
+
+std::string say_what_is_amiss(const LoadView& view) {
+  if (view.condition == Condition::ended) return "";
+  if (view.condition == Condition::no_data_yet)
+    return "No reading yet: everything shown is assumed from the recipe.";
+  if (view.condition == Condition::stale)
+    return "No reading for " + std::to_string(std::lround(seconds(view.now_us - *view.data_us) / 60.0)) +
+           " min: check the logger and its line.";
+  for (const ItemResult& item : view.result.items)
+    if (item.outcome == solver::OutcomeKind::failed)
+      return "The model failed on this load; its numbers stopped at the last good moment.";
+  if (view.carbon_potential.basis != Basis::measured)
+    return silence(view.result.from_probe ? "Probe" : "Carbon potential", view.carbon_potential);
+  if (view.temperature.basis != Basis::measured) return silence("Temperature", view.temperature);
+  for (const NoteSpan& note : view.result.notes)
+    if (note.to_us == view.result.state_us && note.note != solver::note_paused_below_austenite)
+      return note_sentence(note.note);
+  return "";
+}
+
+}  // namespace
+
+const char* text(Condition condition) {
+  switch (condition) {
+    case Condition::no_load:
+      return "no load";
+    case Condition::no_data_yet:
+      return "no data yet";
+    case Condition::stale:
+      return "stale";
+    case Condition::live:
+      return "live";
+    case Condition::ended:
+      return "ended";
+  }
+  return "";
+}
+
+History read_history(const LiveLoad& load, std::size_t max_points) {
+  std::size_t count = 0;
+  load.each_point([&](const RunPoint&) { ++count; });
+  const std::size_t stride = std::max<std::size_t>(1, (count + max_points - 1) / max_points);
+  History history;
+  for (const Item& item : load.definition().items) history.items.push_back({item.name, {}, {}, {}});
+  std::size_t at = 0;
+  load.each_point([&](const RunPoint& point) {
+    ++at;
+    if (at % stride != 0 && at != count) return;
+    history.time_s.push_back(seconds(point.to_us));
+    history.temperature_degc.push_back(point.input.furnace_temperature_degc);
+    history.carbon_potential_wt_pct.push_back(point.input.carbon_potential_wt_pct);
+    history.temperature_basis.push_back(point.input.temperature_basis);
+    history.carbon_potential_basis.push_back(point.input.carbon_potential_basis);
+    for (std::size_t i = 0; i < point.items.size(); ++i) {
+      auto& columns = history.items[i];
+      columns.case_depth_mm.push_back(point.items[i].depth_known ? std::optional(point.items[i].case_depth_mm)
+                                                                 : std::nullopt);
+      columns.surface_carbon_wt_pct.push_back(point.items[i].surface_carbon_wt_pct);
+      columns.part_temperature_degc.push_back(point.items[i].part_temperature_degc);
+    }
+  });
+  return history;
+}
+
+LoadView make_view(const LiveLoad& load, std::shared_ptr<const LoadDefinition> definition,
+                   std::int64_t now_us, double stale_after_s) {
+  LoadView view;
+  view.now_us = now_us;
+  view.result = read_result(load, std::move(definition));
+  view.data_us = load.channels().newest_us(load.state_us());
+  view.history = std::make_shared<const History>(read_history(load, 600));
+  view.segment = segment_at(load.definition(), load.state_us());
+  view.minutes_left = seconds(load.definition().planned_end_us() - load.state_us()) / 60.0;
+
+  const RunPoint* last = nullptr;
+  load.each_point([&](const RunPoint& point) { last = &point; });
+  if (last) {
+    view.temperature = {last->input.furnace_temperature_degc, last->input.temperature_basis, std::nullopt};
+    view.carbon_potential = {last->input.carbon_potential_wt_pct, last->input.carbon_potential_basis,
+                             std::nullopt};
+  } else {
+    const Segment& first = load.definition().recipe.segments.front();
+    view.temperature.value = first.temperature_degc;
+    view.carbon_potential.value = first.carbon_potential_wt_pct;
+  }
+  view.temperature.age_s = age_s(load.channels().series(Role::temperature), now_us);
+  view.carbon_potential.age_s = age_s(load.channels().carbon_series(), now_us);
+
+  if (load.at_end())
+    view.condition = Condition::ended;
+  else if (!view.data_us)
+    view.condition = Condition::no_data_yet;
+  else if (seconds(now_us - *view.data_us) > stale_after_s)
+    view.condition = Condition::stale;
+  else
+    view.condition = Condition::live;
+  view.message = say_what_is_amiss(view);
+  return view;
+}
+
+void Board::publish(std::shared_ptr<LoadView> view) {
+  const std::scoped_lock lock(mutex_);
+  view->sequence = ++sequence_;
+  loads_[view->row.id] = std::move(view);
+}
+
+void Board::remove(std::int64_t load) {
+  const std::scoped_lock lock(mutex_);
+  loads_.erase(load);
+  ++sequence_;
+}
+
+std::shared_ptr<const LoadView> Board::load(std::int64_t id) const {
+  const std::scoped_lock lock(mutex_);
+  const auto it = loads_.find(id);
+  return it == loads_.end() ? nullptr : it->second;
+}
+
+std::vector<std::shared_ptr<const LoadView>> Board::loads() const {
+  const std::scoped_lock lock(mutex_);
+  std::vector<std::shared_ptr<const LoadView>> views;
+  for (const auto& [id, view] : loads_) views.push_back(view);
+  return views;
+}
+
+void Board::set_newest_reading(const std::string& furnace, std::int64_t time_us) {
+  const std::scoped_lock lock(mutex_);
+  auto& newest = newest_.try_emplace(furnace, time_us).first->second;
+  newest = std::max(newest, time_us);
+}
+
+std::optional<std::int64_t> Board::newest_reading(const std::string& furnace) const {
+  const std::scoped_lock lock(mutex_);
+  const auto it = newest_.find(furnace);
+  return it == newest_.end() ? std::nullopt : std::optional(it->second);
+}
+
+}  // namespace hearthfront::server

@@ -1,0 +1,167 @@
+#include "storage/schema.h"
+
+#include <SQLiteCpp/Column.h>
+#include <SQLiteCpp/Database.h>
+#include <SQLiteCpp/Exception.h>
+#include <SQLiteCpp/Statement.h>
+
+#include <array>
+#include <string>
+
+#include "storage/connection.h"
+
+namespace hearthfront::storage {
+namespace {
+
+// Marks the file as ours (the bytes "HFDB"), for `file` and for refusing other programs' databases.
+constexpr int application_id = 0x48464442;
+
+constexpr const char* first_tables = R"sql(
+CREATE TABLE migration(version INTEGER PRIMARY KEY, name TEXT NOT NULL) STRICT;
+
+CREATE TABLE meta(key TEXT PRIMARY KEY, value TEXT NOT NULL) STRICT, WITHOUT ROWID;
+
+-- stored and conflicts repeat what reading says, kept in the same transaction: counting millions of rows
+-- for each page of the dashboard would be too slow.
+CREATE TABLE channel(
+  id INTEGER PRIMARY KEY AUTOINCREMENT,
+  furnace TEXT NOT NULL, name TEXT NOT NULL,
+  stored INTEGER NOT NULL DEFAULT 0, conflicts INTEGER NOT NULL DEFAULT 0,
+  UNIQUE(furnace, name)) STRICT;
+
+-- value is part of the key: two values for one time are two rows, whichever came first.
+CREATE TABLE reading(
+  channel INTEGER NOT NULL REFERENCES channel(id), time_us INTEGER NOT NULL, value REAL NOT NULL,
+  PRIMARY KEY(channel, time_us, value)) STRICT, WITHOUT ROWID;
+
+CREATE TABLE refused_reading(
+  id INTEGER PRIMARY KEY AUTOINCREMENT, received_us INTEGER NOT NULL,
+  furnace TEXT NOT NULL, channel TEXT NOT NULL, time_text TEXT NOT NULL, value_text TEXT NOT NULL,
+  reason TEXT NOT NULL) STRICT;
+CREATE INDEX refused_reading_furnace ON refused_reading(furnace, id);
+
+CREATE TABLE refused_count(
+  furnace TEXT NOT NULL, channel TEXT NOT NULL, reason TEXT NOT NULL, count INTEGER NOT NULL,
+  PRIMARY KEY(furnace, channel, reason)) STRICT, WITHOUT ROWID;
+
+CREATE TABLE load(
+  id INTEGER PRIMARY KEY AUTOINCREMENT,
+  name TEXT NOT NULL, furnace TEXT NOT NULL, chamber TEXT NOT NULL, person TEXT NOT NULL,
+  started_us INTEGER NOT NULL, ended_us INTEGER CHECK(ended_us > started_us),
+  created_us INTEGER NOT NULL, revision INTEGER NOT NULL, definition_json TEXT NOT NULL) STRICT;
+CREATE INDEX load_chamber ON load(furnace, chamber, started_us);
+CREATE INDEX load_open ON load(id) WHERE ended_us IS NULL;
+
+CREATE TABLE load_revision(
+  load INTEGER NOT NULL REFERENCES load(id), revision INTEGER NOT NULL, at_us INTEGER NOT NULL,
+  person TEXT NOT NULL, what TEXT NOT NULL,
+  definition_before TEXT NOT NULL, definition_after TEXT NOT NULL,
+  ended_before_us INTEGER, ended_after_us INTEGER,
+  PRIMARY KEY(load, revision)) STRICT, WITHOUT ROWID;
+
+CREATE TABLE load_note(
+  id INTEGER PRIMARY KEY AUTOINCREMENT, load INTEGER NOT NULL REFERENCES load(id),
+  at_us INTEGER NOT NULL, person TEXT NOT NULL, text TEXT NOT NULL) STRICT;
+CREATE INDEX load_note_load ON load_note(load, id);
+
+CREATE TABLE result(
+  id INTEGER PRIMARY KEY AUTOINCREMENT, load INTEGER NOT NULL REFERENCES load(id),
+  revision INTEGER NOT NULL, computed_us INTEGER NOT NULL, model_version TEXT NOT NULL,
+  result_json TEXT NOT NULL, superseded INTEGER NOT NULL DEFAULT 0 CHECK(superseded IN (0, 1))) STRICT;
+CREATE INDEX result_load ON result(load, id);
+
+CREATE TABLE audit(
+  id INTEGER PRIMARY KEY AUTOINCREMENT, at_us INTEGER NOT NULL, person TEXT NOT NULL,
+  action TEXT NOT NULL, subject TEXT NOT NULL, before_json TEXT NOT NULL, after_json TEXT NOT NULL) STRICT;
+CREATE INDEX audit_subject ON audit(subject, id);
+
+-- Nothing past is rewritten, by this program or by a hand in the file.
+CREATE TRIGGER reading_no_update BEFORE UPDATE ON reading BEGIN SELECT RAISE(ABORT, 'readings are never changed'); END;
+CREATE TRIGGER reading_no_delete BEFORE DELETE ON reading BEGIN SELECT RAISE(ABORT, 'readings are never deleted'); END;
+CREATE TRIGGER audit_no_update BEFORE UPDATE ON audit BEGIN SELECT RAISE(ABORT, 'audit rows are never changed'); END;
+CREATE TRIGGER audit_no_delete BEFORE DELETE ON audit BEGIN SELECT RAISE(ABORT, 'audit rows are never deleted'); END;
+CREATE TRIGGER load_revision_no_update BEFORE UPDATE ON load_revision
+  BEGIN SELECT RAISE(ABORT, 'load revisions are never changed'); END;
+CREATE TRIGGER load_revision_no_delete BEFORE DELETE ON load_revision
+  BEGIN SELECT RAISE(ABORT, 'load revisions are never deleted'); END;
+CREATE TRIGGER load_no_delete BEFORE DELETE ON load BEGIN SELECT RAISE(ABORT, 'loads are never deleted'); END;
+CREATE TRIGGER load_note_no_update BEFORE UPDATE ON load_note BEGIN SELECT RAISE(ABORT, 'notes are never changed'); END;
+CREATE TRIGGER load_note_no_delete BEFORE DELETE ON load_note BEGIN SELECT RAISE(ABORT, 'notes are never deleted'); END;
+CREATE TRIGGER result_no_update BEFORE UPDATE OF id, load, revision, computed_us, model_version, result_json ON result
+  BEGIN SELECT RAISE(ABORT, 'results are never changed'); END;
+CREATE TRIGGER result_no_delete BEFORE DELETE ON result BEGIN SELECT RAISE(ABORT, 'results are never deleted'); END;
+
+-- The store asks first and names the other load; these hold even if that question is ever forgotten.
+CREATE TRIGGER load_no_overlap_insert BEFORE INSERT ON load WHEN EXISTS(
+  SELECT 1 FROM load WHERE furnace = NEW.furnace AND chamber = NEW.chamber
+    AND (NEW.ended_us IS NULL OR started_us < NEW.ended_us) AND (ended_us IS NULL OR ended_us > NEW.started_us))
+  BEGIN SELECT RAISE(ABORT, 'another load is in this chamber at that time'); END;
+CREATE TRIGGER load_no_overlap_update BEFORE UPDATE ON load WHEN EXISTS(
+  SELECT 1 FROM load WHERE furnace = NEW.furnace AND chamber = NEW.chamber AND id <> NEW.id
+    AND (NEW.ended_us IS NULL OR started_us < NEW.ended_us) AND (ended_us IS NULL OR ended_us > NEW.started_us))
+  BEGIN SELECT RAISE(ABORT, 'another load is in this chamber at that time'); END;
+)sql";
+
+constexpr std::array<Migration, 1> all_migrations{{{1, "first tables", first_tables}}};
+
+int pragma_number(Connection& connection, const char* pragma) {
+  return connection.database().execAndGet(pragma).getInt();
+}
+
+std::string newest_name(Connection& connection, int version) {
+  SQLite::Statement query(connection.database(), "SELECT name FROM migration WHERE version = ?");
+  query.bind(1, version);
+  return query.executeStep() ? query.getColumn(0).getString() : std::string("unnamed");
+}
+
+}  // namespace
+
+std::span<const Migration> migrations() {
+  return all_migrations;
+}
+
+int schema_version(Connection& connection, std::span<const Migration> known) {
+  const int version = pragma_number(connection, "PRAGMA user_version");
+  const int id = pragma_number(connection, "PRAGMA application_id");
+  const bool empty = pragma_number(connection, "SELECT count(*) FROM sqlite_master") == 0;
+  if (empty && version == 0 && id == 0) return 0;
+  if (id != application_id) {
+    throw StorageError(StorageFault::misuse, "The file " + connection.path() +
+                                                 " is a database of another program and stays untouched. "
+                                                 "Name another file.");
+  }
+  const int newest = known.empty() ? 0 : known.back().version;
+  if (version > newest) {
+    throw StorageError(StorageFault::newer_schema,
+                       "The database " + connection.path() + " has schema " + std::to_string(version) +
+                           " \"" + newest_name(connection, version) +
+                           "\" of a newer hearthfront; this one knows up to " + std::to_string(newest) +
+                           ". Install the newer program, or restore the backup made before the upgrade.");
+  }
+  return version;
+}
+
+void migrate(Connection& connection, std::span<const Migration> known) {
+  const int from = schema_version(connection, known);
+  for (const Migration& step : known) {
+    if (step.version <= from) continue;
+    try {
+      SQLite::Database& database = connection.database();
+      database.exec("BEGIN IMMEDIATE");
+      database.exec(step.sql);
+      SQLite::Statement note(database, "INSERT INTO migration(version, name) VALUES(?, ?)");
+      note.bind(1, step.version);
+      note.bind(2, step.name);
+      note.exec();
+      note.reset();
+      database.exec("PRAGMA application_id=" + std::to_string(application_id));
+      database.exec("PRAGMA user_version=" + std::to_string(step.version));
+      database.exec("COMMIT");
+    } catch (const SQLite::Exception& error) {
+      if (connection.in_transaction()) connection.database().exec("ROLLBACK");
+      throw explain(error, connection.path(), "bring the tables to \"" + std::string(step.name) + "\"");
+    }
+  }
+}
+
+}  // namespace hearthfront::storage

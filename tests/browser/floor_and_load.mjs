@@ -1,0 +1,118 @@
+// Uses the dashboard of a running daemon as an operator would: looks at the Floor and a load on a wall
+// screen, a tablet and a phone, loses and finds the daemon again, starts a load by touch and ends it.
+//
+//   node floor_and_load.mjs http://127.0.0.1:8080 out/
+//
+// The daemon must have an open load whose readings arrive and a furnace without a load; its demo clock must
+// run fast enough (60 times or more) that a depth moves by 0.01 mm within 20 s. Screenshots go to the folder.
+// Exit code 0 when every check passed; the last line counts them.
+import { attempt, changes, check, openBrowser, sizes, sound, verdict } from './harness.mjs';
+import { startByTouch } from './start_by_touch.mjs';
+
+const [base = 'http://127.0.0.1:8080', folder = 'out'] = process.argv.slice(2);
+const api = (path) => fetch(new URL(`/api/v1/${path}`, base)).then((answer) => answer.json());
+const movesWithinMs = 20_000;
+
+const floor = await api('floor');
+const open = floor.furnaces.flatMap((furnace) => furnace.loads);
+// A load whose case is growing; on a young one the depth may still be none.
+const load = open.find((each) => each.condition === 'live' && each.item?.case_depth_mm !== null) ?? open[0];
+const idle = floor.furnaces.find((furnace) => furnace.loads.length === 0);
+check('the daemon has an open load to look at', load !== undefined);
+check('the daemon has a furnace without a load', idle !== undefined);
+
+const browser = await openBrowser(base, folder);
+for (const size of sizes) {
+  await attempt(`${size.name}: floor and load`, () => look(size));
+}
+await attempt('units and theme', preferences);
+await attempt('lost contact', lostContact);
+if (idle) await attempt('start by touch', () => startByTouch({ base, browser, furnace: idle }));
+await browser.close();
+process.exit(verdict());
+
+async function look(size) {
+  const seen = await browser.page(size);
+  const { page } = seen;
+  await page.goto(new URL('/#/', base).href);
+  await page.locator('[data-testid="card"]').first().waitFor({ timeout: 10_000 });
+  check(`${size.name}: one card for each open load`, await page.locator('[data-testid="card"]').count() === open.length);
+  check(`${size.name}: the words stand in the band's place`, (await page.locator('.card .band').first().textContent()) === floor.band);
+  const figure = await page.locator('.figure').first().evaluate((element) => parseFloat(getComputedStyle(element).fontSize));
+  check(`${size.name}: the depth is at least 56 px high`, figure >= 56, figure);
+  const marked = floor.demo || floor.clock_speed !== 1;
+  check(`${size.name}: a demo says so`, await page.locator('[data-testid="demo"]').count() === (marked ? 1 : 0));
+  check(`${size.name}: the caution stands below`, (await page.locator('footer').textContent()).includes('NFPA 86'));
+  await moving(`${size.name} floor`, page);
+  await sound(`${size.name} floor`, seen);
+  await browser.photo(page, `${size.name}-floor`);
+
+  const link = page.locator(`[data-load="${load.id}"] a`).first();
+  if (size.touch) await link.tap(); else await link.click();
+  await page.waitForURL(`**/#/load/${load.id}`);
+  await page.locator('.plot canvas').first().waitFor({ timeout: 10_000 });
+  const words = await page.locator('section.present .strip').getAttribute('aria-label');
+  check(`${size.name} load: the strip says its figures in words`, /Case depth now|No case yet/.test(words) && /The drawing asks/.test(words), words);
+  check(`${size.name} load: profile and history are drawn`, await page.locator('.plot canvas').count() === 4);
+  await moving(`${size.name} load`, page);
+  await sound(`${size.name} load`, seen);
+  await browser.photo(page, `${size.name}-load`);
+  await page.keyboard.press('Tab');
+  const outline = await page.evaluate(() => getComputedStyle(document.activeElement).outlineStyle);
+  check(`${size.name}: keyboard focus is visible`, outline === 'solid', outline);
+  await seen.context.close();
+
+  const dark = await browser.page(size, { theme: 'dark' });
+  await dark.page.goto(new URL(`/#/load/${load.id}`, base).href);
+  await dark.page.locator('.plot canvas').first().waitFor({ timeout: 10_000 });
+  await browser.photo(dark.page, `${size.name}-load-dark`);
+  await dark.page.goto(new URL('/#/', base).href);
+  await dark.page.locator('[data-testid="card"]').first().waitFor();
+  await browser.photo(dark.page, `${size.name}-floor-dark`);
+  await sound(`${size.name} dark`, dark);
+  await dark.context.close();
+}
+
+async function moving(label, page) {
+  const [depth, age] = await Promise.all([changes(page, 'depth', movesWithinMs), changes(page, 'data-age', movesWithinMs)]);
+  check(`${label}: a depth moves`, depth.moved, depth.first);
+  check(`${label}: the data age moves`, age.moved, age.first);
+}
+
+async function preferences() {
+  const seen = await browser.page(sizes[1]);
+  const { page } = seen;
+  await page.goto(new URL(`/#/load/${load.id}`, base).href);
+  await page.locator('section.present').waitFor();
+  await page.locator('[data-testid="unit-length"]').tap();
+  await page.locator('[data-testid="unit-temperature"]').tap();
+  await page.reload();
+  await page.locator('.rows').waitFor();
+  check('units: inches and Fahrenheit are kept over a reload', (await page.locator('.big small').textContent()) === 'in' && (await page.locator('.rows').textContent()).includes('°F'));
+  await page.locator('[data-testid="theme"]').tap();
+  await page.locator('[data-testid="theme"]').tap();
+  check('theme: the second press is dark', await page.evaluate(() => document.documentElement.dataset.theme) === 'dark');
+  await sound('units and theme', seen);
+  await seen.context.close();
+}
+
+// First no stream (polling must carry on), then no answer at all, then everything back.
+async function lostContact() {
+  const seen = await browser.page(sizes[0]);
+  const { page, context } = seen;
+  await context.route('**/api/v1/events', (route) => route.abort());
+  await page.goto(new URL('/#/', base).href);
+  await page.locator('[data-testid="card"]').first().waitFor();
+  check('without a stream the data age still moves', (await changes(page, 'data-age', 10_000)).moved);
+  await context.route('**/api/**', (route) => route.abort());
+  const since = Date.now();
+  await page.locator('[data-testid="away"]').waitFor({ timeout: 20_000 });
+  const after = (Date.now() - since) / 1000;
+  check('the daemon is called away after about ten seconds', after > 7 && after < 14, after);
+  check('every figure is marked old, with its time', await page.locator('[data-testid="then"]').count() === await page.locator('[data-testid="card"]').count());
+  await browser.photo(page, 'wall-away');
+  await context.unrouteAll();
+  await page.locator('[data-testid="away"]').waitFor({ state: 'detached', timeout: 10_000 });
+  check('contact found again', await page.locator('[data-testid="then"]').count() === 0);
+  await context.close();
+}

@@ -1,0 +1,151 @@
+// DEVELOPMENT ONLY: answers the routes of /api/v1 with the invented plant of mock_plant.mjs and serves
+// dist/, so that the dashboard can be worked on and photographed without the daemon. Loopback only.
+//   node dev/mock_server.mjs [--port 8090] [--speed 60] [--loads 6]
+//   POST /dev/away?seconds=20   answers nothing for so long;   POST /dev/unready?seconds=20   answers 503
+import { createReadStream, existsSync } from 'node:fs';
+import { createServer } from 'node:http';
+import { dirname, extname, join, normalize } from 'node:path';
+import { fileURLToPath } from 'node:url';
+import { conditionOf, furnaces, inputsAt, itemsAt, messageOf, openingLoads, plannedMinutes, segmentAt, steels } from './mock_plant.mjs';
+
+const argument = (name, otherwise) => { const i = process.argv.indexOf(`--${name}`); return i > 0 ? Number(process.argv[i + 1]) : otherwise; };
+const port = argument('port', 8090), speed = argument('speed', 60);
+const dist = join(dirname(fileURLToPath(import.meta.url)), '../dist');
+const begun = Date.now();
+const nowMs = () => begun + (Date.now() - begun) * speed;
+const stamp = (ms) => `${new Date(ms).toISOString().slice(0, 19)}Z`;
+const loads = openingLoads(nowMs()).slice(-argument('loads', 6));
+let sequence = 1, nextId = 7, awayUntil = 0, unreadyUntil = 0;
+const band = 'band not computed';
+const rank = { stale: 0, 'no data yet': 1, live: 2, 'no load': 9 };
+
+const dataAge = (load) => ({ stale: 1500, 'no data yet': null }[load.trouble] === undefined ? 20 : { stale: 1500 }[load.trouble] ?? null);
+function controllingOf(load) {
+  const items = itemsAt(load, nowMs(), 40);
+  return items.reduce((worst, each) => (each.case_depth_window_mm[0] - (each.case_depth_mm ?? 0) > worst.case_depth_window_mm[0] - (worst.case_depth_mm ?? 0) ? each : worst));
+}
+function live(load) {
+  const now = nowMs();
+  return { inputs: inputsAt(load, now), segment: load.ended_at ? null : segmentAt(load, now), minutes_left: plannedMinutes(load) - (now - Date.parse(load.definition.started_at)) / 60_000 };
+}
+function floor() {
+  const rows = furnaces.map((furnace) => {
+    const open = loads.filter((load) => load.definition.furnace === furnace.id && !load.ended_at);
+    const condition = open.length ? conditionOf(open[0]) : 'no load';
+    return { id: furnace.id, name: furnace.name, process: furnace.process, condition, data_time: stamp(nowMs() - 20_000), data_age_s: open.length ? dataAge(open[0]) : 20,
+      loads: open.map((load) => { const { profile, ...item } = controllingOf(load);
+        return { id: load.id, name: load.definition.name, chamber: load.definition.chamber, person: load.definition.person, started_at: load.definition.started_at,
+          condition: conditionOf(load), message: messageOf(load), ...live(load), item_count: load.definition.items.length, item: { ...item, strip: profile } }; }) };
+  });
+  rows.sort((a, b) => rank[a.condition] - rank[b.condition]);
+  return { sequence, now: stamp(nowMs()), plant: 'Invented demo plant', demo: true, clock_speed: speed, band, furnaces: rows };
+}
+const rowOf = (load) => ({ id: load.id, name: load.definition.name, furnace: load.definition.furnace, furnace_name: furnaces.find((each) => each.id === load.definition.furnace).name, chamber: load.definition.chamber ?? 'main',
+  person: load.definition.person, started_at: load.definition.started_at, ended_at: load.ended_at, state: load.ended_at ? 'ended' : 'open', recipe: load.definition.recipe, revision: load.revision });
+function snapshot(load) {
+  const now = nowMs(), begin = Date.parse(load.definition.started_at), at = (min) => stamp(begin + min * 60_000);
+  return { load: rowOf(load), sequence, now: stamp(now), data_time: stamp(now - (dataAge(load) ?? 0) * 1000), data_age_s: dataAge(load), state_time: stamp(now), condition: conditionOf(load), message: messageOf(load), band,
+    ...live(load), items: itemsAt(load, now), controlling_item: controllingOf(load).name,
+    notes: load.trouble === 'held' ? [{ kind: 'capped at carbide limit', item: 'A', from: at(60), to: at(75), text: 'The gas would form carbide at this temperature: the surface is held at the carbide limit.' }] : [],
+    gaps: load.trouble === 'none' ? [] : [{ input: 'carbon_potential', basis: 'held', from: at(60), to: at(72) }, { input: 'temperature', basis: 'planned', from: at(80), to: at(95) }], shift_notes: load.notes };
+}
+function history(load) {
+  const begin = Date.parse(load.definition.started_at), end = load.ended_at ? Date.parse(load.ended_at) : nowMs(), many = 240;
+  const out = { time_s: [], temperature_degc: [], temperature_basis: [], carbon_potential_wt_pct: [], carbon_potential_basis: [], items: load.definition.items.map((each) => ({ name: each.name, case_depth_mm: [], surface_carbon_wt_pct: [], part_temperature_degc: [] })) };
+  for (let i = 0; i <= many; ++i) {
+    const at = begin + (end - begin) * i / many, min = (at - begin) / 60_000;
+    out.time_s.push(at / 1000);
+    out.temperature_degc.push(930 - 700 * Math.exp(-min / 15) + Math.sin(at / 400_000) * 4);
+    out.temperature_basis.push(load.trouble !== 'none' && min > 80 && min < 95 ? 'planned' : 'measured');
+    const segment = segmentAt(load, at);
+    out.carbon_potential_wt_pct.push(load.definition.recipe.segments[segment.index].carbon_potential_wt_pct * (1 - 0.3 * Math.exp(-segment.elapsed_min / 12)) + Math.sin(at / 300_000) * 0.015);
+    out.carbon_potential_basis.push(load.trouble !== 'none' && min > 60 && min < 72 ? 'held' : 'measured');
+    itemsAt(load, at, 4).forEach((each, k) => { out.items[k].case_depth_mm.push(each.case_depth_mm); out.items[k].surface_carbon_wt_pct.push(each.surface_carbon_wt_pct); out.items[k].part_temperature_degc.push(each.part_temperature_degc); });
+  }
+  return out;
+}
+function complaint(body) {
+  if (!String(body.name ?? '').trim()) return ['name', 'The load number is empty. Enter 1 to 60 characters.'];
+  if (!String(body.person ?? '').trim()) return ['person', 'The name of the person is empty.'];
+  if (!furnaces.some((each) => each.id === body.furnace)) return ['furnace', `No furnace is called "${body.furnace}".`];
+  for (const [i, each] of (body.items ?? []).entries()) {
+    const [low, high] = each.case_depth_window_mm ?? [];
+    if (typeof each.steel === 'string' && !steels.some((steel) => steel.id === each.steel)) return [`items[${i}].steel`, `The library has no steel "${each.steel}".`];
+    if (!(low > 0 && high > low)) return [`items[${i}].case_depth_window_mm`, `The window of item ${i + 1} must rise: its lower end ${low} mm is not below its upper end ${high} mm.`];
+  }
+  return null;
+}
+
+const types = { '.html': 'text/html; charset=utf-8', '.js': 'text/javascript', '.css': 'text/css', '.svg': 'image/svg+xml' };
+const policy = "default-src 'self'; script-src 'self'; style-src 'self'; object-src 'none'; base-uri 'none'; frame-ancestors 'none'";
+const streams = new Set();
+function send(response, status, body, headers = {}) {
+  response.writeHead(status, { 'content-type': status >= 400 ? 'application/problem+json' : 'application/json', 'cache-control': 'no-store', ...headers });
+  response.end(JSON.stringify(body));
+}
+const problem = (response, status, title, detail, field) => send(response, status, { type: `/problems/${title.toLowerCase().replaceAll(' ', '-')}`, title, status, detail, field });
+
+async function bodyOf(request) { let text = ''; for await (const piece of request) text += piece; return text ? JSON.parse(text) : {}; }
+async function answer(request, response) {
+  const url = new URL(request.url, 'http://localhost'), path = url.pathname;
+  if (path.startsWith('/dev/')) {
+    const until = Date.now() + 1000 * Number(url.searchParams.get('seconds') ?? 20);
+    if (path === '/dev/away') awayUntil = until; else unreadyUntil = until;
+    return send(response, 200, {});
+  }
+  if (Date.now() < awayUntil) return undefined;  // the connection hangs, as with a dead machine
+  if (!path.startsWith('/api/')) return file(path === '/' ? '/index.html' : path, response);
+  if (Date.now() < unreadyUntil) return problem(response, 503, 'Starting', 'hearthfront is starting: it re-derives the open loads from their readings.');
+  if (path === '/api/v1/floor') return send(response, 200, floor());
+  if (path === '/api/v1/steels') return send(response, 200, { steels });
+  if (path === '/api/v1/furnaces') return send(response, 200, { furnaces });
+  if (path === '/api/v1/events') {
+    response.writeHead(200, { 'content-type': 'text/event-stream', 'cache-control': 'no-store' });
+    response.write(`event: floor\nid: ${sequence}\ndata: ${JSON.stringify(floor())}\n\n`);
+    streams.add(response);
+    return request.on('close', () => streams.delete(response));
+  }
+  if (path === '/api/v1/loads' && request.method === 'GET') {
+    const want = url.searchParams, limit = Number(want.get('limit') ?? 50), before = Number(want.get('cursor') ?? Infinity);
+    const found = loads.filter((each) => each.id < before && (!want.get('furnace') || each.definition.furnace === want.get('furnace')) && (!want.get('state') || rowOf(each).state === want.get('state'))).reverse();
+    return send(response, 200, { loads: found.slice(0, limit).map(rowOf), next_cursor: found.length > limit ? String(found[limit - 1].id) : null });
+  }
+  if (path === '/api/v1/loads') {
+    const body = await bodyOf(request), bad = complaint(body);
+    if (bad) return problem(response, 422, 'Load not accepted', bad[1], bad[0]);
+    const load = { id: nextId++, trouble: 'none', ended_at: null, revision: 1, notes: [], definition: { chamber: 'main', ...body } };
+    loads.push(load);
+    return send(response, 201, rowOf(load), { location: `/api/v1/loads/${load.id}` });
+  }
+  const [, id, rest] = /^\/api\/v1\/loads\/(\d+)(?:\/(\w+))?$/.exec(path) ?? [];
+  const load = loads.find((each) => each.id === Number(id));
+  if (!load) return problem(response, 404, 'Unknown load', 'There is no load with this number. It may have been opened from an old link.');
+  if (rest === 'snapshot') {
+    const etag = `"${load.id}-${sequence}"`;
+    if (request.headers['if-none-match'] === etag) return response.writeHead(304).end();
+    return send(response, 200, snapshot(load), { etag });
+  }
+  if (rest === 'history') return send(response, 200, history(load));
+  const body = await bodyOf(request);
+  if (rest && !String(body.person ?? '').trim()) return problem(response, 422, 'Name missing', 'The name of the person is empty.', 'person');
+  if (rest === 'notes') { load.notes.push({ at: stamp(nowMs()), person: body.person, text: body.text }); ++sequence; return send(response, 201, {}); }
+  if (rest === 'end') { load.ended_at = body.ended_at ?? stamp(nowMs()); ++sequence; return send(response, 200, rowOf(load)); }
+  return send(response, 200, { ...rowOf(load), definition: load.definition });
+}
+function file(path, response) {
+  const place = normalize(join(dist, path));
+  if (!place.startsWith(dist) || !existsSync(place)) return problem(response, 404, 'Not found', path);
+  response.writeHead(200, { 'content-type': types[extname(place)] ?? 'application/octet-stream', 'content-security-policy': policy, 'x-content-type-options': 'nosniff' });
+  return createReadStream(place).pipe(response);
+}
+setInterval(() => {
+  ++sequence;
+  if (Date.now() < awayUntil || Date.now() < unreadyUntil) return;
+  const data = JSON.stringify(floor());
+  for (const stream of streams) {
+    stream.write(`event: floor\nid: ${sequence}\ndata: ${data}\n\n`);
+    for (const load of loads) if (!load.ended_at) stream.write(`event: load\ndata: ${JSON.stringify({ id: load.id, sequence })}\n\n`);
+  }
+}, 1000);
+createServer((request, response) => { answer(request, response).catch((error) => problem(response, 500, 'Mock failed', String(error))); })
+  .listen(port, '127.0.0.1', () => console.log(`invented plant at http://127.0.0.1:${port}/ (clock runs ${speed} times)`));

@@ -1,0 +1,214 @@
+// What the daemon says and takes: one type per document of /api/v1, field for field, units in the names.
+// Nothing is converted here; units.ts does that at the last moment before a figure is shown.
+
+export type Basis = 'measured' | 'held' | 'planned';
+export type Condition = 'no load' | 'no data yet' | 'live' | 'stale' | 'ended';
+export type Outcome = 'reached' | 'reached with note' | 'outside range' | 'failed';
+export type Window2 = [number, number];
+
+export interface InputTemperature { value_degc: number | null; basis: Basis; age_s: number | null }
+export interface InputCarbon { value_wt_pct: number | null; basis: Basis; age_s: number | null; source?: string }
+export interface Inputs { temperature: InputTemperature; carbon_potential: InputCarbon }
+
+export interface SegmentNow {
+  index: number;
+  name: string;
+  elapsed_min: number;
+  minutes_left: number;
+  overdue: boolean;
+}
+
+export interface Profile { depth_mm: number[]; carbon_wt_pct: number[] }
+
+export interface FloorItem {
+  name: string;
+  part: string;
+  steel: string;
+  shape: string;
+  criterion: { text: string };
+  case_depth_mm: number | null;
+  case_depth_window_mm: Window2;
+  surface_carbon_wt_pct: number | null;
+  surface_carbon_window_wt_pct: Window2 | null;
+  strip: Profile;
+}
+
+export interface FloorLoad {
+  id: number;
+  name: string;
+  chamber: string;
+  person: string;
+  started_at: string;
+  condition: Condition;
+  message: string | null;
+  inputs: Inputs;
+  segment: SegmentNow | null;
+  minutes_left: number | null;
+  item_count: number;
+  item: FloorItem | null;
+}
+
+export interface FloorFurnace {
+  id: string;
+  name: string;
+  process: string;
+  condition: Condition;
+  data_time: string | null;
+  data_age_s: number | null;
+  loads: FloorLoad[];
+}
+
+export interface Floor {
+  sequence: number;
+  now: string;
+  plant: string;
+  demo: boolean;
+  clock_speed: number;
+  band: string;
+  furnaces: FloorFurnace[];
+}
+
+export interface RecipeSegment {
+  name: string;
+  duration_min: number;
+  temperature_degc: number;
+  carbon_potential_wt_pct: number;
+}
+export interface Recipe { name: string; segments: RecipeSegment[] }
+
+export type Section =
+  | { shape: 'plate'; thickness_mm: number }
+  | { shape: 'cylinder'; diameter_mm: number }
+  | { shape: 'sphere'; diameter_mm: number }
+  | { shape: 'bore'; bore_diameter_mm: number; wall_mm: number };
+
+export type Criterion =
+  | { kind: 'hardness_hv'; limit_hv: number; martensite_pct: number }
+  | { kind: 'hardness_hrc'; limit_hrc: number; martensite_pct: number }
+  | { kind: 'carbon'; limit_wt_pct: number };
+
+export interface Composition { [element: string]: number }
+
+export interface ItemDefinition {
+  name: string;
+  part?: string;
+  quantity?: number;
+  steel: string | { name: string; composition_wt_pct: Composition };
+  core_carbon_wt_pct?: number;
+  section: Section;
+  criterion?: Criterion;
+  case_depth_window_mm: Window2;
+  surface_carbon_window_wt_pct?: Window2;
+  lag_min?: number;
+}
+
+export interface LoadDefinition {
+  name: string;
+  furnace: string;
+  chamber?: string;
+  person: string;
+  started_at: string;
+  charge_temperature_degc?: number;
+  lattice_s?: number;
+  recipe: Recipe;
+  items: ItemDefinition[];
+}
+
+export interface Item {
+  name: string;
+  part: string;
+  quantity: number;
+  steel: string;
+  shape: string;
+  criterion: { text: string; carbon_limit_wt_pct: number | null };
+  case_depth_mm: number | null;
+  case_depth_window_mm: Window2;
+  surface_carbon_wt_pct: number | null;
+  surface_carbon_window_wt_pct: Window2 | null;
+  total_depth_mm: number | null;
+  turnover_depth_mm: number | null;
+  depth_at_0p35_mm?: number | null;
+  depth_at_0p40_mm?: number | null;
+  carbon_uptake_g_m2: number | null;
+  balance_residual_relative: number | null;
+  part_temperature_degc: number | null;
+  outcome: Outcome;
+  profile: Profile;
+}
+
+export interface ModelNote { kind: string; item: string | null; from: string; to: string; text: string }
+export interface Gap { input: string; basis: Basis; from: string; to: string }
+export interface ShiftNote { at: string; person: string; text: string }
+
+export interface SnapshotLoad {
+  id: number;
+  name: string;
+  furnace: string;
+  furnace_name: string;
+  chamber: string;
+  person: string;
+  started_at: string;
+  ended_at: string | null;
+  state: 'open' | 'ended';
+  recipe: Recipe;
+  revision: number;
+}
+
+export interface Snapshot {
+  load: SnapshotLoad;
+  sequence: number;
+  now: string;
+  data_time: string | null;
+  data_age_s: number | null;
+  state_time: string | null;
+  condition: Condition;
+  message: string | null;
+  band: string;
+  inputs: Inputs;
+  segment: SegmentNow | null;
+  minutes_left: number | null;
+  items: Item[];
+  controlling_item: string | null;
+  notes: ModelNote[];
+  gaps: Gap[];
+  shift_notes: ShiftNote[];
+}
+
+export interface HistoryItem {
+  name: string;
+  case_depth_mm: (number | null)[];
+  surface_carbon_wt_pct: (number | null)[];
+  part_temperature_degc: (number | null)[];
+}
+export interface History {
+  time_s: number[];
+  temperature_degc: (number | null)[];
+  temperature_basis: Basis[];
+  carbon_potential_wt_pct: (number | null)[];
+  carbon_potential_basis: Basis[];
+  items: HistoryItem[];
+}
+
+export interface Furnace {
+  id: string;
+  name: string;
+  process: string;
+  chambers: { id: string; name: string }[];
+  lag_min: number;
+  open_loads: number[];
+}
+
+export interface Steel { id: string; standard: string; composition_wt_pct: Composition }
+
+export interface LoadRow {
+  id: number;
+  name: string;
+  furnace: string;
+  chamber: string;
+  person: string;
+  started_at: string;
+  ended_at: string | null;
+  state: 'open' | 'ended';
+}
+
+export interface Problem { type?: string; title?: string; status: number; detail?: string; field?: string }

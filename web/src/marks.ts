@@ -1,0 +1,77 @@
+// What needs a person's eye on a load, worst first. Each kind has a shape, a word and one of three colours:
+//   link  - the figures are old or there are none
+//   guess - an input of the model is not measured
+//   metal - the plan or the part itself
+// Nothing to say gives an empty list, and the screen stays quiet.
+import type { Condition, FloorItem, Inputs, SegmentNow } from './contract.ts';
+import { type LengthUnit, depthText, leastDepthMm } from './units.ts';
+import { ageText, minutesText } from './words.ts';
+
+export type MarkColour = 'link' | 'guess' | 'metal' | 'quiet';
+export type MarkShape = 'no load' | 'no data yet' | 'stale' | 'held' | 'planned' | 'past window' | 'overdue' | 'outside range' | 'ended' | 'away' | 'note' | 'demo';
+export interface Mark { shape: MarkShape; colour: MarkColour; word: string; sentence: string }
+
+export interface Marked {
+  condition: Condition;
+  message: string | null;
+  inputs: Inputs;
+  segment: SegmentNow | null;
+  item: Pick<FloorItem, 'case_depth_mm' | 'case_depth_window_mm'> & { outcome?: string } | null;
+  dataAgeS: number | null;
+}
+
+export function guessedInputs(inputs: Inputs, basis: 'held' | 'planned'): string[] {
+  const names: string[] = [];
+  if (inputs.temperature.basis === basis) names.push('temperature');
+  if (inputs.carbon_potential.basis === basis) names.push('carbon potential');
+  return names;
+}
+
+const inputsWord = (basis: 'held' | 'planned', names: readonly string[]): string =>
+  (names.length > 1 ? `${basis} inputs` : `${basis}: ${names[0]}`);
+
+export function marksOf(on: Marked): Mark[] {
+  const marks: Mark[] = [];
+  const { condition, message, item } = on;
+  let told = false;  // the daemon's own sentence is said once, by the first mark it fits
+  const say = (otherwise: string): string => {
+    if (message === null || told) return otherwise;
+    told = true;
+    return message;
+  };
+  if (condition === 'stale') {
+    const old = on.dataAgeS === null ? '' : ` for ${ageText(on.dataAgeS)}`;
+    marks.push({ shape: 'stale', colour: 'link', word: 'stale data', sentence: say(`No new reading${old}. Check the logger and its line.`) });
+  }
+  if (condition === 'no data yet') {
+    marks.push({ shape: 'no data yet', colour: 'link', word: 'no data yet', sentence: say('No reading of this load has come. Check the logger and its line.') });
+  }
+  const planned = guessedInputs(on.inputs, 'planned');
+  if (planned.length > 0) {
+    marks.push({ shape: 'planned', colour: 'guess', word: inputsWord('planned', planned), sentence: say(marks.length > 0 ? '' : 'The recipe’s own values stand in for readings.') });
+  }
+  const held = guessedInputs(on.inputs, 'held');
+  if (held.length > 0) {
+    marks.push({ shape: 'held', colour: 'guess', word: inputsWord('held', held), sentence: say(marks.length > 0 ? '' : 'The last reading is carried on.') });
+  }
+  if (item?.outcome === 'outside range' || item?.outcome === 'failed') {
+    marks.push({ shape: 'outside range', colour: 'metal', word: item.outcome === 'failed' ? 'calculation failed' : 'outside the law’s range', sentence: 'Do not rely on this depth. The model notes say why.' });
+  }
+  if (item && item.case_depth_mm !== null && item.case_depth_mm > item.case_depth_window_mm[1]) {
+    marks.push({ shape: 'past window', colour: 'metal', word: 'past the window', sentence: 'Depth cannot go back: tell the supervisor.' });
+  }
+  if (on.segment?.overdue) {
+    marks.push({ shape: 'overdue', colour: 'metal', word: 'over plan', sentence: `By ${minutesText(-on.segment.minutes_left)}. End the load here once it is out.` });
+  }
+  return marks;
+}
+
+// Where the depth stands against the drawing, as plain arithmetic: no forecast and no chance.
+export function reachText(item: Pick<FloorItem, 'case_depth_mm' | 'case_depth_window_mm'>, unit: LengthUnit, ended = false): string {
+  const [low, high] = item.case_depth_window_mm;
+  const depth = item.case_depth_mm;
+  if (depth === null) return ended ? 'no case' : 'no case yet';
+  if (depth < low) return `${depthText(Math.max(low - depth, leastDepthMm(unit)), unit)} ${ended ? 'short' : 'to go'}`;
+  if (depth <= high) return 'in the window';
+  return `${depthText(Math.max(depth - high, leastDepthMm(unit)), unit)} too deep`;
+}

@@ -1,0 +1,34 @@
+// The Floor: every furnace in the daemon's own order, worst first.
+import type { FloorFurnace } from '../api.ts';
+import { live } from '../live.ts';
+import { Shape } from '../pictures/mark_shape.tsx';
+import { startLink } from '../routes.ts';
+import { useStore } from '../store.ts';
+import { FloorCard } from './floor_card.tsx';
+
+export function Floor() {
+  const { floor, link } = useStore(live);
+  if (!floor) return link === 'away' ? null : <p class="waiting" role="status">Asking hearthfront for the floor …</p>;
+  const loads = floor.furnaces.reduce((sum, furnace) => sum + furnace.loads.length, 0);
+  const idle = floor.furnaces.filter((furnace) => furnace.loads.length === 0);
+  const busy = floor.furnaces.filter((furnace) => furnace.loads.length > 0);
+  return <>
+    <h1 class="title">Floor <small>{count(floor.furnaces.length, 'furnace')}, {count(loads, 'load')} · worst first</small></h1>
+    <div class={`cards ${loads > 4 ? 'many' : ''}`}>
+      {busy.flatMap((furnace) => furnace.loads.map((load) => <FloorCard key={load.id} furnace={furnace} load={load} band={floor.band} />))}
+    </div>
+    {idle.length > 0 && <div class="idles">{idle.map((furnace) => <Idle key={furnace.id} furnace={furnace} />)}</div>}
+    {floor.furnaces.length === 0 && <p class="waiting">The plant file names no furnace yet.</p>}
+  </>;
+}
+
+const count = (many: number, word: string): string => `${many} ${word}${many === 1 ? '' : 's'}`;
+
+// A furnace without a load takes no attention: one quiet line and the way to start one.
+function Idle({ furnace }: { furnace: FloorFurnace }) {
+  return <article class="idle" data-testid="idle" data-furnace={furnace.id}>
+    <h2>{furnace.name}</h2>
+    <p class="mark quiet" data-mark="no load"><Shape name="no load" /><b>no load</b></p>
+    <a class="button plain" href={startLink(furnace.id)} aria-label={`Start a load in ${furnace.name}`}>Start a load</a>
+  </article>;
+}

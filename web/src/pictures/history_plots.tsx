@@ -1,0 +1,102 @@
+// The load over time: case depth towards its window, temperature and carbon potential against the recipe.
+// Stretches where an input was held or planned carry a pattern, named in the legend.
+import type { ComponentChildren } from 'preact';
+import { useMemo, useRef } from 'preact/hooks';
+import type uPlot from 'uplot';
+import type { History, Item, Snapshot } from '../contract.ts';
+import { type LengthUnit, type TemperatureUnit, carbonNumber, depthText, fromDegc, fromMm, lengthName, temperatureName, temperatureText } from '../units.ts';
+import { clockText } from '../words.ts';
+import { type RecipeStep, type Stretch, extent, nearRecipe, recipeSteps, stretchesOf } from './history_series.ts';
+import { type Palette, Plot, axes, inside } from './plot.tsx';
+
+interface Props { snapshot: Snapshot; history: History; item: Item; length: LengthUnit; temperature: TemperatureUnit }
+
+interface Behind { stretches: Stretch[]; steps: { from_s: number; to_s: number; value: number }[]; band: [number, number] | null; now_s: number | null }
+
+export function HistoryPlots({ snapshot, history, item, length, temperature }: Props) {
+  const steps = recipeSteps(snapshot.load.recipe, Date.parse(snapshot.load.started_at) / 1000);
+  const times = history.time_s;
+  const startS = Math.min(times[0] ?? Infinity, steps[0]?.from_s ?? Infinity);
+  const endS = Math.max(times[times.length - 1] ?? -Infinity, steps[steps.length - 1]?.to_s ?? -Infinity);
+  const now_s = snapshot.load.state === 'open' && snapshot.state_time ? Date.parse(snapshot.state_time) / 1000 : null;
+  const series = history.items.find((each) => each.name === item.name);
+  const shared = { times, startS, endS, dataKey: `${item.name} ${length} ${temperature} ${snapshot.load.state}` };
+  const depth = series?.case_depth_mm.map((mm) => (mm === null ? null : fromMm(mm, length))) ?? [];
+  const heat = history.temperature_degc.map((degc) => (degc === null ? null : fromDegc(degc, temperature)));
+  const part = series?.part_temperature_degc.map((degc) => (degc === null ? null : fromDegc(degc, temperature))) ?? [];
+  const band = item.case_depth_window_mm.map((mm) => fromMm(mm, length)) as [number, number];
+  const at = (i: number) => clockText((times[i] ?? 0) * 1000);
+  const stepsOf = (pick: (step: RecipeStep) => number) => steps.map((step) => ({ from_s: step.from_s, to_s: step.to_s, value: pick(step) }));
+  const heatSteps = stepsOf((step) => fromDegc(step.temperature_degc, temperature));
+  const carbonSteps = stepsOf((step) => step.carbon_potential_wt_pct);
+  return <div class="histories">
+    <Timeline {...shared} title="Case depth over the cycle" text={`Case depth of ${item.part} over time, now ${depthText(item.case_depth_mm, length)}.`} unitName={lengthName(length)} lines={[depth]} range={[0, Math.max(extent([...depth, band[1]], band[1])[1], band[1] * 1.15)]}
+      behind={{ stretches: [], steps: [], band, now_s }} readout={(i) => `${at(i)}: ${depthText(series?.case_depth_mm[i] ?? null, length)}`} legend={<ul class="legend"><Key kind="line">computed depth</Key><Key kind="asked">asked</Key>{now_s !== null && <Key kind="now">now</Key>}</ul>} />
+    <Timeline {...shared} title="Temperature" text="Measured temperature against the recipe." unitName={temperatureName(temperature)} lines={[heat, part]} range={nearRecipe(heat, heatSteps, temperature === 'degc' ? 100 : 180)}
+      behind={{ stretches: stretchesOf(times, history.temperature_basis), steps: heatSteps, band: null, now_s }}
+      readout={(i) => `${at(i)}: ${temperatureText(history.temperature_degc[i] ?? null, temperature)}, ${history.temperature_basis[i] ?? ''}`} legend={<InputLegend thin="part" />} />
+    <Timeline {...shared} title="Carbon potential" text="Carbon potential against the recipe." unitName="% C" lines={[history.carbon_potential_wt_pct, series?.surface_carbon_wt_pct ?? []]} range={nearRecipe(history.carbon_potential_wt_pct, carbonSteps, 0.3)}
+      behind={{ stretches: stretchesOf(times, history.carbon_potential_basis), steps: carbonSteps, band: null, now_s }}
+      readout={(i) => `${at(i)}: ${carbonNumber(history.carbon_potential_wt_pct[i] ?? null)} % C, ${history.carbon_potential_basis[i] ?? ''}`} legend={<InputLegend thin="surface of the part" />} />
+  </div>;
+}
+
+function InputLegend({ thin }: { thin: string }) {
+  return <ul class="legend"><Key kind="line">furnace</Key><Key kind="thin">{thin}</Key><Key kind="dash">recipe</Key><Key kind="held">held</Key><Key kind="planned">planned</Key></ul>;
+}
+
+const keys = {
+  line: <path class="k-line" d="M1 8h32" />, thin: <path class="k-thin" d="M1 8h32" />, dash: <path class="k-dash" d="M1 8h32" />, now: <path class="k-dash" d="M17 0v16" />,
+  asked: <rect class="k-asked" x="1" y="1" width="32" height="14" />,
+  held: <path class="k-guess" d="M1 3h32M1 8h32M1 13h32" />,
+  planned: <path class="k-guess k-dots" d="M3 4h30M3 12h30M8 8h24" />,
+};
+const Key = ({ kind, children }: { kind: keyof typeof keys; children: string }) => <li><svg viewBox="0 0 34 16" aria-hidden="true">{keys[kind]}</svg>{children}</li>;
+
+interface TimelineProps { title: string; text: string; unitName: string; dataKey: string; times: number[]; startS: number; endS: number; lines: (number | null)[][]; range: [number, number]; behind: Behind; readout: (i: number) => string; legend: ComponentChildren }
+function Timeline({ title, text, unitName, dataKey, times, startS, endS, lines, range, behind, readout, legend }: TimelineProps) {
+  const seen = useRef({ behind, startS, endS, range });
+  seen.current = { behind, startS, endS, range };
+  const data = useMemo<uPlot.AlignedData>(() => [times, ...lines.map((line) => (line.length === times.length ? line : times.map(() => null)))], [times, dataKey]);
+  const make = (colours: Palette) => ({
+    scales: { x: { time: true, range: (): [number, number] => [seen.current.startS, seen.current.endS] }, y: { range: (): [number, number] => seen.current.range } },
+    axes: axes(colours, unitName, (splits) => splits.map((second) => clockText(second * 1000))),
+    series: [{}, { stroke: colours.ink, width: 3, points: { show: false } }, { stroke: colours.line, width: 2, points: { show: false } }].slice(0, lines.length + 1),
+    hooks: { drawClear: [(plot: uPlot) => drawBehind(plot, seen.current.behind, colours)] },
+  });
+  return <Plot title={title} text={text} data={data} make={make} makeKey={unitName} height={250} readout={readout} legend={legend} />;
+}
+
+function drawBehind(plot: uPlot, behind: Behind, colours: Palette): void {
+  inside(plot, (ctx, ratio) => {
+    const { left, top, width, height } = plot.bbox;
+    const x = (second: number) => plot.valToPos(second, 'x', true);
+    const y = (value: number) => plot.valToPos(value, 'y', true);
+    if (behind.band) {
+      ctx.fillStyle = colours.asked;
+      ctx.fillRect(left, y(behind.band[1]), width, y(behind.band[0]) - y(behind.band[1]));
+    }
+    for (const stretch of behind.stretches) pattern(ctx, x(stretch.from_s), Math.max(x(stretch.to_s), x(stretch.from_s) + 3 * ratio), top, height, stretch.basis, colours.guess, ratio);
+    ctx.strokeStyle = colours.mid;
+    ctx.lineWidth = 2 * ratio;
+    ctx.setLineDash([7 * ratio, 5 * ratio]);
+    ctx.beginPath();
+    for (const step of behind.steps) { ctx.lineTo(x(step.from_s), y(step.value)); ctx.lineTo(x(step.to_s), y(step.value)); }
+    if (behind.now_s !== null) { ctx.moveTo(x(behind.now_s), top); ctx.lineTo(x(behind.now_s), top + height); }
+    ctx.stroke();
+  });
+}
+
+function pattern(ctx: CanvasRenderingContext2D, from: number, to: number, top: number, height: number, basis: 'held' | 'planned', colour: string, ratio: number): void {
+  ctx.save();
+  ctx.fillStyle = colour;
+  ctx.globalAlpha = 0.12;
+  ctx.fillRect(from, top, to - from, height);
+  ctx.globalAlpha = 0.85;
+  const gap = 7 * ratio;
+  for (let y = top + gap, row = 0; y < top + height; y += gap, ++row) {
+    if (basis === 'held') ctx.fillRect(from, y, to - from, ratio);
+    else for (let x = from + (row % 2) * gap / 2; x < to; x += gap) ctx.fillRect(x, y, 2 * ratio, 2 * ratio);
+  }
+  ctx.restore();
+}

@@ -1,0 +1,51 @@
+// The history document prepared for drawing: stretches of guessed input and the recipe as steps. Pure.
+import type { Basis, Recipe } from '../contract.ts';
+
+export interface Stretch { from_s: number; to_s: number; basis: 'held' | 'planned' }
+
+// Stretches without measurement. A point's basis speaks for the time up to the next point.
+export function stretchesOf(time_s: readonly number[], basis: readonly Basis[]): Stretch[] {
+  const stretches: Stretch[] = [];
+  for (let i = 0; i < time_s.length; ++i) {
+    const kind = basis[i];
+    if (kind !== 'held' && kind !== 'planned') continue;
+    const to_s = time_s[i + 1] ?? time_s[i]!;
+    const last = stretches[stretches.length - 1];
+    if (last && last.basis === kind && last.to_s === time_s[i]) last.to_s = to_s;
+    else stretches.push({ from_s: time_s[i]!, to_s, basis: kind });
+  }
+  return stretches;
+}
+
+export interface RecipeStep { from_s: number; to_s: number; name: string; temperature_degc: number; carbon_potential_wt_pct: number }
+export function recipeSteps(recipe: Recipe, startedS: number): RecipeStep[] {
+  let at = startedS;
+  return recipe.segments.map((segment) => {
+    const from_s = at;
+    at += segment.duration_min * 60;
+    return { from_s, to_s: at, name: segment.name, temperature_degc: segment.temperature_degc, carbon_potential_wt_pct: segment.carbon_potential_wt_pct };
+  });
+}
+
+// Ends of a scale that hold all values, with a margin; null values are passed over.
+export function extent(values: readonly (number | null | undefined)[], least: number): [number, number] {
+  let low = Infinity, high = -Infinity;
+  for (const value of values) {
+    if (value === null || value === undefined || !Number.isFinite(value)) continue;
+    low = Math.min(low, value);
+    high = Math.max(high, value);
+  }
+  if (low > high) return [0, least];
+  const margin = Math.max((high - low) * 0.08, (least - (high - low)) / 2);
+  return [low - margin, high + margin];
+}
+
+// A scale around the recipe's own values: the heat-up from cold is cut off so that an offset from the
+// recipe can be seen. What runs above the recipe is always kept in view.
+export function nearRecipe(measured: readonly (number | null)[], steps: readonly { value: number }[], below: number): [number, number] {
+  const asked = steps.map((step) => step.value);
+  if (asked.length === 0) return extent(measured, below);
+  const low = Math.min(...asked) - below;
+  const high = extent([...measured, ...asked], 0)[1];
+  return [low, Math.max(high, Math.max(...asked) + below * 0.2)];
+}

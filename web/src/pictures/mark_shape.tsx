@@ -1,0 +1,25 @@
+// One small drawing for each mark. Drawn in the colour of the text beside it; never shown without its word.
+import type { MarkShape } from '../marks.ts';
+
+const lines: Record<MarkShape, string> = {
+  'no load': 'M4 9v14h20V9',                                   // an empty tray
+  'no data yet': 'M4 14h.01M14 14h.01M24 14h.01',              // dots where a trace should be
+  stale: 'M2 17l4-8 5 11 4-7h3M22 4v20',                       // a trace that stops at a wall
+  held: 'M2 14a4 4 0 1 0 8 0a4 4 0 1 0-8 0M10 14h16',            // one reading, drawn out flat
+  planned: 'M1 23h7M11 23h3v-5M14 14V8h4M21 8h6',              // a broken staircase: the recipe, not the furnace
+  'past window': 'M3 14V7h13v7M23 3v22',                       // a bar beyond its bracket
+  overdue: 'M14 3a11 11 0 1 0 11 11M14 7v7l8-5',               // a dial run past its end
+  'outside range': 'M4 4v20h20M8 12l8-4M20 4l6-2M16 20l6-8',   // points off the paper
+  ended: 'M4 9v14h20V9zM9 16l4 4 7-9',                         // a closed tray
+  away: 'M2 14h8M10 7v14M18 7v14M18 14h8',                     // a line pulled apart
+  note: 'M5 4h13l5 5v15H5zM10 13h8M10 18h8',                   // a written sheet
+  demo: 'M4 4h6M14 4h6M24 4v6M24 14v6M24 24h-6M14 24H8M4 24v-6M4 14V8',  // a dashed frame: not the real thing
+};
+
+const heavy: Partial<Record<MarkShape, number>> = { 'no data yet': 6 };
+
+export function Shape({ name }: { name: MarkShape }) {
+  return <svg class="shape" viewBox="0 0 28 28" aria-hidden="true" focusable="false">
+    <path d={lines[name]} fill="none" stroke="currentColor" stroke-width={heavy[name] ?? 3.2} stroke-linecap={heavy[name] ? 'round' : 'butt'} stroke-linejoin="miter" />
+  </svg>;
+}

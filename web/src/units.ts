@@ -1,0 +1,50 @@
+// From the contract's units to the reader's and back, and how many digits a figure deserves.
+// Depth is never shown finer than 0.01 mm (0.001 inch): the model's own inputs are not known better.
+
+export type TemperatureUnit = 'degc' | 'degf';
+export type LengthUnit = 'mm' | 'inch';
+
+const mmPerInch = 25.4;  // exact by definition of the inch
+
+export const fromMm = (mm: number, unit: LengthUnit): number => (unit === 'mm' ? mm : mm / mmPerInch);
+export const toMm = (shown: number, unit: LengthUnit): number => (unit === 'mm' ? shown : shown * mmPerInch);
+export const fromDegc = (degc: number, unit: TemperatureUnit): number => (unit === 'degc' ? degc : degc * 1.8 + 32);
+export const toDegc = (shown: number, unit: TemperatureUnit): number => (unit === 'degc' ? shown : (shown - 32) / 1.8);
+
+export const lengthName = (unit: LengthUnit): string => (unit === 'mm' ? 'mm' : 'in');
+export const temperatureName = (unit: TemperatureUnit): string => (unit === 'degc' ? '°C' : '°F');
+
+const fixed = (value: number, digits: number): string => {
+  const text = value.toFixed(digits);
+  return Number(text) === 0 ? (0).toFixed(digits) : text;  // no "-0.00"
+};
+
+export const depthDigits = (unit: LengthUnit): number => (unit === 'mm' ? 2 : 3);
+// The least depth that can be told apart on the screen: a shortfall is never rounded to nothing.
+export const leastDepthMm = (unit: LengthUnit): number => (unit === 'mm' ? 0.01 : 0.001 * mmPerInch);
+export const depthNumber = (mm: number | null, unit: LengthUnit): string =>
+  (mm === null || !Number.isFinite(mm) ? '–' : fixed(fromMm(mm, unit), depthDigits(unit)));
+export const depthText = (mm: number | null, unit: LengthUnit): string =>
+  (mm === null ? '–' : `${depthNumber(mm, unit)} ${lengthName(unit)}`);
+// Without the unit, for places beside a figure that carries it.
+export const rangeText = (window: readonly [number, number], unit: LengthUnit): string =>
+  `${depthNumber(window[0], unit)} – ${depthNumber(window[1], unit)}`;
+export const windowText = (window: readonly [number, number], unit: LengthUnit): string =>
+  `${rangeText(window, unit)} ${lengthName(unit)}`;
+
+export const temperatureText = (degc: number | null, unit: TemperatureUnit): string =>
+  (degc === null ? '–' : `${fixed(fromDegc(degc, unit), 0)} ${temperatureName(unit)}`);
+export const carbonNumber = (wtPct: number | null): string => (wtPct === null ? '–' : fixed(wtPct, 2));
+export const carbonText = (wtPct: number | null): string => (wtPct === null ? '–' : `${fixed(wtPct, 2)} % C`);
+export const carbonWindowText = (window: readonly [number, number]): string =>
+  `${fixed(window[0], 2)} – ${fixed(window[1], 2)} % C`;
+
+// What a person types: decimal comma or point, blanks around. null when it is no number.
+export function numberFrom(text: string): number | null {
+  const plain = text.trim().replace(',', '.').replace('−', '-');
+  if (!/^[+-]?(\d+\.?\d*|\.\d+)$/.test(plain)) return null;
+  return Number(plain);
+}
+
+// The shortest decimal of at most `digits` places: 930 stays "930", 0.9 stays "0.9".
+export const plainNumber = (value: number, digits: number): string => String(Number(value.toFixed(digits)));
