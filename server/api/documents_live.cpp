@@ -12,9 +12,7 @@ namespace {
 // The floor's strip is drawn a few hundred pixels wide: more digits or points would not be seen.
 constexpr std::size_t strip_points = 40;
 
-double rounded(double value, double unit) {
-  return std::round(value / unit) * unit;
-}
+double rounded(double value) { return std::round(value * 1e4) / 1e4; }
 
 Json time_or_null(std::optional<std::int64_t> time_us) {
   return time_us ? Json(format_time(*time_us)) : Json(nullptr);
@@ -52,9 +50,9 @@ Json strip_json(const ItemResult& item, const Item& definition) {
   for (std::size_t point = 0; point < strip_points; ++point) {
     const double wanted = to_mm * static_cast<double>(point) / static_cast<double>(strip_points - 1);
     while (next + 1 < x.size() && x[next] < wanted) ++next;
-    if (!depth.empty() && depth.back() >= rounded(x[next], 1e-4)) continue;
-    depth.push_back(rounded(x[next], 1e-4));
-    carbon.push_back(rounded(item.profile_carbon_wt_pct[next], 1e-4));
+    if (!depth.empty() && depth.back() >= rounded(x[next])) continue;
+    depth.push_back(rounded(x[next]));
+    carbon.push_back(rounded(item.profile_carbon_wt_pct[next]));
   }
   return {{"depth_mm", depth}, {"carbon_wt_pct", carbon}};
 }

@@ -29,8 +29,8 @@ Response serve_file(const Request& request) {
   if (!asset)
     throw Problem{404, "unknown-path", "There is nothing at this address",
                   "No route or file is called " + request.path + ". The API is described at /api/v1/openapi.yaml.", ""};
-  // Names under /assets/ carry a hash of their content.
-  const bool hashed = path.starts_with("/assets/");
+  // The bundler puts a hash of the content into the name of every file but the page itself.
+  const bool hashed = path != "/index.html" && path != "/openapi.yaml";
   return {200,
           content_type_of(path),
           std::string(asset->body),

@@ -3,149 +3,214 @@
 #include <array>
 #include <cassert>
 #include <cmath>
+#include <memory>
 
-#include "solver/diffusion/fast_exp.h"
+#include "solver/diffusion/potential.h"
 
 namespace hearthfront::solver {
 namespace {
 
 constexpr double gamma = 0.29289321881345247560;  // 1 - 1/sqrt(2)
 
-// What the kernel needs of the lanes of one block, unpacked for vector loads.
-template <std::size_t W>
-struct Lanes {
-  double rise, fold;
-  std::array<double, W> hump, scale, exponent, slope;
-  std::array<double, W> equilibrium, resistance, forced;
-
-  explicit Lanes(std::span<const LaneConditions> c)
-      : rise(c[0].diffusivity.rise), fold(c[0].diffusivity.fold) {
-    for (std::size_t l = 0; l < W; ++l) {
-      const LaneConditions& lane = c[l < c.size() ? l : c.size() - 1];  // spare lanes repeat the last
-      hump[l] = lane.diffusivity.hump;
-      scale[l] = lane.diffusivity.scale;
-      exponent[l] = lane.diffusivity.exponent;
-      slope[l] = lane.diffusivity.slope;
-      equilibrium[l] = lane.surface.equilibrium_wt_pct;
-      resistance[l] = lane.surface.resistance_s_per_m;
-      forced[l] = lane.surface.forced_wt_pct_m_per_s;
-    }
-  }
-};
-
 struct Scratch {
-  double *left, *right, *flux, *pivot, *k1, *k2, *trial;
+  double *lower, *upper, *pivot, *diffusivity, *phi, *k1, *k2;
 };
 
-// Fluxes through all faces; with Derivatives also d(flux)/dC of the cell on either side. Face 0 is the
-// surface: its "left" slot is unused, its "right" slot holds d(surface flux)/dC_0.
-template <std::size_t W, bool Derivatives>
-void evaluate(const Mesh& mesh, const Lanes<W>& lanes, const double* __restrict u, const Scratch& s) {
-  const std::size_t n = mesh.cells();
-  const double* __restrict conductance = mesh.conductance_per_m.data();
-  double* __restrict flux = s.flux;
-  double* __restrict left = s.left;
-  double* __restrict right = s.right;
-  for (std::size_t i = 1; i < n; ++i) {
-    const double g = conductance[i];
-    for (std::size_t l = 0; l < W; ++l) {
-      const double inner = u[i * W + l];
-      const double outer = u[(i - 1) * W + l];
-      const double mean = 0.5 * (inner + outer);
-      const double inverse = 1.0 / (1.0 - lanes.fold * mean);
-      const double z = lanes.rise * mean * inverse;
-      const double hump = 1.0 + lanes.hump[l] * z * (1.0 - z);
-      const double e = lanes.scale[l] * g * fast_exp(lanes.exponent[l] + lanes.slope[l] * z);
-      const double d = e * hump;
-      const double drop = outer - inner;
-      flux[i * W + l] = d * drop;
-      if constexpr (Derivatives) {
-        const double dz = lanes.rise * inverse * inverse;
-        const double half = 0.5 * drop * dz * (lanes.slope[l] * d + e * lanes.hump[l] * (1.0 - 2.0 * z));
-        left[i * W + l] = d + half;
-        right[i * W + l] = half - d;
-      }
-    }
-  }
-  const double half_cell = 0.5 * mesh.face_m[1];
-  for (std::size_t l = 0; l < W; ++l) {
-    const double c = u[l];
-    const double inverse = 1.0 / (1.0 - lanes.fold * c);
-    const double z = lanes.rise * c * inverse;
-    const double hump = 1.0 + lanes.hump[l] * z * (1.0 - z);
-    const double e = lanes.scale[l] * fast_exp(lanes.exponent[l] + lanes.slope[l] * z);
-    const double metal = half_cell / (e * hump);
-    const double transfer = 1.0 / (lanes.resistance[l] + metal);
-    const double drive = lanes.equilibrium[l] - c;
-    flux[l] = lanes.forced[l] + drive * transfer;
-    if constexpr (Derivatives) {
-      const double dz = lanes.rise * inverse * inverse;
-      const double relative = dz * (lanes.slope[l] + lanes.hump[l] * (1.0 - 2.0 * z) / hump);  // dlnD/dC
-      right[l] = transfer * (drive * transfer * metal * relative - 1.0);
-    }
-  }
-  for (std::size_t l = 0; l < W; ++l) flux[n * W + l] = 0.0;
+// Passes without dependence between nodes go in chunks: one node of W lanes, or two nodes of one lane (the
+// mesh has an even number). A chunk at double index at = node * W; its neighbours are W further.
+template <std::size_t W>
+using Chunk = typename Potential<W>::Chunk;
+
+// A quantity of the mesh for the chunk that begins at this node.
+template <std::size_t W>
+Chunk<W> of_nodes(const double* quantity, std::size_t node) {
+  if constexpr (W == 1)
+    return Chunk<W>::load(quantity + node);
+  else
+    return Chunk<W>::all(quantity[node]);
 }
 
-// Thomas factorisation of V - gamma dt J; pivot holds the reciprocal pivots, left/right are left scaled
-// by gamma dt for the two solves.
+// Row differences of a potential: flux in minus flux out, nothing added at the surface.
 template <std::size_t W>
-void factor(const Mesh& mesh, double gamma_dt, const Scratch& s) {
-  const std::size_t n = mesh.cells();
-  for (std::size_t i = 0; i < n * W; ++i) {
-    s.left[i] *= gamma_dt;
-    s.right[i] *= gamma_dt;
-  }
-  for (std::size_t l = 0; l < W; ++l) s.left[n * W + l] = s.right[n * W + l] = 0.0;
-  for (std::size_t i = 0; i < n; ++i) {
-    for (std::size_t l = 0; l < W; ++l) {
-      double diagonal = mesh.volume_m[i] - s.right[i * W + l] + s.left[(i + 1) * W + l];
-      // sub(i) = -left(i), super(i-1) = right(i)
-      if (i > 0) diagonal += s.left[i * W + l] * s.right[i * W + l] * s.pivot[(i - 1) * W + l];
-      s.pivot[i * W + l] = 1.0 / diagonal;
+void divergence(const Mesh& mesh, const double* __restrict phi, double* __restrict net) {
+  using C = Chunk<W>;
+  using P = Pack<W>;
+  const std::size_t n = mesh.nodes();
+  const double* __restrict g = mesh.conductance_per_m.data();
+  const auto flux_into = [&](std::size_t i) {
+    return of_nodes<W>(g, i) * (C::load(phi + (i - 1) * W) - C::load(phi + i * W));
+  };
+  (g[1] * (P::load(phi + W) - P::load(phi))).store(net);
+  [[maybe_unused]] C in = flux_into(1);
+  if constexpr (W == 1) {
+    for (std::size_t i = 1; i + 1 < n; i += 2) (flux_into(i) - flux_into(i + 1)).store(net + i);
+  } else {
+    for (std::size_t i = 1; i + 1 < n; ++i) {
+      const C out = flux_into(i + 1);
+      (in - out).store(net + i * W);
+      in = out;
     }
   }
+  const std::size_t end = (n - 1) * W;
+  (g[n - 1] * (P::load(phi + end - W) - P::load(phi + end))).store(net + end);
+}
+
+// The rows of M + gamma dt K diag(D), without the surface.
+template <std::size_t W>
+void assemble(const Mesh& mesh, double gamma_dt, const Scratch& s) {
+  using C = Chunk<W>;
+  using P = Pack<W>;
+  const std::size_t n = mesh.nodes();
+  const double* __restrict g = mesh.conductance_per_m.data();
+  const double* __restrict d = s.diffusivity;
+  double* __restrict lower = s.lower;
+  double* __restrict upper = s.upper;
+  double* __restrict pivot = s.pivot;
+  P::all(0.0).store(lower);
+  (P::all(mesh.mass_upper_m[0]) - (gamma_dt * g[1]) * P::load(d + W)).store(upper);
+  (P::all(mesh.mass_diagonal_m[0]) + (gamma_dt * g[1]) * P::load(d)).store(pivot);
+  for (std::size_t i = 1; i + 1 < n; i += C::size / W) {
+    const std::size_t at = i * W;
+    const C outer = gamma_dt * of_nodes<W>(g, i), inner = gamma_dt * of_nodes<W>(g, i + 1);
+    (of_nodes<W>(mesh.mass_lower_m.data(), i) - outer * C::load(d + at - W)).store(lower + at);
+    (of_nodes<W>(mesh.mass_upper_m.data(), i) - inner * C::load(d + at + W)).store(upper + at);
+    (of_nodes<W>(mesh.mass_diagonal_m.data(), i) + (outer + inner) * C::load(d + at)).store(pivot + at);
+  }
+  const std::size_t end = (n - 1) * W;
+  (P::all(mesh.mass_lower_m[n - 1]) - (gamma_dt * g[n - 1]) * P::load(d + end - W)).store(lower + end);
+  P::all(0.0).store(upper + end);
+  (P::all(mesh.mass_diagonal_m[n - 1]) + (gamma_dt * g[n - 1]) * P::load(d + end)).store(pivot + end);
+}
+
+// Twisted factorisation: elimination from both ends at once, which halves the chain of dependent divisions
+// where one lane runs alone. Left behind: reciprocal pivots, and off-diagonals multiplied by them.
+template <std::size_t W>
+void factor(std::size_t n, const Scratch& s) {
+  using P = Pack<W>;
+  double* __restrict lower = s.lower;
+  double* __restrict upper = s.upper;
+  double* __restrict pivot = s.pivot;
+  const std::size_t middle = n / 2;  // one more row on the left of it than on the right
+  P left = P::all(0.0), right = left;
+  const auto row_of_left = [&](std::size_t i) {
+    const P low = P::load(lower + i * W);
+    const P inverse = 1.0 / (P::load(pivot + i * W) - low * left);
+    inverse.store(pivot + i * W);
+    (low * inverse).store(lower + i * W);
+    left = P::load(upper + i * W) * inverse;
+    left.store(upper + i * W);
+  };
+  for (std::size_t i = 0; i + 1 < middle; ++i) {
+    row_of_left(i);
+    const std::size_t j = (n - 1 - i) * W;
+    const P up = P::load(upper + j);
+    const P inverse = 1.0 / (P::load(pivot + j) - up * right);
+    inverse.store(pivot + j);
+    (up * inverse).store(upper + j);
+    right = P::load(lower + j) * inverse;
+    right.store(lower + j);
+  }
+  row_of_left(middle - 1);
+  const std::size_t m = middle * W;
+  const P low = P::load(lower + m), up = P::load(upper + m);
+  const P inverse = 1.0 / (P::load(pivot + m) - low * left - up * right);
+  inverse.store(pivot + m);
+  (low * inverse).store(lower + m);
+  (up * inverse).store(upper + m);
 }
 
 template <std::size_t W>
 void solve(std::size_t n, const Scratch& s, double* __restrict x) {
-  for (std::size_t l = 0; l < W; ++l) x[l] *= s.pivot[l];
-  for (std::size_t i = 1; i < n; ++i)
-    for (std::size_t l = 0; l < W; ++l)
-      x[i * W + l] = (x[i * W + l] + s.left[i * W + l] * x[(i - 1) * W + l]) * s.pivot[i * W + l];
-  for (std::size_t i = n - 1; i-- > 0;)
-    for (std::size_t l = 0; l < W; ++l)
-      x[i * W + l] -= s.right[(i + 1) * W + l] * s.pivot[i * W + l] * x[(i + 1) * W + l];
+  using P = Pack<W>;
+  const double* __restrict lower = s.lower;
+  const double* __restrict upper = s.upper;
+  const double* __restrict pivot = s.pivot;
+  const std::size_t middle = n / 2;
+  P left = P::all(0.0), right = left;
+  const auto inward_left = [&](std::size_t i) {
+    left = P::load(x + i) * P::load(pivot + i) - P::load(lower + i) * left;
+    left.store(x + i);
+  };
+  for (std::size_t i = 0; i + 1 < middle; ++i) {
+    inward_left(i * W);
+    const std::size_t j = (n - 1 - i) * W;
+    right = P::load(x + j) * P::load(pivot + j) - P::load(upper + j) * right;
+    right.store(x + j);
+  }
+  inward_left((middle - 1) * W);
+  const std::size_t m = middle * W;
+  left = P::load(x + m) * P::load(pivot + m) - P::load(lower + m) * left - P::load(upper + m) * right;
+  right = left;
+  left.store(x + m);
+  const auto outward_left = [&](std::size_t i) {
+    left = P::load(x + i) - P::load(upper + i) * left;
+    left.store(x + i);
+  };
+  for (std::size_t i = 1; i < middle; ++i) {
+    outward_left((middle - i) * W);
+    const std::size_t j = (middle + i) * W;
+    right = P::load(x + j) - P::load(lower + j) * right;
+    right.store(x + j);
+  }
+  outward_left(0);
 }
 
+// With A = M - gamma dt J the stages are A k1 = F(u), A k2 = F(u + dt k1) - 2 M k1, and u + dt (3 k1 + k2)/2
+// is next. Solved here for k2 + 2 k1, whose right side F(u + dt k1) - 2 gamma dt J k1 is again the
+// divergence of a potential: no product with M, and the same flux form.
 template <std::size_t W>
 void advance_block(const Mesh& mesh, std::span<const LaneConditions> conditions, double dt,
                    double* __restrict u, double* __restrict crossed, const Scratch& s) {
-  const Lanes<W> lanes(conditions);
-  const std::size_t n = mesh.cells();
-  const std::size_t values = n * W;
-  evaluate<W, true>(mesh, lanes, u, s);
-  factor<W>(mesh, gamma * dt, s);
-  std::array<double, W> surface_1{};
-  for (std::size_t l = 0; l < W; ++l) surface_1[l] = s.flux[l];
-  for (std::size_t i = 0; i < values; ++i) s.k1[i] = s.flux[i] - s.flux[i + W];
-  solve<W>(n, s, s.k1);
-  // The carbon a stage moves through the surface: the sum over V k of its linear system, read at the
-  // surface only, so that the balance residual compares two independent numbers.
-  for (std::size_t l = 0; l < W; ++l) surface_1[l] += s.right[l] * s.k1[l];
-  for (std::size_t i = 0; i < values; ++i) s.trial[i] = u[i] + dt * s.k1[i];
-  evaluate<W, false>(mesh, lanes, s.trial, s);
-  for (std::size_t i = 0; i < n; ++i)
-    for (std::size_t l = 0; l < W; ++l) {
-      const std::size_t at = i * W + l;
-      s.k2[at] = s.flux[at] - s.flux[at + W] - 2.0 * mesh.volume_m[i] * s.k1[at];
-    }
-  solve<W>(n, s, s.k2);
-  for (std::size_t l = 0; l < W; ++l) {
-    const double surface_2 = s.flux[l] - 2.0 * surface_1[l] + s.right[l] * s.k2[l];
-    crossed[l] += dt * (1.5 * surface_1[l] + 0.5 * surface_2);
+  using P = Pack<W>;
+  using C = Chunk<W>;
+  const std::size_t n = mesh.nodes();
+  const double gamma_dt = gamma * dt;
+  // Spare lanes repeat the last.
+  const auto lane = [&](std::size_t l) -> const LaneConditions& {
+    return conditions[l < conditions.size() ? l : conditions.size() - 1];
+  };
+  const Potential<W> potential([&](std::size_t l) -> const DiffusivityForm& { return lane(l).diffusivity; });
+  const P equilibrium = P::from([&](std::size_t l) { return lane(l).surface.equilibrium_wt_pct; });
+  const P forced = P::from([&](std::size_t l) { return lane(l).surface.forced_wt_pct_m_per_s; });
+  const P transfer = P::from([&](std::size_t l) { return surface_transfer_m_per_s(mesh, lane(l)); });
+  const P damping = gamma_dt * transfer;
+
+  double* __restrict diffusivity = s.diffusivity;
+  double* __restrict phi = s.phi;
+  double* __restrict k1 = s.k1;
+  double* __restrict k2 = s.k2;
+  for (std::size_t i = 0; i < n * W; i += C::size) {
+    C d;
+    potential.value(C::load(u + i), d).store(phi + i);
+    d.store(diffusivity + i);
   }
-  for (std::size_t i = 0; i < values; ++i) u[i] += dt * (1.5 * s.k1[i] + 0.5 * s.k2[i]);
+  assemble<W>(mesh, gamma_dt, s);
+  (P::load(s.pivot) + damping).store(s.pivot);
+  factor<W>(n, s);
+  divergence<W>(mesh, phi, k1);
+  const P flux_1 = forced + (equilibrium - P::load(u)) * transfer;
+  (P::load(k1) + flux_1).store(k1);
+  solve<W>(n, s, k1);
+
+  const C step = C::all(dt), weight = C::all(2.0 * gamma_dt);
+  for (std::size_t i = 0; i < n * W; i += C::size) {
+    const C rate = C::load(k1 + i);
+    const C next = potential.value(C::load(u + i) + step * rate);
+    (next - weight * C::load(diffusivity + i) * rate).store(phi + i);
+  }
+  divergence<W>(mesh, phi, k2);
+  const P rate_0 = P::load(k1);
+  const P flux_2 = forced + (equilibrium - (P::load(u) + dt * rate_0)) * transfer + 2.0 * damping * rate_0;
+  (P::load(k2) + flux_2).store(k2);
+  solve<W>(n, s, k2);
+
+  // What crossed is read at the surface alone, so that the balance residual compares two independent numbers.
+  const double half_dt = 0.5 * dt;
+  const P flux = flux_1 + flux_2 - damping * (rate_0 + P::load(k2));
+  (P::load(crossed) + half_dt * flux).store(crossed);
+  const C half = C::all(half_dt);
+  for (std::size_t i = 0; i < n * W; i += C::size)
+    (C::load(u + i) + half * (C::load(k1 + i) + C::load(k2 + i))).store(u + i);
 }
 
 }  // namespace
@@ -153,29 +218,28 @@ void advance_block(const Mesh& mesh, std::span<const LaneConditions> conditions,
 CarbonField::CarbonField(std::shared_ptr<const Mesh> m, std::size_t lane_count, double carbon)
     : mesh(std::move(m)), lanes(lane_count), width(lane_count == 1 ? 1 : block) {
   const std::size_t blocks = (lanes + width - 1) / width;
-  values.assign(blocks * width * mesh->cells(), carbon);
+  values.assign(blocks * width * mesh->nodes(), carbon);
   crossed_wt_pct_m.assign(blocks * width, 0.0);
 }
 
 double CarbonField::inventory_wt_pct_m(std::size_t lane) const {
   double sum = 0.0;
-  for (std::size_t i = mesh->cells(); i-- > 0;) sum += mesh->volume_m[i] * carbon_wt_pct(lane, i);
+  for (std::size_t i = mesh->nodes(); i-- > 0;) sum += mesh->volume_m[i] * carbon_wt_pct(lane, i);
   return sum;
 }
 
-DiffusionStepper::DiffusionStepper(std::size_t cells, std::size_t lanes) {
+DiffusionStepper::DiffusionStepper(std::size_t nodes, std::size_t lanes) {
   const std::size_t width = lanes == 1 ? 1 : CarbonField::block;
-  for (auto* v : {&slope_left_, &slope_right_, &flux_, &pivot_, &k1_, &k2_, &trial_})
-    v->assign((cells + 1) * width, 0.0);
+  for (auto* v : {&lower_, &upper_, &pivot_, &diffusivity_, &phi_, &k1_, &k2_}) v->assign(nodes * width, 0.0);
 }
 
 void DiffusionStepper::step(CarbonField& field, std::span<const LaneConditions> conditions, double dt_s) {
   assert(conditions.size() == field.lanes);
   const Mesh& mesh = *field.mesh;
-  const Scratch scratch{slope_left_.data(), slope_right_.data(), flux_.data(), pivot_.data(),
-                        k1_.data(),         k2_.data(),          trial_.data()};
+  const Scratch scratch{lower_.data(), upper_.data(), pivot_.data(), diffusivity_.data(),
+                        phi_.data(),   k1_.data(),    k2_.data()};
   for (std::size_t first = 0; first < field.lanes; first += field.width) {
-    double* u = field.values.data() + first * mesh.cells();
+    double* u = field.values.data() + first * mesh.nodes();
     double* crossed = field.crossed_wt_pct_m.data() + first;
     if (field.width == 1)
       advance_block<1>(mesh, conditions.subspan(first), dt_s, u, crossed, scratch);
@@ -183,17 +247,23 @@ void DiffusionStepper::step(CarbonField& field, std::span<const LaneConditions> 
       advance_block<CarbonField::block>(mesh, conditions.subspan(first), dt_s, u, crossed, scratch);
   }
   ++work_.steps;
-  work_.cell_evaluations += 2 * mesh.cells() * field.lanes;
+  work_.node_evaluations += 2 * mesh.nodes() * field.lanes;
+}
+
+double surface_transfer_m_per_s(const Mesh& mesh, const LaneConditions& c) {
+  // A film of a hundred-thousandth of the first spacing stands in for resistance 0: it lowers the carbon of a
+  // fixed surface by that share of the drop to the next node.
+  constexpr double film = 1e-5;
+  const double floor = film * mesh.depth_m[1] / diffusivity_m2_s(c.diffusivity, c.surface.equilibrium_wt_pct);
+  return 1.0 / (c.surface.resistance_s_per_m + floor);
 }
 
 SurfaceState surface_state(const CarbonField& field, std::size_t lane, const LaneConditions& conditions) {
-  const double c = field.carbon_wt_pct(lane, 0);
-  const double metal = 0.5 * field.mesh->face_m[1] / diffusivity_m2_s(conditions.diffusivity, c);
-  const SurfaceCondition& s = conditions.surface;
   SurfaceState state;
-  state.flux_wt_pct_m_per_s =
-      s.forced_wt_pct_m_per_s + (s.equilibrium_wt_pct - c) / (s.resistance_s_per_m + metal);
-  state.carbon_wt_pct = c + state.flux_wt_pct_m_per_s * metal;
+  state.carbon_wt_pct = field.carbon_wt_pct(lane, 0);
+  state.flux_wt_pct_m_per_s = conditions.surface.forced_wt_pct_m_per_s +
+                              (conditions.surface.equilibrium_wt_pct - state.carbon_wt_pct) *
+                                  surface_transfer_m_per_s(*field.mesh, conditions);
   return state;
 }
 

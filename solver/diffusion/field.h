@@ -1,12 +1,12 @@
 // The carbon in one section for one or many ensemble members ("lanes"), and the step that advances it.
 //
 // Equation: dC/dt = (1/A) d/dx( A D(C,T) dC/dx ), zero flux at the centre; at the surface
-//   flux = forced + (equilibrium - C_s) / resistance,   C_s behind half a cell of metal in series,
+//   flux = forced + (equilibrium - C_s) / resistance,
 // where for a gas resistance = 1/(beta k) and equilibrium = Cp/k, for a fixed surface resistance = 0,
 // and for a prescribed flux resistance = infinity.
-// Method: finite volumes in flux form (carbon is conserved to round-off by construction); in time the
-// two-stage linearly implicit method of order 2, L-stable with gamma = 1 - 1/sqrt(2) (J. G. Verwer et al.,
-// SIAM J. Sci. Comput. 20 (1999) 1456, "ROS2"), analytic Jacobian, one tridiagonal factorisation a step.
+// Method: the compact, conservative fourth-order rows of mesh.h with Kirchhoff's potential (potential.h); in
+// time the two-stage linearly implicit method of order 2, L-stable with gamma = 1 - 1/sqrt(2) (J. G. Verwer
+// et al., SIAM J. Sci. Comput. 20 (1999) 1456, "ROS2"), analytic Jacobian, one factorisation a step.
 //
 // Every lane's arithmetic is the same whether it runs alone or beside others, so a member's result does
 // not depend on how members are grouped. No allocation, I/O, clock or exception after construction.
@@ -27,16 +27,16 @@ namespace hearthfront::solver {
 struct CarbonField {
   CarbonField(std::shared_ptr<const Mesh> mesh, std::size_t lanes, double carbon_wt_pct);
 
-  double carbon_wt_pct(std::size_t lane, std::size_t cell) const { return values[index(lane, cell)]; }
-  void set_carbon_wt_pct(std::size_t lane, std::size_t cell, double value) {
-    values[index(lane, cell)] = value;
+  double carbon_wt_pct(std::size_t lane, std::size_t node) const { return values[index(lane, node)]; }
+  void set_carbon_wt_pct(std::size_t lane, std::size_t node, double value) {
+    values[index(lane, node)] = value;
   }
   // Carbon inside, per unit of surface area, in wt% m.
   double inventory_wt_pct_m(std::size_t lane) const;
 
   static constexpr std::size_t block = 8;  // lanes side by side in memory when there is more than one
-  std::size_t index(std::size_t lane, std::size_t cell) const {
-    return width == 1 ? cell : ((lane / block) * mesh->cells() + cell) * block + lane % block;
+  std::size_t index(std::size_t lane, std::size_t node) const {
+    return width == 1 ? node : ((lane / block) * mesh->nodes() + node) * block + lane % block;
   }
 
   std::shared_ptr<const Mesh> mesh;
@@ -58,20 +58,23 @@ struct LaneConditions {
 
 struct WorkCounters {
   std::uint64_t steps = 0;             // time steps, each of two stages
-  std::uint64_t cell_evaluations = 0;  // diffusivities computed, over all lanes
+  std::uint64_t node_evaluations = 0;  // potentials computed, over all lanes
 };
 
 class DiffusionStepper {
  public:
-  DiffusionStepper(std::size_t cells, std::size_t lanes);
+  DiffusionStepper(std::size_t nodes, std::size_t lanes);
   // One step of dt_s > 0. `conditions` has one entry for each lane; all lanes share the law's rise and fold.
   void step(CarbonField& field, std::span<const LaneConditions> conditions, double dt_s);
   const WorkCounters& work() const { return work_; }
 
  private:
-  std::vector<double> slope_left_, slope_right_, flux_, pivot_, k1_, k2_, trial_;
+  std::vector<double> lower_, upper_, pivot_, diffusivity_, phi_, k1_, k2_;
   WorkCounters work_;
 };
+
+// 1/resistance, kept finite where the resistance is 0.
+double surface_transfer_m_per_s(const Mesh& mesh, const LaneConditions& conditions);
 
 // Surface carbon and the flux that crosses there now, for one lane.
 struct SurfaceState {

@@ -27,7 +27,7 @@ double kelvin(double degc) {
 }  // namespace
 
 GasCarburizing::Workspace::Workspace(const GasCarburizing& model)
-    : stepper_(model.mesh().cells(), model.lanes()),
+    : stepper_(model.mesh().nodes(), model.lanes()),
       part_mean_degc_(model.lanes()),
       part_end_degc_(model.lanes()) {
   const CarbonField shape(model.mesh_, model.lanes(), 0.0);
@@ -50,7 +50,7 @@ GasCarburizing::State GasCarburizing::start(double charge_temperature_degc) cons
               std::vector<LaneConditions>(lanes()),
               {}};
   for (std::size_t lane = 0; lane < lanes(); ++lane) {
-    for (std::size_t i = 0; i < mesh_->cells(); ++i)
+    for (std::size_t i = 0; i < mesh_->nodes(); ++i)
       state.field.set_carbon_wt_pct(lane, i,
                                     part_.core_carbon_wt_pct + members_[lane].core_carbon_offset_wt_pct);
     state.initial_wt_pct_m.push_back(state.field.inventory_wt_pct_m(lane));
@@ -85,7 +85,8 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
     if (lane == 0) {
       if (equilibrium > limit) notes |= note_capped_at_carbide_limit;
       const double furnace_k = kelvin(inputs.furnace_temperature_degc);
-      if (potential > graphite_limit_wt_pct(furnace_k)) notes |= note_sooting_gas;
+      // Activity 1 is the graphite limit; its own inverse would cost as much as the step.
+      if (carbon_activity(std::min(potential, 2.6), furnace_k) > 1.0) notes |= note_sooting_gas;
       const TemperatureRange range = diffusivity_range(part_.law);
       if (t_k < range.low_k || t_k > range.high_k) notes |= note_outside_diffusivity_range;
     }

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "solver/diffusion/potential.h"
 #include "solver/material/constants.h"
 
 namespace hearthfront::solver {
@@ -20,19 +21,53 @@ double cubic_at(const double* x, const double* y, double at) {
   return sum;
 }
 
+// Where the cubic through four nodes leaves `before`, by halving [low, high]. The cubic passes through both
+// ends, so the bracket holds such a place.
+template <class Predicate>
+double root_between(const double* x, const double* y, double low, double high, Predicate before) {
+  for (int step = 0; step < 60 && high - low > 1e-13; ++step) {
+    const double middle = 0.5 * (low + high);
+    (before(cubic_at(x, y, middle)) ? low : high) = middle;
+  }
+  return 0.5 * (low + high);
+}
+
+// dC/dt at the nodes: the flux differences, through the inverse of the mesh's mass rows.
+std::vector<double> carbon_rates(const CarbonField& field, std::size_t lane,
+                                 const LaneConditions& conditions) {
+  const Mesh& mesh = *field.mesh;
+  const std::size_t n = mesh.nodes();
+  std::vector<double> phi(n), rate(n), pivot(n);
+  const Potential<1> potential([&](std::size_t) -> const DiffusivityForm& { return conditions.diffusivity; });
+  for (std::size_t i = 0; i < n; i += 2)
+    potential.value(Pack<2>::from([&](std::size_t k) { return field.carbon_wt_pct(lane, i + k); }))
+        .store(&phi[i]);
+  double flux_in = surface_state(field, lane, conditions).flux_wt_pct_m_per_s;
+  for (std::size_t i = 0; i < n; ++i) {
+    const double flux_out = i + 1 < n ? mesh.conductance_per_m[i + 1] * (phi[i] - phi[i + 1]) : 0.0;
+    rate[i] = flux_in - flux_out;
+    pivot[i] = mesh.mass_diagonal_m[i];
+    if (i > 0) {
+      const double share = mesh.mass_lower_m[i] / pivot[i - 1];
+      pivot[i] -= share * mesh.mass_upper_m[i - 1];
+      rate[i] -= share * rate[i - 1];
+    }
+    flux_in = flux_out;
+  }
+  rate[n - 1] /= pivot[n - 1];
+  for (std::size_t i = n - 1; i-- > 0;) rate[i] = (rate[i] - mesh.mass_upper_m[i] * rate[i + 1]) / pivot[i];
+  return rate;
+}
+
 }  // namespace
 
 Profile read_profile(const CarbonField& field, std::size_t lane, const LaneConditions& conditions) {
-  const std::size_t n = field.mesh->cells();
   Profile profile;
-  profile.depth_m.reserve(n + 1);
-  profile.carbon_wt_pct.reserve(n + 1);
-  profile.depth_m.push_back(0.0);
+  profile.depth_m = field.mesh->depth_m;
+  profile.carbon_wt_pct.reserve(profile.depth_m.size());
   profile.carbon_wt_pct.push_back(surface_state(field, lane, conditions).carbon_wt_pct);
-  for (std::size_t i = 0; i < n; ++i) {
-    profile.depth_m.push_back(field.mesh->centre_m[i]);
+  for (std::size_t i = 1; i < profile.depth_m.size(); ++i)
     profile.carbon_wt_pct.push_back(field.carbon_wt_pct(lane, i));
-  }
   return profile;
 }
 
@@ -43,41 +78,25 @@ std::optional<double> depth_at_carbon_m(const Profile& profile, double limit) {
   std::size_t i = c.size() - 1;
   while (i > 0 && c[i - 1] < limit) --i;
   if (i == 0) return 0.0;
-  // c[i-1] >= limit > c[i]. The cubic passes through both nodes, so the bracket holds a root of it.
+  // c[i-1] >= limit > c[i].
   const std::size_t first = std::min(i >= 2 ? i - 2 : 0, x.size() - 4);
-  double low = x[i - 1], high = x[i];
-  for (int step = 0; step < 60 && high - low > 1e-13; ++step) {
-    const double middle = 0.5 * (low + high);
-    (cubic_at(&x[first], &c[first], middle) >= limit ? low : high) = middle;
-  }
-  return 0.5 * (low + high);
+  return root_between(&x[first], &c[first], x[i - 1], x[i], [&](double carbon) { return carbon >= limit; });
 }
 
 std::optional<double> turnover_depth_m(const CarbonField& field, std::size_t lane,
                                        const LaneConditions& conditions) {
-  const Mesh& mesh = *field.mesh;
-  const std::size_t n = mesh.cells();
-  double flux_in = surface_state(field, lane, conditions).flux_wt_pct_m_per_s;
-  double previous = 0.0;
-  std::optional<double> turnover;
-  for (std::size_t i = 0; i < n; ++i) {
-    double flux_out = 0.0;
-    if (i + 1 < n) {
-      const double here = field.carbon_wt_pct(lane, i), next = field.carbon_wt_pct(lane, i + 1);
-      flux_out = mesh.conductance_per_m[i + 1] *
-                 diffusivity_m2_s(conditions.diffusivity, 0.5 * (here + next)) * (here - next);
-    }
-    const double gain = (flux_in - flux_out) / mesh.volume_m[i];
-    if (i > 0 && previous < 0.0 && gain > 0.0) {
-      const double share = previous / (previous - gain);
-      turnover = mesh.centre_m[i - 1] + share * (mesh.centre_m[i] - mesh.centre_m[i - 1]);
-    }
-    // Far ahead of the front gains are round-off; a sign there means nothing.
-    constexpr double no_change_wt_pct_per_s = 1e-12;
-    if (std::fabs(gain) > no_change_wt_pct_per_s) previous = gain;
-    flux_in = flux_out;
-  }
-  return turnover;
+  const auto& x = field.mesh->depth_m;
+  const std::vector<double> rate = carbon_rates(field, lane, conditions);
+  double largest = 0.0;
+  for (double r : rate) largest = std::max(largest, std::fabs(r));
+  // Far ahead of the front rates are round-off and the tail of the scheme; a sign there means nothing.
+  const double no_change = 1e-12 + 1e-5 * largest;
+  std::size_t last = 0;
+  for (std::size_t i = 0; i + 1 < rate.size(); ++i)
+    if (rate[i] < -no_change && rate[i + 1] > no_change) last = i + 1;
+  if (last == 0) return std::nullopt;
+  const std::size_t first = std::min(last >= 2 ? last - 2 : 0, x.size() - 4);
+  return root_between(&x[first], &rate[first], x[last - 1], x[last], [](double r) { return r < 0.0; });
 }
 
 double carbon_uptake_g_m2(const CarbonField& field, std::size_t lane) {

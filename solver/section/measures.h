@@ -15,7 +15,7 @@
 namespace hearthfront::solver {
 
 struct Profile {
-  std::vector<double> depth_m;  // 0 (the surface) and the cell centres, ascending
+  std::vector<double> depth_m;  // the nodes, ascending from 0 (the surface)
   std::vector<double> carbon_wt_pct;
 };
 Profile read_profile(const CarbonField& field, std::size_t lane, const LaneConditions& conditions);

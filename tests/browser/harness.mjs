@@ -31,7 +31,7 @@ export async function openBrowser(base, folder) {
   const host = new URL(base).host;
   return {
     close: () => browser.close(),
-    photo: (page, name) => page.screenshot({ path: join(folder, `${name}.png`), fullPage: true }),
+    photo: (page, name) => page.screenshot({ path: join(folder, `${name}.png`), fullPage: true, timeout: 90_000 }),
     async page(size, { theme = 'light', forgiving = false } = {}) {
       const context = await browser.newContext({ viewport: { width: size.width, height: size.height }, hasTouch: size.touch, colorScheme: theme });
       const page = await context.newPage();

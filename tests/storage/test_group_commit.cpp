@@ -6,8 +6,10 @@
 #include <latch>
 #include <thread>
 
+#include "storage/connection.h"
 #include "storage/store.h"
 #include "storage/support.h"
+#include "storage/writer.h"
 
 using namespace hearthfront::storage;
 using namespace hearthfront::storage::test;
@@ -118,6 +120,31 @@ TEST_CASE("a job that breaks a rule fails alone; the others of its commit are st
   CHECK(reader.loads("", {}, 0, 10).size() == 1);
   CHECK(reader.revisions(started).size() == 1);
   CHECK(reader.audit("", 10).size() == 1);
+}
+
+TEST_CASE("what a job wrote before it broke a rule is taken back, whichever way it fails") {
+  const Folder folder;
+  { const Store store(at(folder.database())); }
+  Writer writer(std::make_unique<Connection>(folder.database(), Connection::Role::writer), 100,
+                [](Tables&) {});
+  CHECK(fault_of([&] {
+          writer.run(0, Writer::Kind::fallible, [](Tables& tables) {
+            tables.connection.run("INSERT INTO meta VALUES('half', 'x')");
+            throw StorageError(StorageFault::misuse, "changed its mind");
+          });
+        }) == StorageFault::misuse);
+  CHECK(fault_of([&] {
+          writer.run(0, Writer::Kind::fallible, [](Tables& tables) {
+            tables.connection.run("INSERT INTO meta VALUES('half', 'x')");
+            tables.connection.run("INSERT INTO load_note(load, at_us, person, text) VALUES(99, 0, '', '')");
+          });
+        }) == StorageFault::misuse);
+  writer.run(0, Writer::Kind::fallible,
+             [](Tables& tables) { tables.connection.run("INSERT INTO meta VALUES('whole', 'x')"); });
+  writer.close();
+  Outside outside(folder.database());
+  CHECK(outside.number("SELECT count(*) FROM meta WHERE key = 'half'") == 0);
+  CHECK(outside.number("SELECT count(*) FROM meta WHERE key = 'whole'") == 1);
 }
 
 TEST_CASE("above its bound the queue answers busy at once, and works again when it has emptied") {

@@ -97,12 +97,15 @@ int jacobian(double, N_Vector state, N_Vector, SUNMatrix matrix, void* user, N_V
   Equations& e = *static_cast<Equations*>(user);
   const double* c = N_VGetArrayPointer(state);
   fill_diffusivity(e, c, true);
-  const auto column = [&](std::size_t j) { return SUNBandMatrix_Column(matrix, static_cast<sunindextype>(j)); };
+  const auto column = [&](std::size_t j) {
+    return SUNBandMatrix_Column(matrix, static_cast<sunindextype>(j));
+  };
   SUNMatZero(matrix);
   const double metal = e.half_cell / e.diffusivity[0];
   const double transfer = 1.0 / (1.0 / e.piece.transfer_m_per_s + metal);
   const double drive = e.piece.equilibrium_wt_pct - c[0];
-  column(0)[0] = transfer * (drive * transfer * metal * e.slope[0] / e.diffusivity[0] - 1.0) * e.inverse_volume[0];
+  column(0)[0] =
+      transfer * (drive * transfer * metal * e.slope[0] / e.diffusivity[0] - 1.0) * e.inverse_volume[0];
   for (std::size_t i = 1; i < e.n; ++i) {
     const double mean = 0.5 * (e.diffusivity[i - 1] + e.diffusivity[i]);
     const double drop = c[i - 1] - c[i];

@@ -51,7 +51,8 @@ std::vector<solver::IntervalInputs> constant_inputs(double duration_s, double te
   in.furnace_temperature_degc = temperature_degc;
   in.load_temperature_degc = temperature_degc;
   in.carbon_potential_wt_pct = carbon_potential_wt_pct;
-  return std::vector<solver::IntervalInputs>(static_cast<std::size_t>(std::lround(duration_s / interval_s)), in);
+  return std::vector<solver::IntervalInputs>(static_cast<std::size_t>(std::lround(duration_s / interval_s)),
+                                             in);
 }
 
 std::vector<solver::Steel> case_steels() {
