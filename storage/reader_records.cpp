@@ -58,7 +58,8 @@ std::vector<LoadRow> Reader::open_loads() {
   });
 }
 
-std::vector<LoadRow> Reader::ended_touching(std::string_view furnace, std::int64_t from_us, std::int64_t to_us) {
+std::vector<LoadRow> Reader::ended_touching(std::string_view furnace, std::int64_t from_us,
+                                            std::int64_t to_us) {
   return impl_->read("list ended loads of a stretch of time", [&] {
     auto& query = impl_->statement("SELECT " HF_LOAD_COLUMNS
                                    " FROM load WHERE furnace = ?1 AND started_us <= ?3 AND ended_us >= ?2 "
@@ -74,9 +75,10 @@ std::vector<LoadRow> Reader::ended_touching(std::string_view furnace, std::int64
 
 std::vector<LoadRow> Reader::ended_without_result() {
   return impl_->read("list ended loads without a result", [&] {
-    auto& query = impl_->statement("SELECT " HF_LOAD_COLUMNS
-                                   " FROM load WHERE ended_us IS NOT NULL AND NOT EXISTS(SELECT 1 FROM result "
-                                   "WHERE result.load = load.id AND result.revision = load.revision) ORDER BY id");
+    auto& query =
+        impl_->statement("SELECT " HF_LOAD_COLUMNS
+                         " FROM load WHERE ended_us IS NOT NULL AND NOT EXISTS(SELECT 1 FROM result "
+                         "WHERE result.load = load.id AND result.revision = load.revision) ORDER BY id");
     std::vector<LoadRow> rows;
     while (query.executeStep()) rows.push_back(load_from(query));
     return rows;

@@ -118,14 +118,14 @@ class Reader {
   // Newest first; pages by id: rows with id < `before_id` (0 = from the newest). Filters empty = all.
   std::vector<LoadRow> loads(std::string_view furnace, std::optional<bool> open, std::int64_t before_id,
                              int limit);
-  std::vector<LoadRow> open_loads();                                         // oldest first
+  std::vector<LoadRow> open_loads();  // oldest first
   // Ended loads of a furnace that were in it at some time of [from, to], oldest first.
   std::vector<LoadRow> ended_touching(std::string_view furnace, std::int64_t from_us, std::int64_t to_us);
-  std::vector<LoadRow> ended_without_result();  // none for their present revision; oldest first
-  std::vector<LoadRevision> revisions(std::int64_t load);                    // oldest first
-  std::vector<LoadNote> notes(std::int64_t load);                            // oldest first
-  std::optional<ResultRow> result(std::int64_t load);                        // the newest not superseded
-  std::vector<ResultRow> results(std::int64_t load);                         // all, oldest first
+  std::vector<LoadRow> ended_without_result();             // none for their present revision; oldest first
+  std::vector<LoadRevision> revisions(std::int64_t load);  // oldest first
+  std::vector<LoadNote> notes(std::int64_t load);          // oldest first
+  std::optional<ResultRow> result(std::int64_t load);      // the newest not superseded
+  std::vector<ResultRow> results(std::int64_t load);       // all, oldest first
   std::vector<RefusedReading> refused(std::string_view furnace, int limit);  // newest first
   std::vector<RefusedCount> refused_counts(std::string_view furnace);        // empty = every furnace
   std::vector<AuditRow> audit(std::string_view subject, int limit);          // newest first

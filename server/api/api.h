@@ -80,12 +80,13 @@ class Api {
   FurnaceState state_of(const Furnace& furnace);
   // The view of an open load as published; of an ended load derived again from its readings.
   std::shared_ptr<const LoadView> view_of(const FoundLoad& found);
+  std::shared_ptr<LoadView> derive_view(const FoundLoad& found, storage::Reader& reader);
 
   ApiParts parts_;
   ReaderPool readers_;
   std::mutex past_mutex_;
-  std::map<std::pair<std::int64_t, std::int64_t>, std::shared_ptr<const LoadView>> past_views_;  // by id and age of the stored result
+  std::map<std::pair<std::int64_t, std::int64_t>, std::shared_ptr<const LoadView>>
+      past_views_;  // by id and age of the stored result
 };
-
 
 }  // namespace hearthfront::server

@@ -12,7 +12,9 @@ namespace {
 // The floor's strip is drawn a few hundred pixels wide: more digits or points would not be seen.
 constexpr std::size_t strip_points = 40;
 
-double rounded(double value) { return std::round(value * 1e4) / 1e4; }
+double rounded(double value) {
+  return std::round(value * 1e4) / 1e4;
+}
 
 Json time_or_null(std::optional<std::int64_t> time_us) {
   return time_us ? Json(format_time(*time_us)) : Json(nullptr);

@@ -25,35 +25,43 @@ Response with_etag(const Request& request, const std::string& etag, const std::s
 
 void Api::add_view_routes() {
   HttpServer& http = parts_.http;
-  http.route("GET", "/api/v1/floor", [this](const Request&) { return Response{200, "application/json", floor(), {}}; });
+  http.route("GET", "/api/v1/floor", [this](const Request&) {
+    return Response{200, "application/json", floor(), {}};
+  });
   http.route("GET", "/api/v1/loads/{}/snapshot", guarded([this](const Request& r) { return snapshot(r); }));
   http.route("GET", "/api/v1/loads/{}/result", guarded([this](const Request& r) { return result(r); }));
   http.route("GET", "/api/v1/loads/{}/history", guarded([this](const Request& r) { return history(r); }));
 }
 
+std::shared_ptr<LoadView> Api::derive_view(const FoundLoad& found, storage::Reader& reader) {
+  const auto source = stored_readings(reader, [&](const std::string& channel) {
+    return parts_.acceptor.channel_id(found.row.furnace, channel).value_or(-1);
+  });
+  const std::int64_t now = parts_.clock.now_us();
+  const auto load = derive(found.definition, source, found.row.ended_us.value_or(now));
+  auto view =
+      std::make_shared<LoadView>(make_view(*load, found.definition, now, parts_.settings.live.stale_after_s));
+  view->row = found.row;
+  view->sequence = parts_.board.sequence();
+  return view;
+}
+
 std::shared_ptr<const LoadView> Api::view_of(const FoundLoad& found) {
+  auto reader = readers_.take();
   if (!found.row.ended_us) {
     auto view = parts_.board.load(found.row.id);
-    if (view && view->row.revision == found.row.revision) return view;
-    throw Problem{503, "not-ready", "The load is being worked out",
-                  "The model has not caught up with this load yet; try again in a second.", ""};
+    // A load of this very second is not on the board yet; its run is short, so it is worked out here.
+    return view && view->row.revision == found.row.revision ? view : derive_view(found, *reader);
   }
-  // A late reading changes a past result without a new revision of the load, so the stored result's age
+  // A late reading changes a past result without a new revision of the load, so the stored result's time
   // is part of the key.
-  auto reader = readers_.take();
   const auto stored = reader->result(found.row.id);
   const auto key = std::make_pair(found.row.id, stored ? stored->computed_us : 0);
   {
     const std::scoped_lock lock(past_mutex_);
     if (const auto it = past_views_.find(key); it != past_views_.end()) return it->second;
   }
-  const auto source = stored_readings(*reader, [&](const std::string& channel) {
-    return parts_.acceptor.channel_id(found.row.furnace, channel).value_or(-1);
-  });
-  const auto load = derive(found.definition, source, *found.row.ended_us);
-  auto view = std::make_shared<LoadView>(
-      make_view(*load, found.definition, parts_.clock.now_us(), parts_.settings.live.stale_after_s));
-  view->row = found.row;
+  auto view = derive_view(found, *reader);
   view->sequence = static_cast<std::uint64_t>(key.second);
   const std::scoped_lock lock(past_mutex_);
   if (past_views_.size() >= past_views_kept) past_views_.erase(past_views_.begin());
@@ -75,9 +83,9 @@ Response Api::result(const Request& request) {
   if (!found.row.ended_us) return {200, "application/json", result_json(view_of(found)->result), {}};
   auto reader = readers_.take();
   const auto stored = reader->result(found.row.id);
+  // Just ended: the engine stores the same document in a moment.
   if (!stored || stored->revision != found.row.revision)
-    throw Problem{503, "not-ready", "The result is being worked out",
-                  "The load has just ended; its final result follows in a second or two.", ""};
+    return {200, "application/json", result_json(derive_view(found, *reader)->result), {}};
   return {200, "application/json", stored->result_json, {}};
 }
 

@@ -78,6 +78,7 @@ struct CsvReport {
   };
   int rows = 0;
   std::size_t stored = 0, duplicate = 0, conflict = 0, refused = 0;
+  std::map<Refusal, std::size_t> refused_by_reason;
   std::vector<RowProblem> problems;  // the first `max_problems`, one for each line and reason
 };
 

@@ -49,6 +49,9 @@ CsvReport accept_csv(const Acceptor& acceptor, std::string_view text, const Furn
     report.duplicate += accepted.duplicate;
     report.conflict += accepted.conflict;
     report.refused += accepted.refused;
+    for (const ReadingOutcome& outcome : accepted.outcomes) {
+      if (outcome.disposition == Disposition::refused) ++report.refused_by_reason[outcome.refusal];
+    }
     add_problems(items, accepted, max_problems, report);
     last_line = items.back().line;
   }

@@ -8,7 +8,7 @@
 namespace hearthfront::server {
 
 Json criterion_json(const Criterion& criterion);
-Json section_json(const solver::Section& section);
+Json section_json(const ItemSection& section);
 Json recipe_json(const Recipe& recipe);
 Json window_json(const Window& window);
 Json load_body_json(const LoadDefinition& load);

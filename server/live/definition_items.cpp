@@ -56,22 +56,19 @@ solver::Steel read_steel(JsonFields& item, const Plant& plant) {
   return steel;
 }
 
-solver::Section read_section(JsonFields& item) {
+ItemSection read_section(JsonFields& item) {
   JsonFields fields(item.object("section"), item.path_of("section"), invalid_load);
   const std::string shape = fields.word("shape", 20);
-  const auto mm = [&](const char* name, double low, double high) {
-    return fields.number(name, low, high, "mm") * 1e-3;
-  };
-  solver::Section section;
+  ItemSection section;
   if (shape == "plate") {
-    section = {solver::Shape::plate, mm("thickness_mm", 0.4, 1000) / 2, 0};
+    section.thickness_mm = fields.number("thickness_mm", 0.4, 1000, "mm");
   } else if (shape == "cylinder" || shape == "sphere") {
-    section = {shape == "cylinder" ? solver::Shape::cylinder : solver::Shape::sphere,
-               mm("diameter_mm", 0.4, 1000) / 2, 0};
+    section.shape = shape == "cylinder" ? solver::Shape::cylinder : solver::Shape::sphere;
+    section.diameter_mm = fields.number("diameter_mm", 0.4, 1000, "mm");
   } else if (shape == "bore") {
     section.shape = solver::Shape::bore;
-    section.bore_radius_m = mm("bore_diameter_mm", 0.4, 1000) / 2;
-    section.extent_m = mm("wall_mm", 0.2, 500);
+    section.bore_diameter_mm = fields.number("bore_diameter_mm", 0.4, 1000, "mm");
+    section.wall_mm = fields.number("wall_mm", 0.2, 500, "mm");
   } else {
     fields.fail("shape", "expected plate, cylinder, sphere or bore.");
   }
@@ -157,10 +154,10 @@ Item read_item(const Json& entry, const std::string& path, const Plant& plant, c
     fields.ignore_null(optional);
   fields.finish();
 
-  const double extent_mm = item.section.extent_m * 1e3;
-  if (item.case_depth_window_mm.second > extent_mm)
+  if (item.case_depth_window_mm.second > item.section.reach_mm())
     fields.fail("case_depth_window_mm", "the case asked for is deeper than the part, whose section is " +
-                                            rounded(extent_mm) + " mm from the surface to its middle.");
+                                            rounded(item.section.reach_mm()) +
+                                            " mm from the surface to its middle.");
   if (item.core_carbon_wt_pct >= item.criterion.carbon_limit_wt_pct)
     fields.fail("criterion", "the core (" + rounded(item.core_carbon_wt_pct) + " % carbon) already meets " +
                                  item.criterion.text() + " (" + rounded(item.criterion.carbon_limit_wt_pct) +

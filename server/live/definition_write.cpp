@@ -82,20 +82,19 @@ Json criterion_json(const Criterion& criterion) {
   return json;
 }
 
-Json section_json(const solver::Section& section) {
-  const double extent_mm = section.extent_m * 1e3;
+Json section_json(const ItemSection& section) {
   Json json{{"shape", text(section.shape)}};
   switch (section.shape) {
     case solver::Shape::plate:
-      json["thickness_mm"] = 2.0 * extent_mm;
+      json["thickness_mm"] = section.thickness_mm;
       break;
     case solver::Shape::cylinder:
     case solver::Shape::sphere:
-      json["diameter_mm"] = 2.0 * extent_mm;
+      json["diameter_mm"] = section.diameter_mm;
       break;
     case solver::Shape::bore:
-      json["bore_diameter_mm"] = 2e3 * section.bore_radius_m;
-      json["wall_mm"] = extent_mm;
+      json["bore_diameter_mm"] = section.bore_diameter_mm;
+      json["wall_mm"] = section.wall_mm;
       break;
   }
   return json;

@@ -9,7 +9,7 @@ namespace {
 
 solver::GasCarburizing make_model(const LoadDefinition& load, const Item& item) {
   solver::CarburizingPart part;
-  part.section = item.section;
+  part.section = item.section.in_metres();
   part.steel = item.steel.composition;
   part.core_carbon_wt_pct = item.core_carbon_wt_pct;
   part.lag_s = item.lag_min * 60.0;

@@ -21,6 +21,23 @@ std::string Criterion::text() const {
   return line;
 }
 
+double ItemSection::reach_mm() const {
+  switch (shape) {
+    case solver::Shape::plate:
+      return thickness_mm / 2;
+    case solver::Shape::cylinder:
+    case solver::Shape::sphere:
+      return diameter_mm / 2;
+    case solver::Shape::bore:
+      return wall_mm;
+  }
+  return 0;
+}
+
+solver::Section ItemSection::in_metres() const {
+  return {shape, reach_mm() * 1e-3, bore_diameter_mm / 2 * 1e-3};
+}
+
 double LoadDefinition::planned_minutes() const {
   double sum = 0;
   for (const Segment& segment : recipe.segments) sum += segment.duration_min;

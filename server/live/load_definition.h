@@ -41,12 +41,24 @@ struct Criterion {
 
 using Window = std::pair<double, double>;  // low, high
 
+// A section in the figures it was given in, so that a copy of a copy says the same to the last bit. Which
+// members count depends on the shape.
+struct ItemSection {
+  solver::Shape shape = solver::Shape::plate;
+  double thickness_mm = 0;                   // plate, carburized from both sides
+  double diameter_mm = 0;                    // solid cylinder, sphere
+  double bore_diameter_mm = 0, wall_mm = 0;  // bore
+
+  double reach_mm() const;  // from the carburized surface to the middle, or through the wall
+  solver::Section in_metres() const;
+};
+
 struct Item {
   std::string name, part;
   int quantity = 1;
   solver::Steel steel;
   double core_carbon_wt_pct = 0;
-  solver::Section section;
+  ItemSection section;
   Criterion criterion;
   Window case_depth_window_mm{0, 0};
   std::optional<Window> surface_carbon_window_wt_pct;

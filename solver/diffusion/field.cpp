@@ -1,5 +1,6 @@
 #include "solver/diffusion/field.h"
 
+#include <algorithm>
 #include <array>
 #include <cassert>
 #include <cmath>
@@ -214,6 +215,13 @@ void advance_block(const Mesh& mesh, std::span<const LaneConditions> conditions,
 }
 
 }  // namespace
+
+double settling_step_s(double settled_s, double left_s) {
+  constexpr double first_step_s = 2.0;
+  constexpr double growth = 0.3;
+  const double wanted = std::max(first_step_s, growth * settled_s);
+  return left_s / std::ceil(left_s / wanted - 1e-9);
+}
 
 CarbonField::CarbonField(std::shared_ptr<const Mesh> m, std::size_t lane_count, double carbon)
     : mesh(std::move(m)), lanes(lane_count), width(lane_count == 1 ? 1 : block) {

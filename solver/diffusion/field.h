@@ -56,6 +56,12 @@ struct LaneConditions {
   SurfaceCondition surface;
 };
 
+// The step to take when `left_s` of an interval remains and the inputs last jumped `settled_s` ago. After a
+// jump steps start at 2 s and grow with the time since: the profile near the surface then has the time scale
+// of its own age, and the two-stage method keeps its order and its bounds. What is left is divided into equal
+// parts.
+double settling_step_s(double settled_s, double left_s);
+
 struct WorkCounters {
   std::uint64_t steps = 0;             // time steps, each of two stages
   std::uint64_t node_evaluations = 0;  // potentials computed, over all lanes

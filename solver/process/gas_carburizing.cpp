@@ -12,10 +12,6 @@
 namespace hearthfront::solver {
 namespace {
 
-// After a jump of the inputs steps start short and grow with the time since: the profile near the surface
-// then has the time scale of its own age, and the two-stage method keeps its order and its bounds.
-constexpr double first_step_s = 2.0;
-constexpr double step_growth = 0.3;
 // What counts as a jump: well above the noise of a probe (about 0.01 wt%) and of a thermocouple.
 constexpr double jump_carbon_potential_wt_pct = 0.05;
 constexpr double jump_temperature_k = 10.0;
@@ -24,12 +20,18 @@ double kelvin(double degc) {
   return degc + zero_celsius_k;
 }
 
+bool computable(const IntervalInputs& in) {
+  return in.duration_s > 0.0 && std::isfinite(in.duration_s) && std::isfinite(in.furnace_temperature_degc) &&
+         std::isfinite(in.load_temperature_degc.value_or(0.0)) && std::isfinite(in.carbon_potential_wt_pct);
+}
+
 }  // namespace
 
 GasCarburizing::Workspace::Workspace(const GasCarburizing& model)
     : stepper_(model.mesh().nodes(), model.lanes()),
       part_mean_degc_(model.lanes()),
-      part_end_degc_(model.lanes()) {
+      part_end_degc_(model.lanes()),
+      good_conditions_(model.lanes()) {
   const CarbonField shape(model.mesh_, model.lanes(), 0.0);
   good_values_.resize(shape.values.size());
   good_crossed_.resize(shape.crossed_wt_pct_m.size());
@@ -105,6 +107,8 @@ bool GasCarburizing::note_jump(State& state, const IntervalInputs& inputs, doubl
 }
 
 Outcome GasCarburizing::advance(State& state, const IntervalInputs& inputs, Workspace& ws) const {
+  // Asked of the inputs and not of the result: comparisons with NaN would quietly choose a branch.
+  if (!computable(inputs)) state.failed = true;
   if (state.failed) return {OutcomeKind::failed, 0};
   const double dt = inputs.duration_s;
   for (std::size_t lane = 0; lane < lanes(); ++lane) {
@@ -131,6 +135,7 @@ Outcome GasCarburizing::advance(State& state, const IntervalInputs& inputs, Work
     return {OutcomeKind::reached_with_note, note_paused_below_austenite};
   }
 
+  std::copy(state.conditions.begin(), state.conditions.end(), ws.good_conditions_.begin());
   const std::uint32_t notes = set_conditions(state, inputs, ws.part_mean_degc_);
   if (note_jump(state, inputs, ws.part_mean_degc_[0])) state.settled_s = 0.0;
   state.moving = true;
@@ -141,9 +146,7 @@ Outcome GasCarburizing::advance(State& state, const IntervalInputs& inputs, Work
   double done = 0.0;
   while (done < dt) {
     const double left = dt - done;
-    const double wanted = std::max(first_step_s, step_growth * (state.settled_s + done));
-    // Equal parts of what is left, so that the last one is no sliver.
-    const double step = left / std::ceil(left / wanted - 1e-9);
+    const double step = settling_step_s(state.settled_s + done, left);
     ws.stepper_.step(state.field, state.conditions, step);
     done = step < left ? done + step : dt;
   }
@@ -152,6 +155,7 @@ Outcome GasCarburizing::advance(State& state, const IntervalInputs& inputs, Work
   const bool finite = std::all_of(state.field.crossed_wt_pct_m.begin(), state.field.crossed_wt_pct_m.end(),
                                   [](double crossed) { return std::isfinite(crossed); });
   if (!finite) {
+    std::copy(ws.good_conditions_.begin(), ws.good_conditions_.end(), state.conditions.begin());
     std::copy(ws.good_values_.begin(), ws.good_values_.end(), state.field.values.begin());
     std::copy(ws.good_crossed_.begin(), ws.good_crossed_.end(), state.field.crossed_wt_pct_m.begin());
     state.failed = true;

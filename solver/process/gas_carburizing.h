@@ -39,7 +39,8 @@ struct Member {
   double temperature_offset_k = 0, carbon_potential_offset_wt_pct = 0, core_carbon_offset_wt_pct = 0;
 };
 
-// Means over one lattice interval.
+// Means over one lattice interval. A value that is not finite, or a duration that is not above 0, fails the
+// state.
 struct IntervalInputs {
   double duration_s = 60;
   double furnace_temperature_degc = 20;
@@ -84,6 +85,7 @@ class GasCarburizing {
     friend class GasCarburizing;
     DiffusionStepper stepper_;
     std::vector<double> part_mean_degc_, part_end_degc_, good_values_, good_crossed_;
+    std::vector<LaneConditions> good_conditions_;
   };
 
   // Throws std::invalid_argument where the section is outside its range.

@@ -2,6 +2,8 @@
 
 #include <algorithm>
 #include <cmath>
+#include <cstddef>
+#include <numeric>
 
 #include "solver/diffusion/potential.h"
 #include "solver/material/constants.h"
@@ -32,12 +34,16 @@ double root_between(const double* x, const double* y, double low, double high, P
   return 0.5 * (low + high);
 }
 
-// dC/dt at the nodes: the flux differences, through the inverse of the mesh's mass rows.
-std::vector<double> carbon_rates(const CarbonField& field, std::size_t lane,
-                                 const LaneConditions& conditions) {
+// What every node's row gains (flux in minus flux out), and dC/dt at the nodes: the gains through the inverse
+// of the mesh's mass rows.
+struct Change {
+  std::vector<double> gain, rate;
+};
+Change carbon_change(const CarbonField& field, std::size_t lane, const LaneConditions& conditions) {
   const Mesh& mesh = *field.mesh;
   const std::size_t n = mesh.nodes();
-  std::vector<double> phi(n), rate(n), pivot(n);
+  Change change{std::vector<double>(n), {}};
+  std::vector<double> phi(n), pivot(n);
   const Potential<1> potential([&](std::size_t) -> const DiffusivityForm& { return conditions.diffusivity; });
   for (std::size_t i = 0; i < n; i += 2)
     potential.value(Pack<2>::from([&](std::size_t k) { return field.carbon_wt_pct(lane, i + k); }))
@@ -45,18 +51,22 @@ std::vector<double> carbon_rates(const CarbonField& field, std::size_t lane,
   double flux_in = surface_state(field, lane, conditions).flux_wt_pct_m_per_s;
   for (std::size_t i = 0; i < n; ++i) {
     const double flux_out = i + 1 < n ? mesh.conductance_per_m[i + 1] * (phi[i] - phi[i + 1]) : 0.0;
-    rate[i] = flux_in - flux_out;
+    change.gain[i] = flux_in - flux_out;
+    flux_in = flux_out;
+  }
+  change.rate = change.gain;
+  std::vector<double>& rate = change.rate;
+  for (std::size_t i = 0; i < n; ++i) {
     pivot[i] = mesh.mass_diagonal_m[i];
     if (i > 0) {
       const double share = mesh.mass_lower_m[i] / pivot[i - 1];
       pivot[i] -= share * mesh.mass_upper_m[i - 1];
       rate[i] -= share * rate[i - 1];
     }
-    flux_in = flux_out;
   }
   rate[n - 1] /= pivot[n - 1];
   for (std::size_t i = n - 1; i-- > 0;) rate[i] = (rate[i] - mesh.mass_upper_m[i] * rate[i + 1]) / pivot[i];
-  return rate;
+  return change;
 }
 
 }  // namespace
@@ -86,7 +96,8 @@ std::optional<double> depth_at_carbon_m(const Profile& profile, double limit) {
 std::optional<double> turnover_depth_m(const CarbonField& field, std::size_t lane,
                                        const LaneConditions& conditions) {
   const auto& x = field.mesh->depth_m;
-  const std::vector<double> rate = carbon_rates(field, lane, conditions);
+  const Change change = carbon_change(field, lane, conditions);
+  const std::vector<double>& rate = change.rate;
   double largest = 0.0;
   for (double r : rate) largest = std::max(largest, std::fabs(r));
   // Far ahead of the front rates are round-off and the tail of the scheme; a sign there means nothing.
@@ -95,6 +106,10 @@ std::optional<double> turnover_depth_m(const CarbonField& field, std::size_t lan
   for (std::size_t i = 0; i + 1 < rate.size(); ++i)
     if (rate[i] < -no_change && rate[i + 1] > no_change) last = i + 1;
   if (last == 0) return std::nullopt;
+  // The metal before it must lose in sum: right after a jump single nodes swing.
+  if (std::accumulate(change.gain.begin(), change.gain.begin() + static_cast<std::ptrdiff_t>(last), 0.0) >=
+      0.0)
+    return std::nullopt;
   const std::size_t first = std::min(last >= 2 ? last - 2 : 0, x.size() - 4);
   return root_between(&x[first], &rate[first], x[last - 1], x[last], [](double r) { return r < 0.0; });
 }

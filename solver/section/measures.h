@@ -25,7 +25,7 @@ Profile read_profile(const CarbonField& field, std::size_t lane, const LaneCondi
 std::optional<double> depth_at_carbon_m(const Profile& profile, double limit_wt_pct);
 
 // Depth where the steel changes from giving carbon up (nearer the surface) to gaining it: the sign change of
-// the flux divergence. Empty while the surface gains.
+// the flux divergence. Empty while the metal near the surface gains.
 std::optional<double> turnover_depth_m(const CarbonField& field, std::size_t lane,
                                        const LaneConditions& conditions);
 

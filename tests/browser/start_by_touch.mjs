@@ -2,6 +2,21 @@
 // still there, puts it right, writes a note, ends the load, and takes its recipe over for the next one.
 import { check, sizes, sound } from './harness.mjs';
 
+async function end(page, whileOpen = async () => undefined) {
+  await page.locator('[data-testid="end-open"]').tap();
+  await page.locator('[data-testid="end-person"]').fill('Touch test');
+  await whileOpen();
+  await page.locator('[data-testid="end-confirm"]').tap();
+  await page.locator('.load-title .mark', { hasText: 'ended' }).waitFor({ timeout: 20_000 });
+}
+
+export async function endByTouch({ base, browser, load }) {
+  const seen = await browser.page(sizes[1]);
+  await seen.page.goto(new URL(`/#/load/${load.id}`, base).href);
+  await end(seen.page);
+  await seen.context.close();
+}
+
 export async function startByTouch({ base, browser, furnace }) {
   const seen = await browser.page(sizes[1], { forgiving: true });
   const { page } = seen;
@@ -55,12 +70,10 @@ export async function startByTouch({ base, browser, furnace }) {
   await page.locator('.notes li', { hasText: 'Basket turned at the door.' }).waitFor({ timeout: 20_000 });
   check('note: it stands on the page with its name', (await page.locator('.notes li').last().textContent()).includes('Touch test'));
 
-  await page.locator('[data-testid="end-open"]').tap();
-  await page.locator('[data-testid="end-person"]').fill('Touch test');
-  await sound('end dialog', seen);
-  await browser.photo(page, 'tablet-end');
-  await page.locator('[data-testid="end-confirm"]').tap();
-  await page.locator('.load-title .mark', { hasText: 'ended' }).waitFor({ timeout: 20_000 });
+  await end(page, async () => {
+    await sound('end dialog', seen);
+    await browser.photo(page, 'tablet-end');
+  });
   check('end: the load shows as ended', await page.locator('[data-testid="end-open"]').count() === 0);
   await browser.photo(page, 'tablet-ended');
 

@@ -210,6 +210,9 @@ TEST_CASE("a logger file goes in and reports by line") {
   CHECK(report.duplicate == 0);
   CHECK(report.conflict == 1);
   CHECK(report.refused == 4);
+  CHECK(report.refused_by_reason == std::map<Refusal, std::size_t>{{Refusal::out_of_range, 1},
+                                                                   {Refusal::bad_time, 2},
+                                                                   {Refusal::broken_row, 1}});
   REQUIRE(report.problems.size() == 4);
   CHECK(report.problems[0].line == 3);
   CHECK(report.problems[0].reason ==

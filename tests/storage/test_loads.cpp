@@ -104,6 +104,7 @@ TEST_CASE("of eight people who start a load in one chamber at once, one succeeds
     const std::string furnace = "pit-" + std::to_string(round);
     std::atomic<int> started = 0, refused = 0;
     std::vector<std::thread> people;
+    people.reserve(8);
     for (int i = 0; i < 8; ++i) {
       people.emplace_back([&] {
         const auto fault = fault_of([&] { bench.create(load("2291", 100, {}, "main", furnace)); });
@@ -176,6 +177,7 @@ TEST_CASE("of two people who revise the same revision at once, one is told to re
   for (std::int64_t revision = 1; revision <= 20; ++revision) {
     std::atomic<int> taken = 0;
     std::vector<std::thread> people;
+    people.reserve(8);
     for (int i = 0; i < 2; ++i) {
       people.emplace_back([&] {
         const auto fault =
@@ -215,6 +217,45 @@ TEST_CASE("loads are listed newest first, page by page, by furnace and by being 
   REQUIRE(bench.reader.open_loads().size() == 1);
   CHECK(bench.reader.open_loads()[0].name == "open one");
   CHECK(fault_of([&] { bench.reader.loads("", {}, 0, 0); }) == StorageFault::misuse);
+}
+
+TEST_CASE(
+    "ended loads are found by the time they were in their furnace, open ones and other furnaces left out") {
+  Bench bench;
+  const auto first = bench.create(load("2291", 100, 200));
+  const auto second = bench.create(load("2292", 200, 300, "quench"));
+  bench.create(load("open one", 250));
+  bench.create(load("elsewhere", 100, 900, "main", "pit-3"));
+  const auto ids = [&](std::int64_t from_us, std::int64_t to_us) {
+    std::vector<std::int64_t> found;
+    for (const auto& row : bench.reader.ended_touching("pit-2", from_us, to_us)) found.push_back(row.id);
+    return found;
+  };
+  CHECK(ids(0, 99).empty());
+  CHECK(ids(0, 100) == std::vector{first});
+  CHECK(ids(150, 150) == std::vector{first});
+  CHECK(ids(200, 200) == std::vector{first, second});  // a reading at the very end still belongs to the load
+  CHECK(ids(201, 900) == std::vector{second});
+  CHECK(ids(301, 900).empty());
+}
+
+TEST_CASE("an ended load waits for its result until one of its present revision is stored") {
+  Bench bench;
+  const auto id = bench.create(load("2291", 100));
+  const auto waiting = [&] { return bench.reader.ended_without_result().size(); };
+  const auto save = [&](std::int64_t revision) {
+    bench.store.save_result(
+        {.load = id, .revision = revision, .computed_us = 7, .model_version = "m 1", .result_json = "r"});
+  };
+  CHECK(waiting() == 0);
+  bench.store.revise_load(id, 1, "", 900, by("A", "end load"));
+  CHECK(waiting() == 1);
+  save(1);
+  CHECK(waiting() == 1);
+  save(2);
+  CHECK(waiting() == 0);
+  bench.store.revise_load(id, 2, "", 950, by("A", "correct end"));
+  CHECK(waiting() == 1);
 }
 
 TEST_CASE("notes belong to a load and come back in order") {

@@ -1,7 +1,7 @@
 // Invariant 3, a guessed input is never shown as a measured one: 25 minutes of a log are missing (batch-4, from
 // 06:10 of the invented day). The snapshot says `held`, then `planned`, and the result names the stretch.
 // Limits as in plant.h: a reading speaks for 300 s, is held until 600 s, then the recipe is assumed.
-import { Daemon, MINUTE_MS, binary, check, demoDay, expect, finish, iso, replay, temporaryFolder } from './support.mjs';
+import { Daemon, MINUTE_MS, binary, check, demoDay, expect, finish, iso, replay, temporaryFolder, waitFor } from './support.mjs';
 import { GAP } from '../../config/demo/generate.mjs';
 
 binary();
@@ -24,7 +24,13 @@ async function inTheGap(age_min) {
 for (const [age_min, basis] of [[2, 'measured'], [8, 'held'], [17, 'planned']]) {
   await check(`${age_min} min after the last reading the snapshot says ${basis}`, async () => {
     const { daemon, load, entry } = await inTheGap(age_min);
-    const snapshot = await daemon.must('GET', `/api/v1/loads/${load.id}/snapshot`);
+    // 503 until the model has caught up with the load that was just put in.
+    const answer = await waitFor('the snapshot', 10000, async () => {
+      const got = await daemon.request('GET', `/api/v1/loads/${load.id}/snapshot`);
+      return got.status !== 503 && got;
+    });
+    expect(answer.status === 200, answer.text);
+    const snapshot = answer.json;
     for (const input of ['temperature', 'carbon_potential']) {
       expect(snapshot.inputs[input].basis === basis, `${input}: ${JSON.stringify(snapshot.inputs[input])}`);
     }

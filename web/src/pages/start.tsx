@@ -39,7 +39,7 @@ export function Start({ furnace }: { furnace: string }) {
     const places = [...shown, 'recipe', 'recipe.segments', 'items', ...draft.segments.map((_, i) => `recipe.segments[${i}]`), ...draft.items.map((_, i) => `items[${i}]`)];
     const path = placeOf(field, places);
     const input = path === null ? undefined : form.current?.querySelector<HTMLInputElement>(`[data-path="${CSS.escape(path)}"]`);
-    const where = [whichOf(path ?? ''), input?.labels?.[0]?.textContent ?? ''].filter(Boolean).join(', ');
+    const where = [whichOf(path ?? ''), input?.labels?.[0]?.firstChild?.textContent?.trim() ?? ''].filter(Boolean).join(', ');
     setRefusal({ path, text: plainDetail(text, field), title, where });
     scrollTo({ top: 0 });
   };
