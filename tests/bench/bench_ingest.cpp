@@ -87,7 +87,7 @@ std::string request(int client, int number) {
     const long second = static_cast<long>(number) * batch + i;
     char item[160];
     std::snprintf(item, sizeof item,
-                  "%s{\"furnace\":\"bench\",\"channel\":\"t%d\",\"time\":\"2026-01-%02ldT%02ld:%02ld:%"
+                  "%s{\"furnace\":\"bench%d\",\"channel\":\"t\",\"time\":\"2026-01-%02ldT%02ld:%02ld:%"
                   "02ldZ\",\"value\":%.1f}",
                   i ? "," : "", client, 1 + second / 86400, second / 3600 % 24, second / 60 % 60, second % 60,
                   900.0 + i % 50);
@@ -156,9 +156,17 @@ double raw_round(sqlite3* db, int round) {
 pid_t start_daemon(const std::string& binary, const fs::path& folder) {
   std::ofstream(folder / "hearthfront.toml") << "[listen]\nport = " << port << "\n[log]\nlevel = \"warn\"\n";
   std::ofstream plant(folder / "plant.toml");
-  plant << "[plant]\nname = \"bench\"\n[[furnace]]\nid = \"bench\"\nname = \"bench\"\n";
+  plant << "[plant]\nname = \"bench\"\n";
   for (int c = 0; c < clients; ++c)
-    plant << "[[furnace.channel]]\nname = \"t" << c << "\"\nrole = \"temperature\"\nunit = \"degC\"\n";
+    plant << "[[furnace]]
+id = \"bench" << c << "\"
+name = \"bench\"
+[[furnace.channel]]
+name = \"t\"
+"
+          << "role = \"temperature\"
+unit = \"degC\"
+";
   plant.close();
   fs::copy_file(HF_SOURCE_DIR "/config/steels.toml", folder / "steels.toml",
                 fs::copy_options::overwrite_existing);

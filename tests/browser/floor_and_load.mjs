@@ -28,6 +28,7 @@ for (const size of sizes) {
   await attempt(`${size.name}: floor and load`, () => look(size));
 }
 await attempt('units and theme', preferences);
+await attempt('two tabs', twoTabs);
 await attempt('lost contact', lostContact);
 await attempt('start by touch', async () => {
   const now = await api('floor');
@@ -106,6 +107,24 @@ async function preferences() {
   check('theme: the second press is dark', await page.evaluate(() => document.documentElement.dataset.theme) === 'dark');
   await sound('units and theme', seen);
   await seen.context.close();
+}
+
+// Both tabs stay current on one stream, and the second takes it over when the first is closed.
+async function twoTabs() {
+  const { page, context } = await browser.page(sizes[1]);
+  let streams = 0;
+  context.on('request', (request) => { if (request.url().endsWith('/api/v1/events')) ++streams; });
+  await page.goto(new URL('/#/', base).href);
+  await page.locator('[data-testid="card"]').first().waitFor();
+  const second = await context.newPage();
+  await second.goto(new URL('/#/', base).href);
+  await second.locator('[data-testid="card"]').first().waitFor();
+  check('two tabs: the second is current', (await changes(second, 'data-age', 10_000)).moved);
+  check('two tabs: they share one stream', streams === 1, streams);
+  await page.close();
+  check('two tabs: the one that stays is current', (await changes(second, 'data-age', 10_000)).moved);
+  check('two tabs: it has taken the stream over', streams === 2, streams);
+  await context.close();
 }
 
 // First no stream (polling must carry on), then no answer at all, then everything back.

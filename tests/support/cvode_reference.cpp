@@ -197,6 +197,11 @@ ReferenceResult solve_reference(const ReferenceProblem& problem, const Reference
   result.depth_m = e.centre;
   const double* c = N_VGetArrayPointer(s.state);
   result.carbon_wt_pct.assign(c, c + e.n);
+  N_Vector rate = N_VClone(s.state);
+  right_hand_side(end, s.state, rate, &e);
+  const double* f = N_VGetArrayPointer(rate);
+  result.rate_wt_pct_s.assign(f, f + e.n);
+  N_VDestroy(rate);
   return result;
 }
 

@@ -41,6 +41,7 @@ struct ReferenceOptions {
 struct ReferenceResult {
   std::vector<double> depth_m;  // cell centres
   std::vector<double> carbon_wt_pct;
+  std::vector<double> rate_wt_pct_s;  // dC/dt at the end, by the right-hand side itself
   long steps = 0;
   double seconds = 0;  // processor time of the integration, set-up excluded
 

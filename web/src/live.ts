@@ -10,7 +10,7 @@ import { StreamTurn } from './stream_turn.ts';
 export type Link = 'starting' | 'stream' | 'polling' | 'catching up' | 'away';
 export interface Live { floor: Floor | null; received: Moment; link: Link; trouble: string | null }
 
-const awayAfterMs = 100_000;
+const awayAfterMs = 10_000;
 const pollEveryMs = 2_000;         // without a stream
 const askWhenSilentMs = 4_000;     // with one: its heartbeat is invisible to a page, so silence is checked by asking
 const streamDeadAfterMs = 40_000;  // asking works but the stream says nothing: open it again
