@@ -1,7 +1,7 @@
 // Counts checks in the output of test runners, for deploy/test: prints "passed failed". Reads
 //   ctest    the output of `ctest -V`: doctest cases and "N passed, N failed" lines of each test program; a program
 //            that prints neither counts as one check, and one that fails without a failed check adds a failed one
-//   script   the last "N passed, N failed" line
+//   script   the "N passed, N failed" lines, one for each script that ran
 //   node     the "# pass N" / "# fail N" lines of node --test (spec or TAP), or else as script
 // Usage: node count.mjs ctest|script|node FILE. Exit 2 where nothing can be counted: no tests is no success.
 import { readFileSync } from 'node:fs';
@@ -13,7 +13,8 @@ const withoutColour = (text) => text.replace(/\u001b\[[0-9;]*m/g, '');
 
 export function countScript(text) {
   const lines = withoutColour(text).split('\n').map((line) => line.match(SCRIPT)).filter(Boolean);
-  return lines.length ? { passed: Number(lines.at(-1)[1]), failed: Number(lines.at(-1)[2]) } : null;
+  const sum = (group) => lines.reduce((total, line) => total + Number(line[group]), 0);
+  return lines.length ? { passed: sum(1), failed: sum(2) } : null;
 }
 
 export function countNode(text) {

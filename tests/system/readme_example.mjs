@@ -10,7 +10,7 @@ const readme = readFileSync(join(SOURCE, 'README.md'), 'utf8');
 
 // Indented blocks after the marker: the command, then what it prints.
 const after = readme.slice(readme.indexOf('<!-- worked example'));
-const blocks = [...after.matchAll(/(?:^ {4}.*\n|^\n(?= {4}))+/gm)].map((m) => m[0].replace(/^ {4}/gm, '').trimEnd());
+const blocks = [...after.matchAll(/(?:^ {4}.*\n|^\n(?= {4}))+/gm)].map((m) => m[0].replace(/^ {4}/gm, '').replace(/^\n+/, '').trimEnd());
 
 function run(command) {
   const words = command.replace(/\\\n/g, ' ').trim().split(/\s+/);

@@ -1,0 +1,131 @@
+// Real answers of a real daemon against the schemas of server/api/openapi.yaml (JSON Schema 2020-12 by ajv), and
+// the document itself as the daemon serves it.
+import { readFileSync } from 'node:fs';
+import { join } from 'node:path';
+import Ajv from 'ajv/dist/2020.js';
+import { parse } from 'yaml';
+import { Daemon, MINUTE_MS, SOURCE, check, expect, finish, iso } from '../system/support.mjs';
+
+const text = readFileSync(join(SOURCE, 'server/api/openapi.yaml'), 'utf8');
+const description = parse(text);
+const ajv = new Ajv({ strict: false, validateFormats: false, allErrors: true });
+ajv.addSchema({ $id: 'api', components: description.components });
+
+// References in the document start at its root; in ajv they start at the schema called api.
+const rooted = (node) => Array.isArray(node) ? node.map(rooted)
+  : node && typeof node === 'object'
+    ? Object.fromEntries(Object.entries(node).map(([k, v]) => [k, k === '$ref' ? v.replace(/^#/, 'api#') : rooted(v)]))
+    : node;
+
+function answerSchema(path, method, status) {
+  const operation = description.paths[path][method];
+  let answer = operation.responses[status] ?? operation.responses.default;
+  if (answer.$ref) answer = description.components.responses[answer.$ref.split('/').pop()];
+  return Object.values(answer.content ?? {})[0]?.schema;
+}
+
+const checked = new Set();
+async function call(daemon, path, method, url, options = {}) {
+  const response = await fetch(daemon.url + url, { method: method.toUpperCase(), ...options, signal: AbortSignal.timeout(10000) });
+  const body = await response.text();
+  const type = response.headers.get('content-type') ?? '';
+  if (type.includes('json')) {
+    const validate = ajv.compile(rooted(answerSchema(path, method, String(response.status))));
+    expect(validate(JSON.parse(body)), `${method} ${url} -> ${response.status}: ${ajv.errorsText(validate.errors)}\n${body.slice(0, 400)}`);
+  }
+  checked.add(`${method} ${path}`);
+  return { status: response.status, body: type.includes('json') ? JSON.parse(body) : body, headers: response.headers };
+}
+const json = (value) => ({ headers: { 'content-type': 'application/json' }, body: JSON.stringify(value) });
+
+const daemon = await Daemon.fresh();
+const start_ms = Date.now() - 90 * MINUTE_MS;
+const body = { ...JSON.parse(readFileSync(join(SOURCE, 'config/demo/example/load.json'), 'utf8')), started_at: iso(start_ms) };
+delete body.ended_at;
+let id = 0;
+
+await check('readings and logs', async () => {
+  const readings = [];
+  for (let m = 0; m < 80; m++) {
+    const time = iso(start_ms + m * MINUTE_MS);
+    readings.push({ furnace: 'pit-2', channel: 'temperature', time, value: 925 }, { furnace: 'pit-2', channel: 'probe_emf', time, value: 1150 });
+  }
+  readings.push({ furnace: 'pit-2', channel: 'no-such', time: iso(start_ms), value: 1 });
+  const taken = await call(daemon, '/api/v1/readings', 'post', '/api/v1/readings', json({ readings }));
+  expect(taken.status === 200 && taken.body.stored === 160 && taken.body.refused === 1, JSON.stringify(taken.body).slice(0, 200));
+  const log = `time,emf_mV,CO_pct,temp_C\n${iso(start_ms + 85 * MINUTE_MS)},1150,20.0,925\nnonsense,1,2,3\n`;
+  const sent = await call(daemon, '/api/v1/furnaces/{furnace}/log', 'post', '/api/v1/furnaces/pit-2/log?mapping=logger',
+    { headers: { 'content-type': 'text/csv' }, body: log });
+  expect(sent.status === 200 && sent.body.stored === 3 && sent.body.problems.length > 0, JSON.stringify(sent.body));
+});
+
+await check('a load from its start to its end', async () => {
+  const made = await call(daemon, '/api/v1/loads', 'post', '/api/v1/loads', json(body));
+  expect(made.status === 201, JSON.stringify(made.body));
+  id = made.body.id;
+  for (const view of ['snapshot', 'result', 'history']) {
+    const seen = await call(daemon, `/api/v1/loads/{load}/${view}`, 'get', `/api/v1/loads/${id}/${view}`);
+    expect(seen.status === 200, `${view}: ${seen.status}`);
+  }
+  const note = await call(daemon, '/api/v1/loads/{load}/notes', 'post', `/api/v1/loads/${id}/notes`, json({ person: 'Test', text: 'Invented.' }));
+  expect(note.status === 201, JSON.stringify(note.body));
+  await call(daemon, '/api/v1/floor', 'get', '/api/v1/floor');
+  const ended = await call(daemon, '/api/v1/loads/{load}/end', 'post', `/api/v1/loads/${id}/end`, json({ person: 'Test' }));
+  expect(ended.status === 200 && ended.body.state === 'ended', JSON.stringify(ended.body));
+  for (const view of ['snapshot', 'result', 'history'])
+    await call(daemon, `/api/v1/loads/{load}/${view}`, 'get', `/api/v1/loads/${id}/${view}`);
+  await call(daemon, '/api/v1/loads/{load}', 'get', `/api/v1/loads/${id}`);
+  const list = await call(daemon, '/api/v1/loads', 'get', '/api/v1/loads?state=ended&limit=1');
+  expect(list.body.loads.length === 1, 'one ended load');
+});
+
+await check('the definition that comes back starts the same load again', async () => {
+  const again = { ...(await (await fetch(`${daemon.url}/api/v1/loads/${id}`)).json()).definition };
+  const validate = ajv.compile(rooted(description.components.schemas.LoadBody));
+  expect(validate(again), ajv.errorsText(validate.errors));
+});
+
+await check('plant and service documents', async () => {
+  await call(daemon, '/api/v1/furnaces', 'get', '/api/v1/furnaces');
+  await call(daemon, '/api/v1/furnaces/{furnace}', 'get', '/api/v1/furnaces/pit-2');
+  await call(daemon, '/api/v1/furnaces/{furnace}/readings', 'get', '/api/v1/furnaces/pit-2/readings?channel=temperature');
+  await call(daemon, '/api/v1/steels', 'get', '/api/v1/steels');
+  await call(daemon, '/api/v1/status', 'get', '/api/v1/status');
+  for (const path of ['/healthz', '/readyz', '/metrics']) expect((await call(daemon, path, 'get', path)).status === 200, path);
+  const served = await call(daemon, '/api/v1/openapi.yaml', 'get', '/api/v1/openapi.yaml');
+  expect(served.body === text, 'the daemon serves another description');
+});
+
+await check('problems are problem documents', async () => {
+  const cases = [
+    ['/api/v1/loads/{load}', 'get', '/api/v1/loads/999', {}, 404],
+    ['/api/v1/loads', 'post', '/api/v1/loads', json({}), 422],
+    ['/api/v1/readings', 'post', '/api/v1/readings', { headers: { 'content-type': 'application/json' }, body: '{' }, 400],
+    ['/api/v1/furnaces/{furnace}', 'get', '/api/v1/furnaces/nowhere', {}, 404],
+  ];
+  for (const [path, method, url, options, status] of cases) {
+    const answer = await call(daemon, path, method, url, options);
+    expect(answer.status === status, `${url}: ${answer.status}`);
+    expect(answer.headers.get('content-type').startsWith('application/problem+json'), `${url}: ${answer.headers.get('content-type')}`);
+  }
+});
+
+await check('the event stream greets with the floor', async () => {
+  const response = await fetch(`${daemon.url}/api/v1/events`, { signal: AbortSignal.timeout(10000) });
+  const reader = response.body.getReader();
+  let seen = '';
+  while (!seen.includes('\n\n')) seen += new TextDecoder().decode((await reader.read()).value);
+  await reader.cancel();
+  expect(seen.includes('event: floor'), seen.slice(0, 200));
+  const validate = ajv.compile(rooted(description.components.schemas.Floor));
+  expect(validate(JSON.parse(/^data: (.*)$/m.exec(seen)[1])), ajv.errorsText(validate.errors));
+  checked.add('get /api/v1/events');
+});
+
+await check('every operation of the description was called', () => {
+  for (const [path, operations] of Object.entries(description.paths))
+    for (const method of Object.keys(operations)) expect(checked.has(`${method} ${path}`), `${method} ${path} was not called`);
+});
+
+await daemon.stop();
+finish();
