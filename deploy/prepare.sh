@@ -100,10 +100,15 @@ build_daemon() {
     quietly "$BUILD/logs/configure.log" cmake -S "$ROOT" -B "$BUILD" -G Ninja -DCMAKE_BUILD_TYPE=RelWithDebInfo
   fi
   [ -z "$target" ] || arguments+=(--target "$target")
-  if ! ninja -C "$BUILD" -n ${target:+"$target"} 2>/dev/null | grep -q 'no work to do'; then
-    say "Building hearthfront (the first time takes some minutes)"
-  fi
+  # Said only where there is something to wait for.
+  (sleep 3 && say "Building hearthfront (the first time takes some minutes)") &
+  local teller=$!
+  # shellcheck disable=SC2064
+  trap "kill $teller 2>/dev/null || true" EXIT
   quietly "$BUILD/logs/build.log" cmake "${arguments[@]}"
+  kill "$teller" 2>/dev/null || true
+  wait "$teller" 2>/dev/null || true
+  trap - EXIT
 }
 
 daemon_path() {

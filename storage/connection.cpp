@@ -99,7 +99,9 @@ StorageError explain(const SQLite::Exception& error, const std::string& path, st
 Connection::Connection(std::string path, Role role, std::int64_t max_file_bytes) : path_(std::move(path)) {
   const bool writer = role == Role::writer;
   try {
-    const int flags = writer ? SQLite::OPEN_READWRITE | SQLite::OPEN_CREATE : SQLite::OPEN_READONLY;
+    // One thread at a time uses a connection (store.h), so SQLite need not lock it at every call.
+    const int flags = SQLite::OPEN_NOMUTEX |
+                      (writer ? SQLite::OPEN_READWRITE | SQLite::OPEN_CREATE : SQLite::OPEN_READONLY);
     database_ = std::make_unique<SQLite::Database>(path_, flags, busy_timeout_ms);
     // SQLite opens a write-protected file for reading without a word.
     if (writer && sqlite3_db_readonly(database_->getHandle(), "main") == 1) {

@@ -73,6 +73,7 @@ Json floor_item_json(const LoadView& view) {
           {"case_depth_window_mm", window_json(definition.case_depth_window_mm)},
           {"surface_carbon_wt_pct", item.surface_carbon_wt_pct},
           {"surface_carbon_window_wt_pct", surface_window ? window_json(*surface_window) : Json(nullptr)},
+          {"outcome", outcome_word(item.outcome)},
           {"strip", strip_json(item, definition)}};
 }
 

@@ -21,7 +21,8 @@ Window read_window(JsonFields& item, std::string_view name, double low, double h
   const double from = numbers ? pair[0].get<double>() : 0, to = numbers ? pair[1].get<double>() : 0;
   if (!numbers || !(from >= low && to <= high && from < to))
     item.fail(name, "expected two numbers, the smaller first, from " + rounded(low) + " to " + rounded(high) +
-                        " " + std::string(unit) + ".");
+                        " " + std::string(unit) +
+                        (numbers ? ", found " + rounded(from) + " and " + rounded(to) : "") + ".");
   return {from, to};
 }
 

@@ -158,15 +158,8 @@ pid_t start_daemon(const std::string& binary, const fs::path& folder) {
   std::ofstream plant(folder / "plant.toml");
   plant << "[plant]\nname = \"bench\"\n";
   for (int c = 0; c < clients; ++c)
-    plant << "[[furnace]]
-id = \"bench" << c << "\"
-name = \"bench\"
-[[furnace.channel]]
-name = \"t\"
-"
-          << "role = \"temperature\"
-unit = \"degC\"
-";
+    plant << "[[furnace]]\nid = \"bench" << c << "\"\nname = \"bench\"\n[[furnace.channel]]\nname = \"t\"\n"
+          << "role = \"temperature\"\nunit = \"degC\"\n";
   plant.close();
   fs::copy_file(HF_SOURCE_DIR "/config/steels.toml", folder / "steels.toml",
                 fs::copy_options::overwrite_existing);
@@ -209,14 +202,17 @@ int main(int argc, char** argv) {
     daemon = start_daemon(argv[1], folder);
     sqlite3* db = nullptr;
     check(sqlite3_open((folder / "raw.db").c_str(), &db), db);
-    check(sqlite3_exec(
-              db,
-              "PRAGMA journal_mode=WAL; PRAGMA synchronous=FULL; CREATE TABLE reading(channel INTEGER NOT "
-              "NULL, "
-              "time_us INTEGER NOT NULL, value REAL NOT NULL, PRIMARY KEY(channel, time_us, value)) STRICT, "
-              "WITHOUT ROWID",
-              nullptr, nullptr, nullptr),
-          db);
+    check(
+        sqlite3_exec(
+            db,
+            "PRAGMA journal_mode=WAL; PRAGMA synchronous=FULL; PRAGMA foreign_keys=ON;"
+            "CREATE TABLE channel(id INTEGER PRIMARY KEY, furnace TEXT NOT NULL, name TEXT NOT NULL) STRICT;"
+            "CREATE TABLE reading(channel INTEGER NOT NULL REFERENCES channel(id), time_us INTEGER NOT NULL,"
+            "value REAL NOT NULL, PRIMARY KEY(channel, time_us, value)) STRICT, WITHOUT ROWID;"
+            "INSERT INTO channel(id, furnace, name) VALUES(0,'b','t'),(1,'c','t'),(2,'d','t'),(3,'e','t'),"
+            "(4,'f','t'),(5,'g','t'),(6,'h','t'),(7,'i','t')",
+            nullptr, nullptr, nullptr),
+        db);
     std::vector<double> ours, raw;
     for (int round = 0; round < rounds; ++round) {
       ours.push_back(daemon_round(round));

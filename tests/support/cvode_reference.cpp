@@ -8,9 +8,10 @@
 
 #include <algorithm>
 #include <cmath>
-#include <ctime>
 #include <stdexcept>
 #include <string>
+
+#include "support/cpu_time.h"
 
 namespace hearthfront::testing {
 namespace {
@@ -121,13 +122,6 @@ int jacobian(double, N_Vector state, N_Vector, SUNMatrix matrix, void* user, N_V
 
 void check(int code, const char* what) {
   if (code < 0) throw std::runtime_error(std::string(what) + " failed with code " + std::to_string(code));
-}
-
-// Processor time: on a shared machine the clock on the wall says more about the neighbours.
-double thread_seconds() {
-  timespec now{};
-  clock_gettime(CLOCK_THREAD_CPUTIME_ID, &now);
-  return static_cast<double>(now.tv_sec) + 1e-9 * static_cast<double>(now.tv_nsec);
 }
 
 // Frees SUNDIALS objects in the reverse order of their making.

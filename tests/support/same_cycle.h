@@ -6,6 +6,7 @@
 
 #include "solver/solver.h"
 #include "support/cvode_reference.h"
+#include "support/cycles.h"
 
 namespace hearthfront::testing {
 

@@ -6,6 +6,7 @@
 #include <algorithm>
 #include <initializer_list>
 
+#include "solver/material/constants.h"
 #include "validation/exact_support.h"
 
 using namespace hearthfront::solver;
