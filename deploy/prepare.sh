@@ -96,7 +96,8 @@ build_web() {
 # The dashboard is part of the binary, so it is built first. $1: a target, or empty for everything.
 build_daemon() {
   local target=${1:-} arguments=(--build "$BUILD" -j "$(nproc)")
-  if [ ! -f "$BUILD/build.ninja" ]; then
+  # Everything is configured anew each time: a library that was missing for the tests may be there now.
+  if [ ! -f "$BUILD/build.ninja" ] || [ -z "$target" ]; then
     quietly "$BUILD/logs/configure.log" cmake -S "$ROOT" -B "$BUILD" -G Ninja -DCMAKE_BUILD_TYPE=RelWithDebInfo
   fi
   [ -z "$target" ] || arguments+=(--target "$target")

@@ -48,6 +48,8 @@ Response Api::take_log(const Request& request) {
                   "mapping"};
   }
   const CsvReport report = accept_csv(parts_.acceptor, request.body, furnace, *mapping);
+  for (const auto& [refusal, count] : report.refused_by_reason)
+    parts_.metrics.add_refused(text(refusal), static_cast<double>(count));
   Json problems = Json::array();
   for (const auto& problem : report.problems) problems.push_back({{"line", problem.line}, {"reason", problem.reason}});
   const Json json{{"rows", report.rows},       {"stored", report.stored},   {"duplicate", report.duplicate},

@@ -71,6 +71,7 @@ std::optional<Unit> read_unit(ConfigTable& table, std::optional<Role> role) {
 
 void read_chamber(ConfigTable& table, const std::vector<Chamber>& chambers, std::string& into) {
   std::vector<std::string> ids;
+  ids.reserve(chambers.size());
   for (const Chamber& each : chambers) ids.push_back(each.id);
   if (ids.empty()) table.fault_here("the furnace has no chamber to put it in");
   if (ids.size() == 1) into = ids.front();

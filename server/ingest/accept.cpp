@@ -195,7 +195,7 @@ Accepted Acceptor::accept(const std::vector<RawReading>& items) const {
       problem.detail += " The first " + std::to_string(from) +
                         " readings of this request are taken care of; sending all again is safe.";
     }
-    throw problem;
+    throw Problem(std::move(problem));
   }
   tally(accepted);
   return accepted;

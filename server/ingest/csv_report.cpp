@@ -31,7 +31,7 @@ CsvReport accept_csv(const Acceptor& acceptor, std::string_view text, const Furn
                      const CsvMapping& mapping, std::size_t max_problems) {
   CsvReport report;
   CsvReader reader(text, furnace, mapping);
-  if (reader.problem()) throw *reader.problem();
+  if (reader.problem()) throw Problem(*reader.problem());
   std::vector<RawReading> items;
   int last_line = 0;
   while (items.clear(), reader.next(items, acceptor.batch_size())) {

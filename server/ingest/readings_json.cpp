@@ -126,7 +126,7 @@ class ReadingsHandler final : public nlohmann::json_sax<Json> {
   }
 
   // A value, or the beginning of an object or array in a place where it does not belong.
-  bool take(Scalar value) {
+  bool take(const Scalar& value) {
     if (depth_ == 0) {
       return bad_shape(
           "The body is " + std::string(value.kind) +
@@ -142,11 +142,11 @@ class ReadingsHandler final : public nlohmann::json_sax<Json> {
                                          "; expected an object with furnace, channel, time and value");
       return true;
     }
-    if (depth_ == 3 && in_item_) take_member(std::move(value));
+    if (depth_ == 3 && in_item_) take_member(value);
     return true;
   }
 
-  void take_member(Scalar value) {
+  void take_member(const Scalar& value) {
     std::size_t index = 0;
     while (index < members.size() && members[index] != key_) ++index;
     if (index == members.size()) {

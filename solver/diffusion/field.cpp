@@ -12,7 +12,6 @@ namespace hearthfront::solver {
 namespace {
 
 constexpr double gamma = 0.29289321881345247560;  // 1 - 1/sqrt(2)
-constexpr double lowest_wt_pct = 0.0, highest_wt_pct = 1.9;
 
 struct Scratch {
   double *lower, *upper, *pivot, *diffusivity, *phi, *k1, *k2;
@@ -160,13 +159,17 @@ void solve(std::size_t n, const Scratch& s, double* __restrict x) {
 // With A = M - gamma dt J the stages are A k1 = F(u), A k2 = F(u + dt k1) - 2 M k1, and u + dt (3 k1 + k2)/2
 // is next. Solved here for k2 + 2 k1, whose right side F(u + dt k1) - 2 gamma dt J k1 is again the
 // divergence of a potential: no product with M, and the same flux form.
+//
+// A damped step is one linearly implicit Euler stage, (M - dt J) k1 = F(u), u + dt k1: of first order, but
+// without the first stage's reach of 1/gamma = 3.4 times the change, which a jump of the surface would throw
+// far outside the range of D.
 template <std::size_t W>
-void advance_block(const Mesh& mesh, std::span<const LaneConditions> conditions, double dt,
+void advance_block(const Mesh& mesh, std::span<const LaneConditions> conditions, double dt, bool damped,
                    double* __restrict u, double* __restrict crossed, const Scratch& s) {
   using P = Pack<W>;
   using C = Chunk<W>;
   const std::size_t n = mesh.nodes();
-  const double gamma_dt = gamma * dt;
+  const double gamma_dt = damped ? dt : gamma * dt;
   // Spare lanes repeat the last.
   const auto lane = [&](std::size_t l) -> const LaneConditions& {
     return conditions[l < conditions.size() ? l : conditions.size() - 1];
@@ -194,16 +197,20 @@ void advance_block(const Mesh& mesh, std::span<const LaneConditions> conditions,
   (P::load(k1) + flux_1).store(k1);
   solve<W>(n, s, k1);
 
+  const P rate_0 = P::load(k1);
+  if (damped) {
+    (P::load(crossed) + dt * (flux_1 - damping * rate_0)).store(crossed);
+    for (std::size_t i = 0; i < n * W; i += C::size) (C::load(u + i) + dt * C::load(k1 + i)).store(u + i);
+    return;
+  }
+
   const C step = C::all(dt), weight = C::all(2.0 * gamma_dt);
   for (std::size_t i = 0; i < n * W; i += C::size) {
     const C rate = C::load(k1 + i);
-    // The first stage reaches 1/gamma = 3.4 times as far as the solution; where the surface jumps that would
-    // leave the range of the potential.
-    const C next = potential.value((C::load(u + i) + step * rate).clamped(lowest_wt_pct, highest_wt_pct));
+    const C next = potential.value(C::load(u + i) + step * rate);
     (next - weight * C::load(diffusivity + i) * rate).store(phi + i);
   }
   divergence<W>(mesh, phi, k2);
-  const P rate_0 = P::load(k1);
   const P flux_2 = forced + (equilibrium - (P::load(u) + dt * rate_0)) * transfer + 2.0 * damping * rate_0;
   (P::load(k2) + flux_2).store(k2);
   solve<W>(n, s, k2);
@@ -219,11 +226,13 @@ void advance_block(const Mesh& mesh, std::span<const LaneConditions> conditions,
 
 }  // namespace
 
-double settling_step_s(double settled_s, double left_s) {
-  constexpr double first_step_s = 2.0;
-  constexpr double growth = 0.3;
-  const double wanted = std::max(first_step_s, growth * settled_s);
-  return left_s / std::ceil(left_s / wanted - 1e-9);
+SettlingStep settling_step(double settled_s, double left_s) {
+  constexpr double damped_step_s = 0.5, damped_until_s = 2.0, least_step_s = 2.0, growth = 0.4;
+  const bool damped = settled_s < damped_until_s;
+  const double wanted = damped ? damped_step_s : std::max(least_step_s, growth * settled_s);
+  if (left_s <= wanted) return {left_s, damped};
+  // No equal parts while damped: the growing steps that follow will divide what is left.
+  return {damped ? damped_step_s : left_s / std::ceil(left_s / wanted - 1e-9), damped};
 }
 
 CarbonField::CarbonField(std::shared_ptr<const Mesh> m, std::size_t lane_count, double carbon)
@@ -244,7 +253,8 @@ DiffusionStepper::DiffusionStepper(std::size_t nodes, std::size_t lanes) {
   for (auto* v : {&lower_, &upper_, &pivot_, &diffusivity_, &phi_, &k1_, &k2_}) v->assign(nodes * width, 0.0);
 }
 
-void DiffusionStepper::step(CarbonField& field, std::span<const LaneConditions> conditions, double dt_s) {
+void DiffusionStepper::step(CarbonField& field, std::span<const LaneConditions> conditions, double dt_s,
+                            bool damped) {
   assert(conditions.size() == field.lanes);
   const Mesh& mesh = *field.mesh;
   const Scratch scratch{lower_.data(), upper_.data(), pivot_.data(), diffusivity_.data(),
@@ -253,12 +263,12 @@ void DiffusionStepper::step(CarbonField& field, std::span<const LaneConditions> 
     double* u = field.values.data() + first * mesh.nodes();
     double* crossed = field.crossed_wt_pct_m.data() + first;
     if (field.width == 1)
-      advance_block<1>(mesh, conditions.subspan(first), dt_s, u, crossed, scratch);
+      advance_block<1>(mesh, conditions.subspan(first), dt_s, damped, u, crossed, scratch);
     else
-      advance_block<CarbonField::block>(mesh, conditions.subspan(first), dt_s, u, crossed, scratch);
+      advance_block<CarbonField::block>(mesh, conditions.subspan(first), dt_s, damped, u, crossed, scratch);
   }
   ++work_.steps;
-  work_.node_evaluations += 2 * mesh.nodes() * field.lanes;
+  work_.node_evaluations += (damped ? 1 : 2) * mesh.nodes() * field.lanes;
 }
 
 double surface_transfer_m_per_s(const Mesh& mesh, const LaneConditions& c) {

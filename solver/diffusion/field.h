@@ -56,14 +56,17 @@ struct LaneConditions {
   SurfaceCondition surface;
 };
 
-// The step to take when `left_s` of an interval remains and the inputs last jumped `settled_s` ago. After a
-// jump steps start at 2 s and grow with the time since: the profile near the surface then has the time scale
-// of its own age, and the two-stage method keeps its order and its bounds. What is left is divided into equal
-// parts.
-double settling_step_s(double settled_s, double left_s);
+// The step to take when `left_s` of an interval remains and the inputs last jumped `settled_s` ago. The first
+// 2 s go in short damped steps (bounds hold through a jump of any size); then steps grow with the time since:
+// the profile near the surface has the time scale of its own age. What is left is divided into equal parts.
+struct SettlingStep {
+  double duration_s;
+  bool damped;
+};
+SettlingStep settling_step(double settled_s, double left_s);
 
 struct WorkCounters {
-  std::uint64_t steps = 0;             // time steps, each of two stages
+  std::uint64_t steps = 0;             // time steps, of two stages or one where damped
   std::uint64_t node_evaluations = 0;  // potentials computed, over all lanes
 };
 
@@ -71,7 +74,8 @@ class DiffusionStepper {
  public:
   DiffusionStepper(std::size_t nodes, std::size_t lanes);
   // One step of dt_s > 0. `conditions` has one entry for each lane; all lanes share the law's rise and fold.
-  void step(CarbonField& field, std::span<const LaneConditions> conditions, double dt_s);
+  // A damped step is of first order in time and never reaches beyond the solution.
+  void step(CarbonField& field, std::span<const LaneConditions> conditions, double dt_s, bool damped = false);
   const WorkCounters& work() const { return work_; }
 
  private:

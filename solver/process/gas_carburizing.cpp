@@ -146,9 +146,9 @@ Outcome GasCarburizing::advance(State& state, const IntervalInputs& inputs, Work
   double done = 0.0;
   while (done < dt) {
     const double left = dt - done;
-    const double step = settling_step_s(state.settled_s + done, left);
-    ws.stepper_.step(state.field, state.conditions, step);
-    done = step < left ? done + step : dt;
+    const SettlingStep step = settling_step(state.settled_s + done, left);
+    ws.stepper_.step(state.field, state.conditions, step.duration_s, step.damped);
+    done = step.duration_s < left ? done + step.duration_s : dt;
   }
   state.settled_s += dt;
 

@@ -12,6 +12,7 @@
 #include "server/api/api.h"
 
 using namespace hearthfront::server;
+namespace storage = hearthfront::storage;
 
 namespace {
 

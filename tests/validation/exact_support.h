@@ -49,9 +49,10 @@ void diffuse(solver::CarbonField& field, const solver::LaneConditions& condition
   solver::DiffusionStepper stepper(field.mesh->nodes(), 1);
   for (double t = 0; t < duration_s - 1e-6;) {
     for (double done = 0; done < 60.0;) {
-      const double step = solver::settling_step_s(t + done, 60.0 - done);
-      stepper.step(field, {&conditions, 1}, step);
-      done = step < 60.0 - done ? done + step : 60.0;
+      const double left = 60.0 - done;
+      const solver::SettlingStep step = solver::settling_step(t + done, left);
+      stepper.step(field, {&conditions, 1}, step.duration_s, step.damped);
+      done = step.duration_s < left ? done + step.duration_s : 60.0;
     }
     t += 60.0;
     check(t);
