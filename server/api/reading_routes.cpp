@@ -14,7 +14,7 @@ void Api::add_reading_routes() {
 
 Response Api::take_readings(const Request& request) {
   DecodedReadings decoded = decode_readings(request.body, parts_.acceptor.batch_size());
-  if (decoded.problem) throw *decoded.problem;
+  if (decoded.problem) throw Problem(*decoded.problem);
   const Accepted accepted = parts_.acceptor.accept(decoded.items);
   Json results = Json::array();
   for (const ReadingOutcome& outcome : accepted.outcomes) {

@@ -26,7 +26,7 @@ using Steady = std::chrono::steady_clock;
 using std::chrono::milliseconds;
 
 constexpr std::size_t batch_rows = 1000;
-constexpr std::size_t batch_bytes = 512 * 1024;
+constexpr std::size_t batch_bytes = std::size_t{512} * 1024;
 constexpr milliseconds first_pause{250}, longest_pause{10'000};
 constexpr milliseconds clock_refresh{2000};
 constexpr int most_problems_told = 20;

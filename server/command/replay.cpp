@@ -93,7 +93,7 @@ int replay(const ReplayOptions& options) {
   }
   const std::string log = read_file(options.log_path);
   const DecodedCsv decoded = decode_csv(log, furnace, *mapping);
-  if (decoded.problem) throw *decoded.problem;
+  if (decoded.problem) throw Problem(*decoded.problem);
   const FileReadings readings(decoded, furnace);
   if (readings.refused() + readings.conflicts() > 0)
     std::fprintf(stderr, "%s: %zu readings refused, %zu set aside because another value stands at their time.\n",

@@ -3,7 +3,7 @@
 //
 // Case depth is read from the core outward (the deepest crossing), as a hardness traverse is judged: a
 // surface that has given carbon up does not end the case. Depths come from a cubic through the four
-// nearest nodes; on the shipped mesh they are within 0.15 um of a converged profile (tests).
+// nearest nodes; on the shipped mesh they are within 0.2 um of a converged profile (tests).
 #pragma once
 
 #include <optional>

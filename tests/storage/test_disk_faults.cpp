@@ -5,8 +5,11 @@
 #include <sys/mount.h>
 #include <unistd.h>
 
+#include <atomic>
 #include <filesystem>
 #include <fstream>
+#include <latch>
+#include <thread>
 
 #include "storage/faulty_disk.h"
 #include "storage/store.h"
@@ -107,6 +110,38 @@ TEST_CASE("after a failed sync every kind of write is refused, and says what to 
   CHECK(fault_of([&] { store.create_load(load("2291", 1), by("A", "start")); }) ==
         StorageFault::unknown_fate);
   CHECK(store.register_channel("pit-2", "temperature") == channel);  // known already: nothing is written
+}
+
+TEST_CASE("what was waiting already when a sync failed is refused as well") {
+  const Folder folder;
+  FaultyDisk disk(folder.path());
+  Store store(at(folder.database()));
+  const auto channel = store.register_channel("pit-2", "temperature");
+  std::latch held{1}, go{1};
+  std::atomic<bool> first = true;
+  store.on_change([&] {
+    if (!first.exchange(false)) return;
+    held.count_down();
+    go.wait();
+  });
+  store.append(series(channel, -1, 1), {});
+  held.wait();
+  // Each is more than half of what one transaction takes: three groups.
+  std::atomic<int> unknown = 0;
+  std::vector<std::thread> senders;
+  senders.reserve(3);
+  for (std::int64_t i = 0; i < 3; ++i) {
+    senders.emplace_back([&, i] {
+      if (fault_of([&] { store.append(series(channel, i * 10'000, 6'000), {}); }) ==
+          StorageFault::unknown_fate)
+        ++unknown;
+    });
+  }
+  CHECK(eventually([&] { return store.counters().queued_jobs == 3; }));
+  disk.arm(DiskFault::sync_error, 1);
+  go.count_down();
+  for (auto& sender : senders) sender.join();
+  CHECK(unknown == 3);
 }
 
 TEST_CASE("a sync that fails while a checkpoint copies rows is not passed over") {

@@ -70,6 +70,7 @@ TEST_CASE("twenty kills in full work lose no acknowledged reading") {
     CHECK(WIFSIGNALED(status));
   }
 
+  CHECK(Outside(folder.database()).text("SELECT value FROM meta WHERE key = 'store.shutdown'") == "open");
   // The next opening notices the crash, checks the file and goes on.
   CHECK_FALSE(fault_of([&] { const Store store(at(folder.database())); }));
   std::int64_t missing = 0;
