@@ -149,7 +149,7 @@ std::string floor_json(const Plant& plant, const Board& board, const FloorFrame&
                   {"clock_speed", frame.clock_speed},
                   {"band", band_not_computed},
                   {"furnaces", std::move(furnaces)}};
-  return json.dump(-1, ' ', false, Json::error_handler_t::replace);
+  return dumped(json);
 }
 
 std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadNote>& notes) {
@@ -186,7 +186,7 @@ std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadN
                   {"notes", result_notes_json(view.result)},
                   {"gaps", result_gaps_json(view.result)},
                   {"shift_notes", std::move(shift_notes)}};
-  return json.dump(-1, ' ', false, Json::error_handler_t::replace);
+  return dumped(json);
 }
 
 std::string history_json(const History& history) {

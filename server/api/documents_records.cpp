@@ -9,10 +9,6 @@
 namespace hearthfront::server {
 namespace {
 
-std::string dumped(const Json& json) {
-  return json.dump(-1, ' ', false, Json::error_handler_t::replace);
-}
-
 Json row_json(const storage::LoadRow& row) {
   return {{"id", row.id},
           {"name", row.name},

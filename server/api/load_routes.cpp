@@ -19,7 +19,8 @@ int limit_from(const Request& request) {
   int limit = 0;
   const char* end = it->second.data() + it->second.size();
   if (std::from_chars(it->second.data(), end, limit).ptr != end || limit < 1 || limit > 200)
-    throw Problem{422, invalid_request, "The limit cannot be used", "limit: expected a whole number from 1 to 200.", "limit"};
+    throw Problem{422, invalid_request, "The limit cannot be used",
+                  "limit: expected a whole number from 1 to 200.", "limit"};
   return limit;
 }
 
@@ -64,10 +65,12 @@ Response Api::create_load(const Request& request) {
   if (load.started_us > now + tolerance_us || load.started_us < now - past_us)
     throw Problem{422, "invalid-load", "The start cannot be right",
                   "started_at: " + format_time(load.started_us) + " is " +
-                      (load.started_us > now ? "in the future" : "too long ago") + "; it is " + format_time(now) + " now.",
+                      (load.started_us > now ? "in the future" : "too long ago") + "; it is " +
+                      format_time(now) + " now.",
                   "started_at"};
   if (load.ended_us && *load.ended_us > now + tolerance_us)
-    throw Problem{422, "invalid-load", "The end cannot be right", "ended_at: lies in the future.", "ended_at"};
+    throw Problem{422, "invalid-load", "The end cannot be right", "ended_at: lies in the future.",
+                  "ended_at"};
 
   storage::LoadRow row;
   row.name = load.name;
@@ -83,20 +86,25 @@ Response Api::create_load(const Request& request) {
                        [&] { return parts_.store.create_load(row, audit); });
   row.revision = 1;
   parts_.loads_changed();
-  return {201, "application/json", load_json(row, load), {{"Location", "/api/v1/loads/" + std::to_string(row.id)}}};
+  return {201,
+          "application/json",
+          load_json(row, load),
+          {{"Location", "/api/v1/loads/" + std::to_string(row.id)}}};
 }
 
 Response Api::list_loads(const Request& request) {
   std::optional<bool> open;
   if (const auto it = request.query.find("state"); it != request.query.end()) {
     if (it->second != "open" && it->second != "ended")
-      throw Problem{422, invalid_request, "The state cannot be used", "state: expected open or ended.", "state"};
+      throw Problem{422, invalid_request, "The state cannot be used", "state: expected open or ended.",
+                    "state"};
     open = it->second == "open";
   }
   const auto furnace = request.query.find("furnace");
   const int limit = limit_from(request);
   auto reader = readers_.take();
-  const auto rows = reader->loads(furnace == request.query.end() ? "" : furnace->second, open, cursor_from(request), limit);
+  const auto rows =
+      reader->loads(furnace == request.query.end() ? "" : furnace->second, open, cursor_from(request), limit);
   const bool more = rows.size() == static_cast<std::size_t>(limit);
   return {200, "application/json", loads_json(rows, more ? std::optional(rows.back().id) : std::nullopt), {}};
 }
@@ -110,12 +118,13 @@ Response Api::add_note(const Request& request) {
   const FoundLoad found = find_load(request);
   const Json body = parse_body(request.body);
   JsonFields fields(body, "", invalid_request);
-  const storage::LoadNote note{0, found.row.id, parts_.clock.now_us(), fields.word("person", 80), fields.word("text", 1000)};
+  const storage::LoadNote note{0, found.row.id, parts_.clock.now_us(), fields.word("person", 80),
+                               fields.word("text", 1000)};
   fields.finish();
   const std::int64_t id = parts_.store.add_note(note);
   parts_.loads_changed();
   const Json json{{"id", id}, {"at", format_time(note.at_us)}, {"person", note.person}, {"text", note.text}};
-  return {201, "application/json", json.dump(-1, ' ', false, Json::error_handler_t::replace), {}};
+  return {201, "application/json", dumped(json), {}};
 }
 
 Response Api::end_load(const Request& request) {
@@ -139,8 +148,9 @@ Response Api::end_load(const Request& request) {
                   "ended_at"};
   LoadDefinition load = *found.definition;
   load.ended_us = ended;
-  const storage::AuditRow audit{now, person, "end load", "load " + std::to_string(found.row.id), "",
-                                Json{{"ended_at", format_time(ended)}}.dump()};
+  const storage::AuditRow audit{now,        person,
+                                "end load", "load " + std::to_string(found.row.id),
+                                "",         Json{{"ended_at", format_time(ended)}}.dump()};
   as_conflict("load-changed", "Somebody else changed this load just now", [&] {
     parts_.store.revise_load(found.row.id, found.row.revision, stored_definition(load), ended, audit);
     return 0;

@@ -13,7 +13,8 @@ std::string not_ready_reason(ServiceState state, bool poisoned) {
   if (state == ServiceState::starting) return "Starting: open loads are being derived from their readings.";
   if (state == ServiceState::stopping) return "Stopping.";
   if (poisoned)
-    return "A write to the database has an unknown fate, so no more are taken. Check the disk, then restart the daemon.";
+    return "A write to the database has an unknown fate, so no more are taken. Check the disk, then restart "
+           "the daemon.";
   return "";
 }
 
@@ -27,8 +28,9 @@ Response serve_file(const Request& request) {
   const std::string path = request.path == "/" ? "/index.html" : request.path;
   const Asset* asset = find_asset(path);
   if (!asset)
-    throw Problem{404, "unknown-path", "There is nothing at this address",
-                  "No route or file is called " + request.path + ". The API is described at /api/v1/openapi.yaml.", ""};
+    throw Problem{
+        404, "unknown-path", "There is nothing at this address",
+        "No route or file is called " + request.path + ". The API is described at /api/v1/openapi.yaml.", ""};
   // The bundler puts a hash of the content into the name of every file but the page itself.
   const bool hashed = path != "/index.html" && path != "/openapi.yaml";
   return {200,
@@ -52,7 +54,7 @@ Response Api::status(const Request&) const {
                   {"plant_note", parts_.plant.note},
                   {"state", state_word(state, poisoned)},
                   {"reason", reason.empty() ? Json(nullptr) : Json(reason)}};
-  return {200, "application/json", json.dump(-1, ' ', false, Json::error_handler_t::replace), {}};
+  return {200, "application/json", dumped(json), {}};
 }
 
 Response Api::ready(const Request&) const {
@@ -90,7 +92,9 @@ void Api::update_metrics() const {
 
 void Api::add_system_routes() {
   HttpServer& http = parts_.http;
-  http.route("GET", "/healthz", [](const Request&) { return Response{200, "text/plain; charset=utf-8", "alive\n", {}}; });
+  http.route("GET", "/healthz", [](const Request&) {
+    return Response{200, "text/plain; charset=utf-8", "alive\n", {}};
+  });
   http.route("GET", "/readyz", [this](const Request& r) { return ready(r); });
   http.route("GET", "/metrics", [this](const Request&) {
     update_metrics();

@@ -25,6 +25,10 @@ std::string short_number(double value) {
 
 }  // namespace
 
+std::string dumped(const Json& json) {
+  return json.dump(-1, ' ', false, Json::error_handler_t::replace);
+}
+
 Json parse_body(std::string_view body) {
   std::vector<std::set<std::string>> members;
   const auto watch = [&](int depth, nlohmann::json::parse_event_t event, auto& parsed) {

@@ -15,6 +15,9 @@ namespace hearthfront::server {
 
 using Json = nlohmann::ordered_json;
 
+// As text; bytes that are not UTF-8 become U+FFFD instead of an exception.
+std::string dumped(const Json& json);
+
 // Parses a request body: depth at most 32, no repeated members. Throws Problem (400, broken-json).
 Json parse_body(std::string_view body);
 

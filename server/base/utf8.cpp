@@ -34,6 +34,8 @@ bool valid_utf8(std::string_view text) {
 }
 
 std::string clean_text(std::string_view text, std::size_t max_bytes) {
+  const auto is_ascii = [](char c) { return static_cast<unsigned char>(c) < 0x80; };
+  if (text.size() <= max_bytes && std::all_of(text.begin(), text.end(), is_ascii)) return std::string(text);
   std::string clean;
   clean.reserve(std::min(text.size(), max_bytes));
   while (!text.empty()) {

@@ -1,5 +1,6 @@
 #include "server/ingest/readings_json.h"
 
+#include <algorithm>
 #include <array>
 #include <nlohmann/json.hpp>
 
@@ -21,7 +22,7 @@ const std::vector<std::string> members{"furnace", "channel", "time", "value"};
 struct Scalar {
   std::string_view kind;  // as messages call it
   bool is_text = false, is_number = false;
-  std::string text{};
+  std::string_view text{};  // as written; lives until the parser goes on
   double number = 0;
 };
 
@@ -34,10 +35,12 @@ class ReadingsHandler final : public nlohmann::json_sax<Json> {
   bool null() override { return take({"null"}); }
   bool boolean(bool yes) override { return take({"true or false", false, false, yes ? "true" : "false"}); }
   bool number_integer(number_integer_t number) override {
-    return take({"a number", false, true, std::to_string(number), static_cast<double>(number)});
+    written_ = std::to_string(number);
+    return take({"a number", false, true, written_, static_cast<double>(number)});
   }
   bool number_unsigned(number_unsigned_t number) override {
-    return take({"a number", false, true, std::to_string(number), static_cast<double>(number)});
+    written_ = std::to_string(number);
+    return take({"a number", false, true, written_, static_cast<double>(number)});
   }
   bool number_float(number_float_t number, const string_t& written) override {
     return take({"a number", false, true, written, number});
@@ -50,6 +53,7 @@ class ReadingsHandler final : public nlohmann::json_sax<Json> {
       if (!new_item()) return false;
       in_item_ = true;
       seen_ = {};
+      time_text_.clear();
       return ++depth_, true;
     }
     return open("an object", depth_ == 0);
@@ -160,15 +164,18 @@ class ReadingsHandler final : public nlohmann::json_sax<Json> {
     }
     seen_[index] = true;
     RawReading& item = decoded_.items.back();
-    std::string* const texts[] = {&item.furnace, &item.channel, &item.time_text};
     if (index == 3) {
-      item.value_text = clean_text(value.text);
       item.value = value.number;
-      if (!value.is_number) refuse(Refusal::wrong_type, wrong_value(value));
-    } else if (value.is_text) {
-      *texts[index] = clean_text(value.text);
-    } else {
-      *texts[index] = clean_text(value.text);
+      if (value.is_number) return;  // it can be written again from the number
+      item.value_text = clean_text(value.text);
+      refuse(Refusal::wrong_type, wrong_value(value));
+      return;
+    }
+    if (index == 2)
+      time_text_ = value.text;
+    else
+      (index == 0 ? item.furnace : item.channel) = clean_text(value.text);
+    if (!value.is_text) {
       refuse(Refusal::wrong_type, members[index] + " is " + std::string(value.kind) + "; expected a string" +
                                       (index == 2 ? " such as \"2026-03-02T06:05:00Z\"" : ""));
     }
@@ -204,13 +211,15 @@ class ReadingsHandler final : public nlohmann::json_sax<Json> {
       if (!seen_[i]) refuse(Refusal::missing_member, members[i] + " is missing");
     }
     RawReading& item = decoded_.items.back();
-    if (item.refusal != Refusal::none) return;
-    std::string reason;
-    if (const auto time_us = parse_time(item.time_text, reason)) {
-      item.time_us = *time_us;
-    } else {
+    if (item.refusal == Refusal::none) {
+      std::string reason;
+      if (const auto time_us = parse_time(time_text_, reason)) {
+        item.time_us = *time_us;
+        return;  // it can be written again from the number
+      }
       refuse(Refusal::bad_time, reason + "; expected RFC 3339 such as \"2026-03-02T06:05:00Z\"");
     }
+    item.time_text = clean_text(time_text_);
   }
 
   const std::string_view body_;
@@ -218,7 +227,7 @@ class ReadingsHandler final : public nlohmann::json_sax<Json> {
   DecodedReadings& decoded_;
   std::size_t depth_ = 0;
   bool found_readings_ = false, in_readings_ = false, in_item_ = false;
-  std::string key_;
+  std::string key_, written_, time_text_;  // kept for their memory
   std::array<bool, 4> seen_{};
 };
 
@@ -226,6 +235,8 @@ class ReadingsHandler final : public nlohmann::json_sax<Json> {
 
 DecodedReadings decode_readings(std::string_view body, std::size_t max_items) {
   DecodedReadings decoded;
+  constexpr std::size_t usual_item_bytes = 80;
+  decoded.items.reserve(std::min(max_items, body.size() / usual_item_bytes + 1));
   ReadingsHandler handler(body, max_items, decoded);
   const bool whole = Json::sax_parse(body.begin(), body.end(), &handler);
   if (whole && !handler.found_readings()) {
