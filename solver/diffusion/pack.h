@@ -72,17 +72,6 @@ struct Pack {
     return *this;
   }
 
-  // What is not a number stays so: each comparison is false for it.
-  Pack clamped(double low, double high) const {
-    const Pack bottom = all(low), top = all(high);
-    Pack p;
-    for (std::size_t i = 0; i < parts; ++i) {
-      p.part[i] = bottom.part[i] > part[i] ? bottom.part[i] : part[i];
-      p.part[i] = top.part[i] < p.part[i] ? top.part[i] : p.part[i];
-    }
-    return p;
-  }
-
  private:
   template <class T>
   static T* assumed(T* p) {
