@@ -22,8 +22,7 @@ Json row_json(const storage::LoadRow& row) {
           {"revision", row.revision}};
 }
 
-Json channel_json(const ChannelState& state, std::int64_t now_us) {
-  const Channel& channel = *state.channel;
+Json channel_document(const ChannelState& state, std::int64_t now_us) {
   Json last = nullptr;
   if (const auto& reading = state.counts.last)
     last = {{"time", format_time(reading->time_us)},
@@ -31,17 +30,12 @@ Json channel_json(const ChannelState& state, std::int64_t now_us) {
             {"age_s", static_cast<double>(now_us - reading->time_us) * 1e-6}};
   Json refused = Json::object();
   for (const auto& [reason, count] : state.counts.refused) refused[reason] = count;
-  return {{"name", channel.name},
-          {"role", text(channel.role)},
-          {"unit", text(channel.unit)},
-          {"chamber", channel.chamber},
-          {"low", channel.low},
-          {"high", channel.high},
-          {"expected_interval_s", channel.expected_interval_s},
-          {"last", std::move(last)},
-          {"stored", state.counts.stored},
-          {"conflicts", state.counts.conflicts},
-          {"refused", std::move(refused)}};
+  Json json = channel_json(*state.channel);
+  json["last"] = std::move(last);
+  json["stored"] = state.counts.stored;
+  json["conflicts"] = state.counts.conflicts;
+  json["refused"] = std::move(refused);
+  return json;
 }
 
 Json furnace_document(const FurnaceState& state, std::int64_t now_us) {
@@ -50,7 +44,7 @@ Json furnace_document(const FurnaceState& state, std::int64_t now_us) {
   for (const Chamber& chamber : furnace.chambers)
     chambers.push_back({{"id", chamber.id}, {"name", chamber.name}});
   for (const CsvMapping& mapping : furnace.csv_mappings) mappings.push_back(mapping.name);
-  for (const ChannelState& channel : state.channels) channels.push_back(channel_json(channel, now_us));
+  for (const ChannelState& channel : state.channels) channels.push_back(channel_document(channel, now_us));
   return {{"id", furnace.id},
           {"name", furnace.name},
           {"process", furnace.process},

@@ -14,7 +14,8 @@ std::optional<std::int64_t> time_from(const Request& request, const char* name) 
   if (it == request.query.end()) return std::nullopt;
   std::string reason;
   const auto time = parse_time(it->second, reason);
-  if (!time) throw Problem{422, "invalid-request", "The time cannot be used", std::string(name) + ": " + reason, name};
+  if (!time)
+    throw Problem{422, "invalid-request", "The time cannot be used", std::string(name) + ": " + reason, name};
   return time;
 }
 
@@ -24,7 +25,8 @@ void Api::add_furnace_routes() {
   HttpServer& http = parts_.http;
   http.route("GET", "/api/v1/furnaces", guarded([this](const Request& r) { return furnaces(r); }));
   http.route("GET", "/api/v1/furnaces/{}", guarded([this](const Request& r) { return furnace(r); }));
-  http.route("GET", "/api/v1/furnaces/{}/readings", guarded([this](const Request& r) { return readings(r); }));
+  http.route("GET", "/api/v1/furnaces/{}/readings",
+             guarded([this](const Request& r) { return readings(r); }));
   http.route("GET", "/api/v1/steels", [this](const Request&) {
     return Response{200, "application/json", steels_json(parts_.plant), {}};
   });
@@ -44,7 +46,8 @@ FurnaceState Api::state_of(const Furnace& furnace) {
   FurnaceState state{&furnace, {}, {}};
   auto reader = readers_.take();
   for (const Channel& channel : furnace.channels)
-    state.channels.push_back({&channel, reader->counts(parts_.acceptor.channel_id(furnace.id, channel.name).value())});
+    state.channels.push_back(
+        {&channel, reader->counts(parts_.acceptor.channel_id(furnace.id, channel.name).value())});
   for (const auto& view : parts_.board.loads())
     if (view->row.furnace == furnace.id) state.open_loads.push_back(view->row.id);
   return state;

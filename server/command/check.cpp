@@ -8,7 +8,8 @@ namespace hearthfront::server {
 int run_check(const std::string& settings_path) {
   ConfigErrors errors;
   const Settings settings = read_settings(settings_path, errors);
-  const Plant plant = read_plant(settings.path_of(settings.files.plant), settings.path_of(settings.files.steels), errors);
+  const Plant plant =
+      read_plant(settings.path_of(settings.files.plant), settings.path_of(settings.files.steels), errors);
   if (errors.ok()) check_clock_is_allowed(settings, plant, errors);
   for (const std::string& message : errors.messages) std::fprintf(stderr, "%s\n", message.c_str());
   if (!errors.ok()) {
@@ -16,9 +17,9 @@ int run_check(const std::string& settings_path) {
                  errors.messages.size() == 1 ? "" : "s");
     return exit_bad_input;
   }
-  std::printf("All good: %s, %zu furnaces, %zu steels; would listen on %s:%d, database %s\n", plant.name.c_str(),
-              plant.furnaces.size(), plant.steels.size(), settings.listen.address.c_str(), settings.listen.port,
-              settings.path_of(settings.files.database).c_str());
+  std::printf("All good: %s, %zu furnaces, %zu steels; would listen on %s:%d, database %s\n",
+              plant.name.c_str(), plant.furnaces.size(), plant.steels.size(), settings.listen.address.c_str(),
+              settings.listen.port, settings.path_of(settings.files.database).c_str());
   return exit_done;
 }
 

@@ -41,7 +41,9 @@ class FileReadings {
       std::sort(samples.begin(), samples.end(), [](const Sample& a, const Sample& b) {
         return std::pair(a.time_us, a.value) < std::pair(b.time_us, b.value);
       });
-      const auto same = [](const Sample& a, const Sample& b) { return a.time_us == b.time_us && a.value == b.value; };
+      const auto same = [](const Sample& a, const Sample& b) {
+        return a.time_us == b.time_us && a.value == b.value;
+      };
       samples.erase(std::unique(samples.begin(), samples.end(), same), samples.end());
       std::vector<Sample>& accepted = accepted_[channel];
       for (std::size_t i = 0; i < samples.size(); ++i) {
@@ -81,14 +83,18 @@ int replay(const ReplayOptions& options) {
   for (const std::string& message : errors.messages) std::fprintf(stderr, "%s\n", message.c_str());
   if (!errors.ok()) return exit_bad_input;
 
-  const auto definition = std::make_shared<const LoadDefinition>(read_load_body(read_file(options.load_path), plant));
+  const auto definition =
+      std::make_shared<const LoadDefinition>(read_load_body(read_file(options.load_path), plant));
   const Furnace& furnace = definition->furnace;
   const CsvMapping* mapping = nullptr;
-  if (!options.mapping.empty()) mapping = furnace.csv_mapping(options.mapping);
-  else if (furnace.csv_mappings.size() == 1) mapping = &furnace.csv_mappings.front();
+  if (!options.mapping.empty())
+    mapping = furnace.csv_mapping(options.mapping);
+  else if (furnace.csv_mappings.size() == 1)
+    mapping = &furnace.csv_mappings.front();
   if (!mapping) {
-    std::fprintf(stderr, "%s: furnace %s has no CSV mapping \"%s\"; name one of its [[furnace.csv]] with --mapping.\n",
-                 options.plant_path.c_str(), furnace.id.c_str(), options.mapping.c_str());
+    std::fprintf(
+        stderr, "%s: furnace %s has no CSV mapping \"%s\"; name one of its [[furnace.csv]] with --mapping.\n",
+        options.plant_path.c_str(), furnace.id.c_str(), options.mapping.c_str());
     return exit_bad_input;
   }
   const std::string log = read_file(options.log_path);
@@ -96,7 +102,8 @@ int replay(const ReplayOptions& options) {
   if (decoded.problem) throw Problem(*decoded.problem);
   const FileReadings readings(decoded, furnace);
   if (readings.refused() + readings.conflicts() > 0)
-    std::fprintf(stderr, "%s: %zu readings refused, %zu set aside because another value stands at their time.\n",
+    std::fprintf(stderr,
+                 "%s: %zu readings refused, %zu set aside because another value stands at their time.\n",
                  options.log_path.c_str(), readings.refused(), readings.conflicts());
 
   const std::int64_t until = definition->ended_us.value_or(readings.newest_us(definition->started_us));

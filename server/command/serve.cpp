@@ -55,8 +55,9 @@ int serve(const Settings& settings, const Plant& plant) {
   std::atomic<ServiceState> state{ServiceState::starting};
   HttpServer http(limits_from(settings));
   Engine* running = nullptr;
-  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, state,
-           [&running] { if (running) running->loads_changed(); }});
+  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, state, [&running] {
+             if (running) running->loads_changed();
+           }});
   Engine engine({plant, *clock, store, board, metrics, settings.live.stale_after_s,
                  [&](const std::string& furnace, const std::string& channel) {
                    return acceptor.channel_id(furnace, channel).value_or(-1);
@@ -79,9 +80,10 @@ int serve(const Settings& settings, const Plant& plant) {
                                   {"clock_speed", clock->speed()}});
 
   std::uint64_t rounds_seen = 0;
-  const auto pause = notifier.watchdog_interval()
-                         ? std::chrono::duration_cast<std::chrono::milliseconds>(*notifier.watchdog_interval())
-                         : std::chrono::milliseconds(1000);
+  const auto pause =
+      notifier.watchdog_interval()
+          ? std::chrono::duration_cast<std::chrono::milliseconds>(*notifier.watchdog_interval())
+          : std::chrono::milliseconds(1000);
   const auto tick = std::min(pause, std::chrono::milliseconds(1000));
   int exit_code = exit_done;
   while (!signals.wait_for(tick)) {
@@ -117,7 +119,8 @@ int serve(const Settings& settings, const Plant& plant) {
 int run_serve(const std::string& settings_path) {
   ConfigErrors errors;
   const Settings settings = read_settings(settings_path, errors);
-  const Plant plant = read_plant(settings.path_of(settings.files.plant), settings.path_of(settings.files.steels), errors);
+  const Plant plant =
+      read_plant(settings.path_of(settings.files.plant), settings.path_of(settings.files.steels), errors);
   if (errors.ok()) check_clock_is_allowed(settings, plant, errors);
   if (!errors.ok()) {
     for (const std::string& message : errors.messages) std::fprintf(stderr, "%s\n", message.c_str());

@@ -20,8 +20,7 @@ void check_hot_enough(const LoadDefinition& load) {
     throw Problem{422, invalid_load, "The recipe never carburizes",
                   "recipe.segments: no segment is hot enough for " + item.steel.name + " of item " +
                       item.name + ", which is austenite only above " +
-                      std::to_string(std::lround(austenite_degc)) +
-                      " degC. Are the temperatures in degC?",
+                      std::to_string(std::lround(austenite_degc)) + " degC. Are the temperatures in degC?",
                   "recipe.segments"};
   }
 }

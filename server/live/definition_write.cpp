@@ -46,20 +46,23 @@ Json furnace_json(const Furnace& furnace) {
   if (furnace.beta_m_per_s) json["beta_m_per_s"] = *furnace.beta_m_per_s;
   for (const Chamber& chamber : furnace.chambers)
     json["chambers"].push_back({{"id", chamber.id}, {"name", chamber.name}});
-  for (const Channel& channel : furnace.channels)
-    json["channels"].push_back({{"name", channel.name},
-                                {"role", text(channel.role)},
-                                {"unit", text(channel.unit)},
-                                {"chamber", channel.chamber},
-                                {"low", channel.low},
-                                {"high", channel.high},
-                                {"expected_interval_s", channel.expected_interval_s},
-                                {"gap_limit_s", channel.gap_limit_s},
-                                {"hold_limit_s", channel.hold_limit_s}});
+  for (const Channel& channel : furnace.channels) json["channels"].push_back(channel_json(channel));
   return json;
 }
 
 }  // namespace
+
+Json channel_json(const Channel& channel) {
+  return {{"name", channel.name},
+          {"role", text(channel.role)},
+          {"unit", text(channel.unit)},
+          {"chamber", channel.chamber},
+          {"low", channel.low},
+          {"high", channel.high},
+          {"expected_interval_s", channel.expected_interval_s},
+          {"gap_limit_s", channel.gap_limit_s},
+          {"hold_limit_s", channel.hold_limit_s}};
+}
 
 Json window_json(const Window& window) {
   return Json::array({window.first, window.second});

@@ -4,8 +4,8 @@
 //
 // "At its best": BDF with analytic banded Jacobian and stop times at each change of input, on the mesh and
 // tolerances, out of a scan, that are fastest while the depths stay within 0.2 um of a converged reference on
-// each of five noise realisations. It is held to the depths at 0.35, 0.40 and core + 0.04 wt% C, as this solver
-// is; and, for comparison, to the first two only, which lets it off the fine cells under the case.
+// each of five noise realisations. It is held to the depths at 0.35, 0.40 and core + 0.04 wt% C, as this
+// solver is; and, for comparison, to the first two only, which lets it off the fine cells under the case.
 #include <algorithm>
 #include <array>
 #include <cmath>

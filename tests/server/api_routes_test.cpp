@@ -30,7 +30,8 @@ Routes described() {
   std::string path;
   for (std::string line; std::getline(in, line);) {
     if (line == "components:") break;
-    if (line.starts_with("  /") && line.ends_with(":")) path = with_plain_places(line.substr(2, line.size() - 3));
+    if (line.starts_with("  /") && line.ends_with(":"))
+      path = with_plain_places(line.substr(2, line.size() - 3));
     if (line == "    get:") routes.insert("GET " + path);
     if (line == "    post:") routes.insert("POST " + path);
   }
