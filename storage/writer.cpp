@@ -116,15 +116,21 @@ Writer::Group Writer::take_group() {
   std::unique_lock lock(mutex_);
   work_waits_.wait(lock, [this] { return closing_ || !queue_.empty(); });
   Group group;
+  take_waiting(group);
+  return group;
+}
+
+// Under mutex_: moves waiting jobs into the group as far as it may grow; the first one always.
+void Writer::take_waiting(Group& group) {
   std::size_t readings = 0;
+  for (const Job* job : group) readings += job->readings;
   while (!queue_.empty() && (group.empty() || readings + queue_.front()->readings <= group_readings)) {
     readings += queue_.front()->readings;
+    counters_.queued_readings -= queue_.front()->readings;
     group.push_back(queue_.front());
     queue_.pop_front();
   }
-  counters_.queued_readings -= readings;
   counters_.queued_jobs = queue_.size();
-  return group;
 }
 
 void Writer::thread_main() {
@@ -174,11 +180,17 @@ void Writer::answer(Group& group, const std::optional<Failure>& failure) {
   }
 }
 
-std::optional<Writer::Failure> Writer::transaction(const Group& group) {
+std::optional<Writer::Failure> Writer::transaction(Group& group) {
   try {
     files_.check();
     connection_->run("BEGIN IMMEDIATE");
-    for (Job* job : group) run_job(*job);
+    for (std::size_t i = 0; i < group.size(); ++i) {
+      run_job(*group[i]);
+      if (i + 1 < group.size()) continue;
+      // What came while these rows were written shares their sync; nothing is waited for.
+      const std::lock_guard lock(mutex_);
+      take_waiting(group);
+    }
     reading_table_.finish();
     connection_->reset_statements();
     connection_->run("COMMIT");
@@ -268,9 +280,9 @@ void Writer::finish() {
   bool sound = false;
   if (!poisoned) {
     Job farewell{.readings = 0, .kind = Kind::certain, .work = &last_words_, .failure = {}, .woken = {}};
-    sound =
-        !transaction({&farewell}) && connection_->checkpoint(CheckpointMode::truncate, close_wait_ms).kind !=
-                                         CheckpointOutcome::Kind::sync_failed;
+    Group last{&farewell};
+    sound = !transaction(last) && connection_->checkpoint(CheckpointMode::truncate, close_wait_ms).kind !=
+                                      CheckpointOutcome::Kind::sync_failed;
   }
   // After a failed sync another checkpoint would seem to succeed and then drop the write-ahead file, the
   // only sure copy.

@@ -71,12 +71,13 @@ class Writer {
 
   void thread_main();
   void commit_group(Group& group);
-  std::optional<Failure> transaction(const Group& group);
+  std::optional<Failure> transaction(Group& group);
   void run_job(Job& job);
   std::optional<Failure> roll_back(Failure cause);
   void checkpoint_if_due(bool changed);
   void finish();
   Group take_group();
+  void take_waiting(Group& group);
   void answer(Group& group, const std::optional<Failure>& failure);
   // With mutex_ held.
   void refuse_if_unfit(std::size_t readings) const;

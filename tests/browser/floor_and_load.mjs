@@ -46,7 +46,7 @@ async function look(size) {
   const seen = await browser.page(size);
   const { page } = seen;
   await page.goto(new URL('/#/', base).href);
-  await page.locator('[data-testid="card"]').first().waitFor({ timeout: 20_000 });
+  await page.locator('[data-testid="card"]').first().waitFor({ timeout: 60_000 });
   const now = (await api('floor')).furnaces.flatMap((furnace) => furnace.loads).length;
   check(`${size.name}: one card for each open load`, await page.locator('[data-testid="card"]').count() === now, now);
   check(`${size.name}: the words stand in the band's place`, (await page.locator('.card .band').first().textContent()) === floor.band);
@@ -62,7 +62,7 @@ async function look(size) {
   const link = page.locator(`[data-load="${load.id}"] a`).first();
   if (size.touch) await link.tap(); else await link.click();
   await page.waitForURL(`**/#/load/${load.id}`);
-  await page.locator('.plot canvas').nth(3).waitFor({ timeout: 20_000 });
+  await page.locator('.plot canvas').nth(3).waitFor({ timeout: 60_000 });
   const words = await page.locator('section.present .strip').getAttribute('aria-label');
   check(`${size.name} load: the strip says its figures in words`, /Case depth now|No case yet/.test(words) && /The drawing asks/.test(words), words);
   const drawn = await page.locator('.plot canvas').evaluateAll((all) => all.filter((canvas) => canvas.getContext('2d').getImageData(0, 0, canvas.width, canvas.height).data.some((part) => part > 0)).length);
@@ -77,7 +77,7 @@ async function look(size) {
 
   const dark = await browser.page(size, { theme: 'dark' });
   await dark.page.goto(new URL(`/#/load/${load.id}`, base).href);
-  await dark.page.locator('.plot canvas').first().waitFor({ timeout: 20_000 });
+  await dark.page.locator('.plot canvas').first().waitFor({ timeout: 60_000 });
   await browser.photo(dark.page, `${size.name}-load-dark`);
   await dark.page.goto(new URL('/#/', base).href);
   await dark.page.locator('[data-testid="card"]').first().waitFor();
@@ -137,7 +137,7 @@ async function lostContact() {
   check('without a stream the data age still moves', (await changes(page, 'data-age', 10_000)).moved);
   await context.route('**/api/**', (route) => route.abort());
   const since = Date.now();
-  await page.locator('[data-testid="away"]').waitFor({ timeout: 20_000 });
+  await page.locator('[data-testid="away"]').waitFor({ timeout: 60_000 });
   const after = (Date.now() - since) / 1000;
   check('the daemon is called away after about ten seconds', after > 7 && after < 20, after);
   check('every figure is marked old, with its time', await page.locator('[data-testid="then"]').count() === await page.locator('[data-testid="card"]').count());

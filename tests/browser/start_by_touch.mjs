@@ -7,7 +7,7 @@ async function end(page, whileOpen = async () => undefined) {
   await page.locator('[data-testid="end-person"]').fill('Touch test');
   await whileOpen();
   await page.locator('[data-testid="end-confirm"]').tap();
-  await page.locator('.load-title .mark', { hasText: 'ended' }).waitFor({ timeout: 20_000 });
+  await page.locator('.load-title .mark', { hasText: 'ended' }).waitFor({ timeout: 60_000 });
 }
 
 export async function endByTouch({ base, browser, load }) {
@@ -47,7 +47,7 @@ export async function startByTouch({ base, browser, furnace }) {
   await browser.photo(page, 'tablet-start');
 
   await page.locator('[data-testid="start-submit"]').tap();
-  await page.locator('[data-testid="refusal"]').waitFor({ timeout: 20_000 });
+  await page.locator('[data-testid="refusal"]').waitFor({ timeout: 60_000 });
   check('start: the complaint stands at its item', await page.locator('[data-said^="items[0]"]').count() > 0, await page.locator('[data-testid="refusal"]').textContent());
   check('start: nothing typed is lost', await field('name').inputValue() === name && await field('items[0].case_depth_window_mm').inputValue() === '1.2');
   await sound('start form refused', seen);
@@ -60,14 +60,14 @@ export async function startByTouch({ base, browser, furnace }) {
   await field('items[0].case_depth_window_mm').fill('0.9');
   await field('items[0].case_depth_window_mm[1]').fill('1.2');
   await page.locator('[data-testid="start-submit"]').tap();
-  await page.waitForURL(/#\/load\/\d+$/, { timeout: 20_000 });
-  await page.locator('section.present').waitFor({ timeout: 20_000 });
+  await page.waitForURL(/#\/load\/\d+$/, { timeout: 60_000 });
+  await page.locator('section.present').waitFor({ timeout: 60_000 });
   check('start: the load is open under its number', (await page.locator('h1').first().textContent()).includes(name));
 
   await page.locator('[data-testid="note-text"]').fill('Basket turned at the door.');
   await page.locator('[data-testid="note-person"]').fill('Touch test');
   await page.locator('[data-testid="note-add"]').tap();
-  await page.locator('.notes li', { hasText: 'Basket turned at the door.' }).waitFor({ timeout: 20_000 });
+  await page.locator('.notes li', { hasText: 'Basket turned at the door.' }).waitFor({ timeout: 60_000 });
   check('note: it stands on the page with its name', (await page.locator('.notes li').last().textContent()).includes('Touch test'));
 
   await end(page, async () => {
@@ -78,14 +78,14 @@ export async function startByTouch({ base, browser, furnace }) {
   await browser.photo(page, 'tablet-ended');
 
   await page.goto(new URL('/#/loads', base).href);
-  await page.locator('.loads a', { hasText: name }).waitFor({ timeout: 20_000 });
+  await page.locator('.loads a', { hasText: name }).waitFor({ timeout: 60_000 });
   check('loads: it is in the list as ended', (await page.locator('.loads a', { hasText: name }).textContent()).includes('ended'));
   await sound('loads', seen);
   await browser.photo(page, 'tablet-loads');
 
   await page.goto(new URL(`/#/start?furnace=${furnace.id}`, base).href);
   await page.locator('[data-testid="same"]').tap();
-  await page.locator('.same [role="status"]', { hasText: name }).waitFor({ timeout: 20_000 });
+  await page.locator('.same [role="status"]', { hasText: name }).waitFor({ timeout: 60_000 });
   check('same as last: recipe and item are taken over', await field('recipe.segments[1].duration_min').inputValue() === '60' && await field('items[0].part').inputValue() === 'test piece');
   check('same as last: the number is asked anew', await field('name').inputValue() === '');
   await seen.context.close();
