@@ -2,7 +2,8 @@
 //   bench_ingest BINARY [FOLDER [ROUNDS]]
 // Ours: the real daemon, 8 keep-alive clients, JSON batches of 100, full sync, each answer awaited.
 // Reference: one thread, prepared statement, WAL, synchronous=FULL, the same readings in groups of 800: what
-// 8 clients of 100 could be at best grouped to. Sides take turns; the median of the rounds is printed.
+// 8 clients of 100 could be at best grouped to. Sides take turns, and the
+// ratio is taken within a round, since the speed of a shared disk drifts; medians are printed.
 #include <arpa/inet.h>
 #include <netinet/tcp.h>
 #include <sqlite3.h>
@@ -213,19 +214,19 @@ int main(int argc, char** argv) {
             "(4,'f','t'),(5,'g','t'),(6,'h','t'),(7,'i','t')",
             nullptr, nullptr, nullptr),
         db);
-    std::vector<double> ours, raw;
+    std::vector<double> ours, raw, ratios;
     for (int round = 0; round < rounds; ++round) {
       ours.push_back(daemon_round(round));
       raw.push_back(raw_round(db, round));
-      std::printf("round %d: daemon %.0f readings/s, raw SQLite %.0f readings/s\n", round + 1, ours.back(),
-                  raw.back());
+      ratios.push_back(ours.back() / raw.back());
+      std::printf("round %d: daemon %.0f readings/s, raw SQLite %.0f readings/s, ratio %.2f\n", round + 1,
+                  ours.back(), raw.back(), ratios.back());
     }
     sqlite3_close(db);
     std::printf(
-        "durable ingest, 8 clients x batches of 100, full sync: ours %.0f readings/s, raw SQLite %.0f "
-        "readings/s, "
-        "ratio %.2f (wanted: 0.60)\n",
-        median(ours), median(raw), median(ours) / median(raw));
+        "durable ingest, 8 clients x batches of 100, full sync, medians of %d rounds: ours %.0f readings/s, "
+        "raw SQLite %.0f readings/s, ratio within a round %.2f (wanted: 0.60)\n",
+        rounds, median(ours), median(raw), median(ratios));
   } catch (const std::exception& error) {
     std::fprintf(stderr, "%s\n", error.what());
     code = 1;
