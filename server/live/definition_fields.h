@@ -7,6 +7,7 @@
 
 namespace hearthfront::server {
 
+Json composition_json(const solver::Composition& composition);
 Json channel_json(const Channel& channel);
 Json criterion_json(const Criterion& criterion);
 Json section_json(const ItemSection& section);

@@ -6,15 +6,7 @@ namespace hearthfront::server {
 namespace {
 
 Json steel_json(const solver::Steel& steel) {
-  const auto& c = steel.composition;
-  return {{"name", steel.name},
-          {"composition_wt_pct",
-           {{"C", c.c_wt_pct},
-            {"Mn", c.mn_wt_pct},
-            {"Cr", c.cr_wt_pct},
-            {"Ni", c.ni_wt_pct},
-            {"Mo", c.mo_wt_pct},
-            {"Si", c.si_wt_pct}}}};
+  return {{"name", steel.name}, {"composition_wt_pct", composition_json(steel.composition)}};
 }
 
 Json item_json(const Item& item) {
@@ -51,6 +43,11 @@ Json furnace_json(const Furnace& furnace) {
 }
 
 }  // namespace
+
+Json composition_json(const solver::Composition& c) {
+  return {{"C", c.c_wt_pct},   {"Mn", c.mn_wt_pct}, {"Cr", c.cr_wt_pct},
+          {"Ni", c.ni_wt_pct}, {"Mo", c.mo_wt_pct}, {"Si", c.si_wt_pct}};
+}
 
 Json channel_json(const Channel& channel) {
   return {{"name", channel.name},
