@@ -3,27 +3,12 @@
 #include <SQLiteCpp/Column.h>
 #include <SQLiteCpp/Statement.h>
 
-#include <array>
-#include <ctime>
-
 #include "storage/connection.h"
 #include "storage/rows.h"
+#include "storage/stays.h"
 
 namespace hearthfront::storage {
 namespace {
-
-std::string utc(std::int64_t time_us) {
-  constexpr std::int64_t second_us = 1'000'000;
-  // Round down also before 1970.
-  const std::time_t seconds = time_us / second_us - (time_us % second_us < 0 ? 1 : 0);
-  std::tm parts{};
-  std::array<char, 40> text{};
-  if (::gmtime_r(&seconds, &parts) == nullptr ||
-      std::strftime(text.data(), text.size(), "%Y-%m-%dT%H:%M:%SZ", &parts) == 0) {
-    return std::to_string(time_us) + " us";
-  }
-  return text.data();
-}
 
 std::string subject_of(std::int64_t load) {
   return "load " + std::to_string(load);
@@ -39,33 +24,6 @@ LoadRow existing_load(Connection& connection, std::int64_t id) {
   LoadRow row = load_from(query);
   query.tryReset();
   return row;
-}
-
-// A load occupies its chamber from its start up to, but not at, its end.
-void refuse_overlap(Connection& connection, const LoadRow& row) {
-  if (row.ended_us && *row.ended_us <= row.started_us) {
-    throw StorageError(StorageFault::misuse, "Load " + row.name + " would end at " + utc(*row.ended_us) +
-                                                 ", not after its start at " + utc(row.started_us) +
-                                                 ". Correct one of the two times.");
-  }
-  auto& query = connection.statement("SELECT " HF_LOAD_COLUMNS
-                                     " FROM load WHERE furnace = ?1 AND chamber = ?2 AND id <> ?3 "
-                                     "AND (?5 IS NULL OR started_us < ?5) "
-                                     "AND (ended_us IS NULL OR ended_us > ?4) ORDER BY started_us LIMIT 1");
-  query.bind(1, row.furnace);
-  query.bind(2, row.chamber);
-  query.bind(3, row.id);
-  query.bind(4, row.started_us);
-  bind_optional(query, 5, row.ended_us);
-  if (!query.executeStep()) return;
-  const LoadRow other = load_from(query);
-  query.tryReset();
-  throw StorageError(StorageFault::misuse,
-                     "Load " + other.name + " (number " + std::to_string(other.id) + ") is in chamber " +
-                         row.chamber + " of " + row.furnace + " from " + utc(other.started_us) +
-                         (other.ended_us ? " to " + utc(*other.ended_us) : ", still without an end") +
-                         ", which overlaps load " + row.name +
-                         ". End that load first, or correct the times or the chamber.");
 }
 
 void insert_revision(Connection& connection, const LoadRevision& row) {
@@ -84,6 +42,38 @@ void insert_revision(Connection& connection, const LoadRevision& row) {
   insert.exec();
 }
 
+void refuse_backward(const LoadRow& row) {
+  if (!row.ended_us || *row.ended_us > row.started_us) return;
+  throw StorageError(StorageFault::misuse, "Load " + row.name + " would end at " + utc_text(*row.ended_us) +
+                                               ", not after its start at " + utc_text(row.started_us) +
+                                               ". Correct one of the two times.");
+}
+
+void refuse_stale(const LoadRow& stored, std::int64_t expected_revision) {
+  if (stored.revision == expected_revision) return;
+  throw StorageError(StorageFault::misuse, "Load " + stored.name + " (number " + std::to_string(stored.id) +
+                                               ") is at revision " + std::to_string(stored.revision) +
+                                               ", not " + std::to_string(expected_revision) +
+                                               ": someone changed it meanwhile. Read it again, then repeat "
+                                               "the change.");
+}
+
+void update_load(Connection& connection, const LoadRow& row) {
+  auto& update = connection.statement(
+      "UPDATE load SET name = ?, furnace = ?, chamber = ?, started_us = ?, ended_us = ?, revision = ?, "
+      "definition_json = ?, cancelled = ? WHERE id = ?");
+  update.bind(1, row.name);
+  update.bind(2, row.furnace);
+  update.bind(3, row.chamber);
+  update.bind(4, row.started_us);
+  bind_optional(update, 5, row.ended_us);
+  update.bind(6, row.revision);
+  update.bind(7, row.definition_json);
+  update.bind(8, row.cancelled ? 1 : 0);
+  update.bind(9, row.id);
+  update.exec();
+}
+
 void record_step(Connection& connection, const LoadRow& before, const LoadRow& after, AuditRow audit) {
   insert_revision(connection, {.load = after.id,
                                .revision = after.revision,
@@ -100,15 +90,16 @@ void record_step(Connection& connection, const LoadRow& before, const LoadRow& a
 
 }  // namespace
 
-std::int64_t insert_load(Connection& connection, const LoadRow& row, AuditRow audit) {
+std::int64_t insert_load(Connection& connection, const LoadRow& row, std::vector<Stay> stays,
+                         AuditRow audit) {
   LoadRow stored = row;
-  stored.id = 0;
   stored.revision = 1;
   if (stored.created_us == 0) stored.created_us = audit.at_us;
-  refuse_overlap(connection, stored);
+  if (stays.empty()) stays.push_back({stored.furnace, stored.chamber, stored.started_us, stored.ended_us, 1});
   auto& insert = connection.statement(
       "INSERT INTO load(name, furnace, chamber, person, started_us, ended_us, created_us, revision, "
       "definition_json) VALUES(?, ?, ?, ?, ?, ?, ?, ?, ?)");
+  refuse_backward(stored);
   insert.bind(1, stored.name);
   insert.bind(2, stored.furnace);
   insert.bind(3, stored.chamber);
@@ -120,33 +111,44 @@ std::int64_t insert_load(Connection& connection, const LoadRow& row, AuditRow au
   insert.bind(9, stored.definition_json);
   insert.exec();
   stored.id = connection.last_row_id();
+  insert_stays(connection, stored, stays);
   record_step(connection, {}, stored, std::move(audit));
   return stored.id;
 }
 
+void revise_loads(Connection& connection, const std::vector<LoadChange>& changes,
+                  const std::vector<AuditRow>& audits, const std::optional<PushRow>& push) {
+  if (changes.empty() || changes.size() != audits.size())
+    throw StorageError(StorageFault::misuse, "A change of loads needs one audit row for each load.");
+  std::vector<LoadRow> before, after;
+  for (const LoadChange& change : changes) {
+    before.push_back(existing_load(connection, change.row.id));
+    refuse_stale(before.back(), change.expected_revision);
+    LoadRow row = change.row;
+    row.person = before.back().person;
+    row.created_us = before.back().created_us;
+    row.revision = before.back().revision + 1;
+    if (row.definition_json.empty()) row.definition_json = before.back().definition_json;
+    refuse_backward(row);
+    after.push_back(std::move(row));
+    // All places are given up before any is taken: loads that move together pass through each other.
+    remove_stays(connection, change.row.id);
+  }
+  for (std::size_t i = 0; i < changes.size(); ++i) {
+    update_load(connection, after[i]);
+    insert_stays(connection, after[i], changes[i].stays);
+    record_step(connection, before[i], after[i], audits[i]);
+  }
+  if (push) insert_push(connection, *push);
+}
+
 void revise_load(Connection& connection, std::int64_t id, std::int64_t expected_revision,
                  const std::string& definition_json, std::optional<std::int64_t> ended_us, AuditRow audit) {
-  const LoadRow before = existing_load(connection, id);
-  if (before.revision != expected_revision) {
-    throw StorageError(StorageFault::misuse, "Load " + before.name + " (number " + std::to_string(id) +
-                                                 ") is at revision " + std::to_string(before.revision) +
-                                                 ", not " + std::to_string(expected_revision) +
-                                                 ": someone changed it meanwhile. Read it again, then repeat "
-                                                 "the change.");
-  }
-  LoadRow after = before;
-  ++after.revision;
-  after.ended_us = ended_us;
-  if (!definition_json.empty()) after.definition_json = definition_json;
-  refuse_overlap(connection, after);
-  auto& update =
-      connection.statement("UPDATE load SET revision = ?, ended_us = ?, definition_json = ? WHERE id = ?");
-  update.bind(1, after.revision);
-  bind_optional(update, 2, after.ended_us);
-  update.bind(3, after.definition_json);
-  update.bind(4, id);
-  update.exec();
-  record_step(connection, before, after, std::move(audit));
+  LoadChange change{expected_revision, existing_load(connection, id), stays_of(connection, id)};
+  change.row.ended_us = ended_us;
+  change.row.definition_json = definition_json;
+  if (!change.stays.empty()) change.stays.back().to_us = ended_us;
+  revise_loads(connection, {change}, {std::move(audit)}, std::nullopt);
 }
 
 std::int64_t insert_note(Connection& connection, const LoadNote& note) {

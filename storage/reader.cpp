@@ -61,20 +61,45 @@ std::vector<Reading> Reader::accepted(std::int64_t channel, std::int64_t from_us
     query.bind(1, channel);
     query.bind(2, from_us);
     query.bind(3, to_us);
+    const auto chosen = impl_->choices(channel, from_us, to_us);
     std::vector<Reading> rows;
     std::optional<std::int64_t> conflict_us;
     while (query.executeStep()) {
       const Reading row = reading_from(query, channel);
       if (conflict_us == row.time_us) continue;
-      if (!rows.empty() && rows.back().time_us == row.time_us) {
-        conflict_us = row.time_us;
-        rows.pop_back();
-      } else {
+      if (rows.empty() || rows.back().time_us != row.time_us) {
         rows.push_back(row);
+        continue;
       }
+      conflict_us = row.time_us;
+      const auto choice = chosen.find(row.time_us);
+      if (choice != chosen.end() && choice->second.value)
+        rows.back().value = *choice->second.value;
+      else
+        rows.pop_back();
     }
     return rows;
   });
+}
+
+std::map<std::int64_t, Choice> Reader::Impl::choices(std::int64_t channel, std::int64_t from_us,
+                                                     std::int64_t to_us) {
+  auto& query = statement(
+      "SELECT time_us, value, at_us, person FROM choice WHERE channel = ? AND time_us BETWEEN ? AND ?");
+  query.bind(1, channel);
+  query.bind(2, from_us);
+  query.bind(3, to_us);
+  std::map<std::int64_t, Choice> rows;
+  while (query.executeStep()) {
+    Choice choice{.channel = channel,
+                  .time_us = query.getColumn(0).getInt64(),
+                  .value = std::nullopt,
+                  .at_us = query.getColumn(2).getInt64(),
+                  .person = query.getColumn(3).getString()};
+    if (!query.getColumn(1).isNull()) choice.value = query.getColumn(1).getDouble();
+    rows.emplace(choice.time_us, std::move(choice));
+  }
+  return rows;
 }
 
 std::optional<Reading> Reader::Impl::newest(std::int64_t channel, std::int64_t at_us) {
@@ -84,17 +109,25 @@ std::optional<Reading> Reader::Impl::newest(std::int64_t channel, std::int64_t a
   query.bind(2, at_us);
   std::optional<Reading> candidate;
   bool alone = true;
+  const auto settled = [&]() -> std::optional<Reading> {
+    if (alone) return candidate;
+    const auto chosen = choices(channel, candidate->time_us, candidate->time_us);
+    const auto choice = chosen.find(candidate->time_us);
+    if (choice == chosen.end() || !choice->second.value) return std::nullopt;
+    return Reading{channel, candidate->time_us, *choice->second.value};
+  };
   while (query.executeStep()) {
     const Reading row = reading_from(query, channel);
     if (candidate && candidate->time_us == row.time_us) {
       alone = false;
       continue;
     }
-    if (candidate && alone) break;
+    if (candidate)
+      if (const auto found = settled()) return found;
     candidate = row;
     alone = true;
   }
-  return alone ? candidate : std::nullopt;
+  return candidate ? settled() : std::nullopt;
 }
 
 std::optional<Reading> Reader::newest(std::int64_t channel, std::int64_t at_us) {
@@ -110,6 +143,9 @@ ChannelCounts Reader::counts(std::int64_t channel) {
       counts.stored = totals.getColumn(0).getInt64();
       counts.conflicts = totals.getColumn(1).getInt64();
     }
+    auto& chosen = impl_->statement("SELECT count(*) FROM choice WHERE channel = ?");
+    chosen.bind(1, channel);
+    if (chosen.executeStep()) counts.chosen = chosen.getColumn(0).getInt64();
     auto& refused = impl_->statement(
         "SELECT r.reason, r.count FROM channel c JOIN refused_count r ON r.furnace = c.furnace "
         "AND r.channel = c.name WHERE c.id = ?");

@@ -5,6 +5,7 @@
 #pragma once
 
 #include <cstdint>
+#include <map>
 #include <optional>
 #include <string>
 #include <string_view>
@@ -36,6 +37,7 @@ class Reader::Impl {
   SQLite::Statement& statement(const char* sql) { return connection_.statement(sql); }
 
   std::optional<Reading> newest(std::int64_t channel, std::int64_t at_us);
+  std::map<std::int64_t, Choice> choices(std::int64_t channel, std::int64_t from_us, std::int64_t to_us);
 
  private:
   // Ends the read transaction on every way out.

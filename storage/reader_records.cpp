@@ -36,7 +36,8 @@ std::vector<LoadRow> Reader::loads(std::string_view furnace, std::optional<bool>
   check_limit(limit);
   return impl_->read("list loads", [&] {
     auto& query = impl_->statement("SELECT " HF_LOAD_COLUMNS
-                                   " FROM load WHERE (?1 = '' OR furnace = ?1) "
+                                   " FROM load WHERE (?1 = '' OR furnace = ?1 OR EXISTS(SELECT 1 FROM "
+                                   "load_stay s WHERE s.load = load.id AND s.furnace = ?1)) "
                                    "AND (?2 IS NULL OR (ended_us IS NULL) = ?2) AND (?3 = 0 OR id < ?3) "
                                    "ORDER BY id DESC LIMIT ?4");
     query.bind(1, std::string(furnace));
@@ -62,7 +63,8 @@ std::vector<LoadRow> Reader::ended_touching(std::string_view furnace, std::int64
                                             std::int64_t to_us) {
   return impl_->read("list ended loads of a stretch of time", [&] {
     auto& query = impl_->statement("SELECT " HF_LOAD_COLUMNS
-                                   " FROM load WHERE furnace = ?1 AND started_us <= ?3 AND ended_us >= ?2 "
+                                   " FROM load WHERE ended_us IS NOT NULL AND id IN (SELECT load FROM "
+                                   "load_stay WHERE furnace = ?1 AND from_us <= ?3 AND to_us >= ?2) "
                                    "ORDER BY id");
     query.bind(1, std::string(furnace));
     query.bind(2, from_us);
@@ -75,10 +77,10 @@ std::vector<LoadRow> Reader::ended_touching(std::string_view furnace, std::int64
 
 std::vector<LoadRow> Reader::ended_without_result() {
   return impl_->read("list ended loads without a result", [&] {
-    auto& query =
-        impl_->statement("SELECT " HF_LOAD_COLUMNS
-                         " FROM load WHERE ended_us IS NOT NULL AND NOT EXISTS(SELECT 1 FROM result "
-                         "WHERE result.load = load.id AND result.revision = load.revision) ORDER BY id");
+    auto& query = impl_->statement(
+        "SELECT " HF_LOAD_COLUMNS
+        " FROM load WHERE ended_us IS NOT NULL AND cancelled = 0 AND NOT EXISTS(SELECT 1 FROM result "
+        "WHERE result.load = load.id AND result.revision = load.revision) ORDER BY id");
     std::vector<LoadRow> rows;
     while (query.executeStep()) rows.push_back(load_from(query));
     return rows;

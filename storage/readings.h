@@ -31,6 +31,8 @@ class ReadingTable {
   // Readings are finite and their channels registered: checked before they were queued.
   std::vector<Taken> append(const std::vector<Reading>& readings);
   void refuse(const std::vector<RefusedReading>& refused);
+  // What counts of these readings is another from now on, though no row is new.
+  void note_change(const ChangedSpan& span) { widen(effects_.changes, span); }
   void finish();                // writes the counts; the last step before COMMIT
   ReadingEffects committed();   // hands over what the transaction did
   void rolled_back() noexcept;  // forgets it

@@ -31,7 +31,16 @@ LoadRow load_from(SQLite::Statement& statement) {
   row.created_us = statement.getColumn(7).getInt64();
   row.revision = statement.getColumn(8).getInt64();
   row.definition_json = statement.getColumn(9).getString();
+  row.cancelled = statement.getColumn(10).getInt() != 0;
   return row;
+}
+
+Stay stay_from(SQLite::Statement& statement) {
+  return {.furnace = statement.getColumn(0).getString(),
+          .chamber = statement.getColumn(1).getString(),
+          .from_us = statement.getColumn(2).getInt64(),
+          .to_us = optional_column(statement, 3),
+          .places = statement.getColumn(4).getInt64()};
 }
 
 }  // namespace hearthfront::storage

@@ -102,7 +102,50 @@ CREATE TRIGGER load_no_overlap_update BEFORE UPDATE ON load WHEN EXISTS(
   BEGIN SELECT RAISE(ABORT, 'another load is in this chamber at that time'); END;
 )sql";
 
-constexpr std::array<Migration, 1> all_migrations{{{1, "first tables", first_tables}}};
+constexpr const char* moving_loads = R"sql(
+-- What the definition says of a load's path, as a table, so that a chamber never holds more than it can.
+CREATE TABLE load_stay(
+  load INTEGER NOT NULL REFERENCES load(id), furnace TEXT NOT NULL, chamber TEXT NOT NULL,
+  from_us INTEGER NOT NULL, to_us INTEGER CHECK(to_us > from_us), places INTEGER NOT NULL CHECK(places >= 1),
+  PRIMARY KEY(load, from_us)) STRICT, WITHOUT ROWID;
+CREATE INDEX load_stay_chamber ON load_stay(furnace, chamber, from_us);
+INSERT INTO load_stay SELECT id, furnace, chamber, started_us, ended_us, 1 FROM load;
+DROP TRIGGER load_no_overlap_insert;
+DROP TRIGGER load_no_overlap_update;
+CREATE TRIGGER load_stay_no_overlap BEFORE INSERT ON load_stay WHEN NEW.places = 1 AND EXISTS(
+  SELECT 1 FROM load_stay WHERE furnace = NEW.furnace AND chamber = NEW.chamber AND load <> NEW.load
+    AND (NEW.to_us IS NULL OR from_us < NEW.to_us) AND (to_us IS NULL OR to_us > NEW.from_us))
+  BEGIN SELECT RAISE(ABORT, 'another load is in this chamber at that time'); END;
+CREATE TRIGGER load_stay_no_update BEFORE UPDATE ON load_stay BEGIN SELECT RAISE(ABORT, 'stays are written anew'); END;
+
+ALTER TABLE load ADD COLUMN cancelled INTEGER NOT NULL DEFAULT 0 CHECK(cancelled IN (0, 1));
+
+CREATE TABLE push(
+  furnace TEXT NOT NULL, at_us INTEGER NOT NULL, person TEXT NOT NULL, source TEXT NOT NULL,
+  PRIMARY KEY(furnace, at_us)) STRICT, WITHOUT ROWID;
+
+CREATE TABLE library(
+  kind TEXT NOT NULL, key TEXT NOT NULL, version INTEGER NOT NULL, at_us INTEGER NOT NULL,
+  person TEXT NOT NULL, name TEXT NOT NULL, json TEXT NOT NULL, retired INTEGER NOT NULL CHECK(retired IN (0, 1)),
+  PRIMARY KEY(kind, key, version)) STRICT, WITHOUT ROWID;
+CREATE TRIGGER library_no_update BEFORE UPDATE ON library BEGIN SELECT RAISE(ABORT, 'library versions are never changed'); END;
+CREATE TRIGGER library_no_delete BEFORE DELETE ON library BEGIN SELECT RAISE(ABORT, 'library versions are never deleted'); END;
+
+-- Earlier choices and withdrawn masks stay in the audit trail.
+CREATE TABLE choice(
+  channel INTEGER NOT NULL REFERENCES channel(id), time_us INTEGER NOT NULL, value REAL,
+  at_us INTEGER NOT NULL, person TEXT NOT NULL, PRIMARY KEY(channel, time_us)) STRICT, WITHOUT ROWID;
+
+CREATE TABLE mask(
+  id INTEGER PRIMARY KEY AUTOINCREMENT, channel INTEGER NOT NULL REFERENCES channel(id),
+  from_us INTEGER NOT NULL, to_us INTEGER NOT NULL CHECK(to_us > from_us), at_us INTEGER NOT NULL,
+  person TEXT NOT NULL, reason TEXT NOT NULL, withdrawn INTEGER NOT NULL DEFAULT 0 CHECK(withdrawn IN (0, 1))) STRICT;
+CREATE INDEX mask_channel ON mask(channel, from_us);
+CREATE TRIGGER mask_no_delete BEFORE DELETE ON mask BEGIN SELECT RAISE(ABORT, 'masks are withdrawn, never deleted'); END;
+)sql";
+
+constexpr std::array<Migration, 2> all_migrations{
+    {{1, "first tables", first_tables}, {2, "moving loads", moving_loads}}};
 
 int pragma_number(Connection& connection, const char* pragma) {
   return connection.database().execAndGet(pragma).getInt();

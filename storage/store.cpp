@@ -12,6 +12,7 @@
 
 #include "storage/connection.h"
 #include "storage/files.h"
+#include "storage/library.h"
 #include "storage/loads.h"
 #include "storage/schema.h"
 #include "storage/writer.h"
@@ -209,12 +210,54 @@ std::vector<Taken> Store::append(std::vector<Reading> readings, std::vector<Refu
 }
 
 std::int64_t Store::create_load(LoadRow row, AuditRow audit) {
+  return create_load(std::move(row), {}, std::move(audit));
+}
+
+std::int64_t Store::create_load(LoadRow row, std::vector<Stay> stays, AuditRow audit) {
   check_name("load", row.name);
   check_name("furnace", row.furnace);
   std::int64_t id = 0;
   impl_->writer().run(0, Writer::Kind::fallible,
-                      [&](Tables& tables) { id = insert_load(tables.connection, row, audit); });
+                      [&](Tables& tables) { id = insert_load(tables.connection, row, stays, audit); });
   return id;
+}
+
+void Store::revise_loads(std::vector<LoadChange> changes, std::vector<AuditRow> audits,
+                         std::optional<PushRow> push) {
+  for (const LoadChange& change : changes) {
+    check_name("load", change.row.name);
+    check_name("furnace", change.row.furnace);
+  }
+  impl_->writer().run(0, Writer::Kind::fallible, [&](Tables& tables) {
+    storage::revise_loads(tables.connection, changes, audits, push);
+  });
+}
+
+std::int64_t Store::save_library(LibraryRow row, std::int64_t expected_version, AuditRow audit) {
+  check_name("library kind", row.kind);
+  check_name("library entry", row.key);
+  std::int64_t version = 0;
+  impl_->writer().run(0, Writer::Kind::fallible, [&](Tables& tables) {
+    version = insert_library(tables, row, expected_version, audit);
+  });
+  return version;
+}
+
+void Store::choose(std::vector<Choice> choices, AuditRow audit) {
+  impl_->writer().run(0, Writer::Kind::fallible,
+                      [&](Tables& tables) { insert_choices(tables, choices, audit); });
+}
+
+std::int64_t Store::add_mask(MaskRow row, AuditRow audit) {
+  std::int64_t id = 0;
+  impl_->writer().run(0, Writer::Kind::fallible,
+                      [&](Tables& tables) { id = insert_mask(tables, row, audit); });
+  return id;
+}
+
+void Store::withdraw_mask(std::int64_t id, AuditRow audit) {
+  impl_->writer().run(0, Writer::Kind::fallible,
+                      [&](Tables& tables) { storage::withdraw_mask(tables, id, audit); });
 }
 
 void Store::revise_load(std::int64_t id, std::int64_t expected_revision, std::string definition_json,

@@ -61,6 +61,61 @@ struct LoadRow {
   std::int64_t created_us = 0;
   std::int64_t revision = 1;
   std::string definition_json;  // complete copy: steels, furnace settings, model version
+  bool cancelled = false;       // was never treated: it has an end, no stays and no result
+};
+
+// Where a load was: from `from_us` up to, but not at, `to_us` (none = still). A chamber takes `places` loads
+// at a time: one, or the tray positions of a pusher zone.
+struct Stay {
+  std::string furnace, chamber;
+  std::int64_t from_us = 0;
+  std::optional<std::int64_t> to_us;
+  std::int64_t places = 1;
+};
+
+// One changed load: what `row` says from now on (its id names the load; person and created_us stay as they
+// are), with the revision it was read at.
+struct LoadChange {
+  std::int64_t expected_revision = 0;
+  LoadRow row;
+  std::vector<Stay> stays;
+};
+
+// A pusher line moved on by one tray.
+struct PushRow {
+  std::string furnace;
+  std::int64_t at_us = 0;
+  std::string person, source;  // source: "person", "signal"
+};
+
+// One version of an entry of the library: a part, a recipe, the columns of a logger file ...
+struct LibraryRow {
+  std::string kind, key;
+  std::int64_t version = 0, at_us = 0;
+  std::string person, name, json;
+  bool retired = false;  // no longer offered; what loads copied of it stays
+};
+
+// Which of several values of one channel and time counts; none = none of them.
+struct Choice {
+  std::int64_t channel = 0, time_us = 0;
+  std::optional<double> value;
+  std::int64_t at_us = 0;
+  std::string person;
+};
+
+struct Conflict {
+  std::int64_t time_us = 0;
+  std::vector<double> values;  // ascending
+  std::optional<Choice> choice;
+};
+
+// A stretch in which a channel showed something else than the furnace, marked by a person: burn-off of a
+// probe, air purge, calibration. Its readings stay; the model takes none of [from, to].
+struct MaskRow {
+  std::int64_t id = 0, channel = 0, from_us = 0, to_us = 0, at_us = 0;
+  std::string person, reason;
+  bool withdrawn = false;
 };
 
 // One step of a load's history; revision 1 is its creation. `what` is the action of the audit row.
@@ -89,6 +144,7 @@ struct AuditRow {
 struct ChannelCounts {
   std::int64_t stored = 0;     // rows
   std::int64_t conflicts = 0;  // times with two or more values
+  std::int64_t chosen = 0;     // of these, where a person chose
   std::map<std::string, std::int64_t> refused;
   std::optional<Reading> last;  // newest accepted one: a time in conflict has no value to show
 };
@@ -109,16 +165,29 @@ class Reader {
   Reader(const Reader&) = delete;
   Reader& operator=(const Reader&) = delete;
 
-  // Accepted readings in [from, to], ascending; times with two different values are left out.
+  // Accepted readings in [from, to], ascending; a time with two different values is left out until a person
+  // chose one.
   std::vector<Reading> accepted(std::int64_t channel, std::int64_t from_us, std::int64_t to_us);
   // The newest accepted reading at or before `at_us`.
   std::optional<Reading> newest(std::int64_t channel, std::int64_t at_us);
   ChannelCounts counts(std::int64_t channel);
+  std::vector<Conflict> conflicts(std::int64_t channel, std::int64_t from_us, std::int64_t to_us,
+                                  int limit);                                                  // newest first
+  std::vector<MaskRow> masks(std::int64_t channel, std::int64_t from_us, std::int64_t to_us);  // oldest first
   std::optional<LoadRow> load(std::int64_t id);
-  // Newest first; pages by id: rows with id < `before_id` (0 = from the newest). Filters empty = all.
+  // Newest first; pages by id: rows with id < `before_id` (0 = from the newest). Filters empty = all; a load
+  // counts for every furnace it was in.
   std::vector<LoadRow> loads(std::string_view furnace, std::optional<bool> open, std::int64_t before_id,
                              int limit);
-  std::vector<LoadRow> open_loads();  // oldest first
+  std::vector<LoadRow> open_loads();           // oldest first
+  std::vector<Stay> stays(std::int64_t load);  // oldest first
+  std::vector<PushRow> pushes(std::string_view furnace, std::int64_t from_us, std::int64_t to_us);
+  std::optional<PushRow> last_push(std::string_view furnace, std::string_view source);  // empty = any source
+  // Newest version of each entry that is not retired, by name.
+  std::vector<LibraryRow> library(std::string_view kind);
+  std::optional<LibraryRow> library_item(std::string_view kind, std::string_view key,
+                                         std::int64_t version = 0);                       // 0 = newest
+  std::vector<LibraryRow> library_versions(std::string_view kind, std::string_view key);  // oldest first
   // Ended loads of a furnace that were in it at some time of [from, to], oldest first.
   std::vector<LoadRow> ended_touching(std::string_view furnace, std::int64_t from_us, std::int64_t to_us);
   std::vector<LoadRow> ended_without_result();             // none for their present revision; oldest first
@@ -168,17 +237,30 @@ class Store {
   // than the queue.
   std::vector<Taken> append(std::vector<Reading> readings, std::vector<RefusedReading> refused);
 
-  // Fails with misuse where another load is in that furnace and chamber at an overlapping time (from its
-  // start up to, but not at, its end; without an end, for ever). `id` and `revision` of `row` are ignored;
+  // Without stays the load is in its furnace and chamber from start to end. Fails with misuse where more
+  // loads would be in a chamber at a time than it has places. `id` and `revision` of `row` are ignored;
   // created_us 0 and an empty audit subject are filled in: the audit's time, and "load <id>".
   std::int64_t create_load(LoadRow row, AuditRow audit);
+  std::int64_t create_load(LoadRow row, std::vector<Stay> stays, AuditRow audit);
   // A dated revision; revision + 1. An empty `definition_json` keeps the stored one; `ended_us` is the end
   // from now on (none = the load is open). Fails with misuse on a wrong `expected_revision` and on overlap.
   void revise_load(std::int64_t id, std::int64_t expected_revision, std::string definition_json,
                    std::optional<std::int64_t> ended_us, AuditRow audit);
+  // All or none, in one transaction; `audits` has one row for each change, and `push` is kept with them.
+  // Fails with misuse as above, on an empty list, and where the furnace was already pushed at that time.
+  void revise_loads(std::vector<LoadChange> changes, std::vector<AuditRow> audits,
+                    std::optional<PushRow> push = std::nullopt);
   std::int64_t add_note(LoadNote note);
-  void save_result(ResultRow row);  // marks earlier results of the load as superseded
-  void add_audit(AuditRow row);     // a change that is not a load's
+  // A new version of a library entry; returns its number. misuse: `expected_version` is not the newest (0 =
+  // there is none yet).
+  std::int64_t save_library(LibraryRow row, std::int64_t expected_version, AuditRow audit);
+  // One value for each conflicting time, in place of an earlier choice. misuse: that channel has no such
+  // value at that time.
+  void choose(std::vector<Choice> choices, AuditRow audit);
+  std::int64_t add_mask(MaskRow row, AuditRow audit);
+  void withdraw_mask(std::int64_t id, AuditRow audit);  // misuse: no such mask, or withdrawn already
+  void save_result(ResultRow row);                      // marks earlier results of the load as superseded
+  void add_audit(AuditRow row);                         // a change that is not a load's
 
   std::vector<ChangedSpan> take_changes();
   // Called after each commit with new rows, on the writer thread with no lock held; set before writing

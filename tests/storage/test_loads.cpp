@@ -118,18 +118,6 @@ TEST_CASE("of eight people who start a load in one chamber at once, one succeeds
   }
 }
 
-TEST_CASE("the table itself refuses an overlap, even from a hand in the file") {
-  Bench bench;
-  bench.create(load("2291", 100, 200));
-  bench.create(load("2292", 200, 300));
-  Outside outside(bench.folder.database());
-  CHECK(contains(
-      outside.failure("INSERT INTO load(name, furnace, chamber, person, started_us, created_us, revision, "
-                      "definition_json) VALUES('x', 'pit-2', 'main', 'p', 50, 0, 1, '')"),
-      "another load is in this chamber"));
-  CHECK(contains(outside.failure("UPDATE load SET ended_us = 250 WHERE id = 1"), "another load"));
-}
-
 TEST_CASE("a revision names what it replaces, and works only on the newest one") {
   Bench bench;
   const auto id = bench.create(load("2291", 100));
