@@ -111,10 +111,11 @@ class GasCarburizing {
   State start(double charge_temperature_degc) const;
   // Rework: a part that an earlier load left with `initial`. The section must be the same; core carbon is the
   // profile's own. A profile on this model's nodes is taken over bit for bit. Any other is read at this
-  // model's nodes by `carbon_at_depth_wt_pct`: the carbon inside then departs by less than 2e-5 of what the
-  // profile holds above its core (tests), and is the start of this load's balance. Throws
-  // std::invalid_argument where the profile has fewer than four depths, does not ascend from the surface to
-  // this section's centre (within 5 % of its extent), or holds a value that is not within 0-2.6 wt%.
+  // model's nodes by `carbon_at_depth_wt_pct`: depths within 0.3 um, and the carbon inside (a quadrature over
+  // each mesh's own nodes) within 3e-4 of what the profile holds above its core (tests); it is the start of
+  // this load's balance. Throws std::invalid_argument where the profile has fewer than four depths, does not
+  // ascend from the surface to this section's centre (within 5 % of its extent), or holds a value that is not
+  // within 0-2.6 wt%.
   State start(double charge_temperature_degc, const Profile& initial) const;
   Outcome advance(State& state, const IntervalInputs& inputs, Workspace& workspace) const;
 
