@@ -13,7 +13,6 @@ namespace {
 // Below this an oxygen probe's electrolyte does not conduct well enough to be believed (common practice,
 // no source); carbon transport is paused there anyway.
 constexpr double probe_works_from_degc = 700.0;
-constexpr double bar_per_atm = 1.01325;
 
 double seconds(std::int64_t us) {
   return static_cast<double>(us) * 1e-6;
@@ -114,9 +113,12 @@ IntervalInput LoadChannels::input(const LoadDefinition& load, std::int64_t from_
     const double co = mean_or(cover(Role::co), load.furnace.co_fraction * 100.0) / 100.0;
     const double emf_mv = mean_or(carbon, 0);
     double potential = planned.carbon_potential_wt_pct;
-    if (probe_degc >= probe_works_from_degc && co > 0)
-      potential = solver::carbon_potential_from_probe(emf_mv, probe_degc + solver::zero_celsius_k,
-                                                      co * load.furnace.total_pressure_bar / bar_per_atm);
+    if (probe_degc >= probe_works_from_degc && co > 0) {
+      const double probe_k = probe_degc + solver::zero_celsius_k;
+      const solver::CarbonGas gas{co, load.furnace.h2_fraction, load.furnace.total_pressure_bar};
+      potential =
+          solver::carbon_potential_wt_pct(solver::carbon_activity_from_emf(emf_mv, probe_k, gas), probe_k);
+    }
     carbon.integral = potential * carbon.known_s();
   }
   input.carbon_potential_wt_pct =

@@ -59,8 +59,10 @@ Result cycle(const Change& change) {
 // another temperature or emf.
 double potential_after(double set, double true_offset_k, double emf_offset_mv) {
   const double believed = 930 + 273.15;
-  const double emf = emf_mv_from_activity(carbon_activity(set, believed), believed, 0.20);
-  return carbon_potential_from_probe(emf + emf_offset_mv, believed + true_offset_k, 0.20);
+  const CarbonGas gas;
+  const double emf = emf_mv_at_activity(carbon_activity(set, believed), believed, gas) + emf_offset_mv;
+  const double read_at = believed + true_offset_k;
+  return carbon_potential_wt_pct(carbon_activity_from_emf(emf, read_at, gas), read_at);
 }
 
 }  // namespace

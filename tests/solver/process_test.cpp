@@ -1,0 +1,304 @@
+// What a part may go through besides gas at temperature: a film at the start, measured gas, time outside gas,
+// and a second load. Sources are named at each case; "identity" means that it follows from the equations.
+#include <doctest/doctest.h>
+
+#include <algorithm>
+#include <cmath>
+#include <initializer_list>
+#include <limits>
+#include <stdexcept>
+
+#include "support/cycles.h"
+#include "support/shapes.h"
+
+using namespace hearthfront::solver;
+using namespace hearthfront::testing;
+
+namespace {
+
+CarburizingPart part_of(const char* steel) {
+  CarburizingPart part;
+  part.steel = case_steel(steel).composition;
+  part.core_carbon_wt_pct = part.steel.c_wt_pct;
+  return part;
+}
+
+GasCarburizing::State after(const CarburizingPart& part, const std::vector<IntervalInputs>& inputs,
+                            double start_degc = 930) {
+  const GasCarburizing model(part, MeshDensity{});
+  GasCarburizing::State state = model.start(start_degc);
+  REQUIRE(run(model, state, inputs).kind != OutcomeKind::failed);
+  return state;
+}
+
+Profile profile_of(const GasCarburizing::State& state) {
+  return read_profile(state.field, 0, state.conditions[0]);
+}
+
+double crossed_mm(const GasCarburizing::State& state) {
+  return 1e3 * state.field.crossed_wt_pct_m[0];
+}
+
+double residual(const GasCarburizing::State& state) {
+  return std::fabs(balance_residual(state.field, 0, state.initial_wt_pct_m[0]));
+}
+
+std::vector<IntervalInputs> without_gas(std::vector<IntervalInputs> inputs) {
+  for (IntervalInputs& in : inputs) in.gas = false;
+  return inputs;
+}
+
+void append(std::vector<IntervalInputs>& all, const std::vector<IntervalInputs>& more) {
+  all.insert(all.end(), more.begin(), more.end());
+}
+
+}  // namespace
+
+TEST_CASE(
+    "a film on the surface hinders uptake, the longer it lasts; carbon is conserved (common practice, no "
+    "source)") {
+  const auto inputs = constant_inputs(2 * 3600, 930, 1.0);
+  double before = std::numeric_limits<double>::infinity();
+  for (double film_s : {0.0, 120.0, 600.0, 1800.0, 7200.0}) {
+    CarburizingPart part = part_of("16MnCr5");
+    part.film_s = film_s;
+    const GasCarburizing::State state = after(part, inputs);
+    CHECK(crossed_mm(state) < before);
+    CHECK(residual(state) < 1e-12);
+    before = crossed_mm(state);
+  }
+}
+
+TEST_CASE("a film delays by its time constant: late in the cycle, uptake as without it that much earlier") {
+  // While the surface is far from the gas the uptake follows int beta dt = beta (t - t0) (identity for a
+  // surface that stays at core carbon; the surface's own rise makes the film cost less, so t0 is the upper
+  // bound).
+  CarburizingPart slow = part_of("8620");
+  slow.beta_m_per_s = 1e-9;  // the surface hardly rises
+  const auto hour = constant_inputs(3600, 930, 1.0);
+  const double clean = crossed_mm(after(slow, hour));
+  slow.film_s = 300;
+  const double filmed = crossed_mm(after(slow, hour));
+  CHECK(filmed / clean == doctest::Approx(1 - 300.0 / 3600 * (1 - std::exp(-12.0))).epsilon(1e-3));
+}
+
+TEST_CASE("a film's share of beta is the exact mean over an interval, however the time is cut") {
+  CarburizingPart part = part_of("8620");
+  part.beta_m_per_s = 1e-9;
+  part.film_s = 600;
+  const double fine = crossed_mm(after(part, constant_inputs(3600, 930, 1.0, 10)));
+  CHECK(crossed_mm(after(part, constant_inputs(3600, 930, 1.0, 60))) == doctest::Approx(fine).epsilon(1e-4));
+  CHECK(crossed_mm(after(part, constant_inputs(3600, 930, 1.0, 1800))) ==
+        doctest::Approx(fine).epsilon(1e-3));
+}
+
+TEST_CASE("a film's clock runs only as austenite in gas") {
+  CarburizingPart part = part_of("8620");
+  part.film_s = 600;
+  const GasCarburizing model(part, MeshDensity{});
+  GasCarburizing::Workspace workspace(model);
+  GasCarburizing::State state = model.start(20);
+  IntervalInputs cold = constant_inputs(60, 700, 0.8).front();
+  model.advance(state, cold, workspace);
+  CHECK(state.film_age_s == 0);
+  IntervalInputs outside = constant_inputs(60, 930, 0.8).front();
+  outside.gas = false;
+  model.advance(state, outside, workspace);
+  CHECK(state.film_age_s == 0);
+  model.advance(state, constant_inputs(60, 930, 0.8).front(), workspace);
+  CHECK(state.film_age_s == 60);
+  model.advance(state, cold, workspace);
+  CHECK(state.film_age_s == 60);
+}
+
+TEST_CASE("a member's own film: scale 0 is no film, same bits as a part without one") {
+  CarburizingPart filmed = part_of("8620"), clean = filmed;
+  filmed.film_s = 600;
+  std::vector<Member> members(3);
+  members[1].film_scale = 0;
+  members[2].film_scale = 2;
+  const GasCarburizing model(filmed, MeshDensity{}, members);
+  GasCarburizing::State state = model.start(930);
+  const auto inputs = constant_inputs(3600, 930, 1.0);
+  run(model, state, inputs);
+  const GasCarburizing::State bare = after(clean, inputs);
+  for (std::size_t i = 0; i < model.mesh().nodes(); ++i)
+    CHECK(state.field.carbon_wt_pct(1, i) == bare.field.carbon_wt_pct(0, i));
+  CHECK(state.field.crossed_wt_pct_m[2] < state.field.crossed_wt_pct_m[0]);
+}
+
+TEST_CASE("measured gas: beta follows pCO pH2^0.5, of the law and of a beta set for the nominal gas") {
+  for (bool set : {false, true}) {
+    CarburizingPart nominal = part_of("8620");
+    nominal.co_fraction = 0.20;
+    nominal.h2_fraction = 0.40;
+    if (set) nominal.beta_m_per_s = 1.4e-7;
+    auto inputs = constant_inputs(3600, 930, 1.0);
+    const double as_nominal = crossed_mm(after(nominal, inputs));
+    for (IntervalInputs& in : inputs) {
+      in.co_fraction = 0.17;
+      in.h2_fraction = 0.45;
+    }
+    const double measured = crossed_mm(after(nominal, inputs));
+    CarburizingPart same = nominal;
+    if (set)
+      same.beta_m_per_s = 1.4e-7 * (0.17 * std::sqrt(0.45)) / (0.20 * std::sqrt(0.40));
+    else {
+      same.co_fraction = 0.17;
+      same.h2_fraction = 0.45;
+    }
+    CHECK(measured ==
+          doctest::Approx(crossed_mm(after(same, constant_inputs(3600, 930, 1.0)))).epsilon(1e-12));
+    CHECK(measured < as_nominal);
+    for (IntervalInputs& in : inputs) {
+      in.co_fraction = 0.20;
+      in.h2_fraction = 0.40;
+    }
+    CHECK(crossed_mm(after(nominal, inputs)) == doctest::Approx(as_nominal).epsilon(1e-12));
+    for (IntervalInputs& in : inputs) in.h2_fraction.reset();  // one alone is enough
+    CHECK(crossed_mm(after(nominal, inputs)) == doctest::Approx(as_nominal).epsilon(1e-12));
+    for (IntervalInputs& in : inputs) in.co_fraction = 0;
+    CHECK(crossed_mm(after(nominal, inputs)) == 0);
+  }
+}
+
+TEST_CASE(
+    "measured gas that is no mole fraction fails the state, as any bad input; without gas it is not looked "
+    "at") {
+  const GasCarburizing model({}, MeshDensity{});
+  GasCarburizing::Workspace workspace(model);
+  for (double bad : {-0.01, 1.01, 20.0, std::nan("")}) {
+    IntervalInputs in = constant_inputs(60, 930, 1.0).front();
+    in.co_fraction = bad;
+    GasCarburizing::State state = model.start(930);
+    CHECK(model.advance(state, in, workspace).kind == OutcomeKind::failed);
+    in.gas = false;
+    in.carbon_potential_wt_pct = std::nan("");
+    state = model.start(930);
+    CHECK(model.advance(state, in, workspace).kind == OutcomeKind::reached);
+  }
+}
+
+TEST_CASE(
+    "outside gas nothing crosses the surface and carbon spreads: the surface falls, the depth grows "
+    "(identity)") {
+  for (const char* steel : {"8620", "18CrNiMo7-6"}) {
+    const CarburizingPart part = part_of(steel);
+    const GasCarburizing model(part, MeshDensity{});
+    GasCarburizing::State state = model.start(930);
+    run(model, state, constant_inputs(2 * 3600, 930, 1.0));
+    const GasCarburizing::State boosted = state;
+    const Outcome outcome = run(model, state, without_gas(constant_inputs(2 * 3600, 930, 1.0)));
+    CHECK(outcome.kind == OutcomeKind::reached);
+    CHECK(state.field.crossed_wt_pct_m[0] == boosted.field.crossed_wt_pct_m[0]);
+    CHECK(surface_state(state.field, 0, state.conditions[0]).flux_wt_pct_m_per_s == 0.0);
+    CHECK(residual(state) < 1e-12);
+    CHECK(state.field.values[0] < boosted.field.values[0] - 0.1);
+    CHECK(*depth_at_carbon_m(profile_of(state), 0.35) > *depth_at_carbon_m(profile_of(boosted), 0.35));
+    // No notes of a gas that is not there, whatever the logger says of it.
+    CHECK(run(model, state, without_gas(constant_inputs(600, 930, 2.0))).notes == 0);
+  }
+}
+
+TEST_CASE("outside gas is a gas that gives and takes nothing: the limit of a vanishing beta (identity)") {
+  const CarburizingPart part = part_of("8620");
+  auto off = constant_inputs(3600, 930, 1.0), weak = off;
+  append(off, without_gas(constant_inputs(3600, 930, 1.0)));
+  auto tail = constant_inputs(3600, 930, 1.0);
+  for (IntervalInputs& in : tail) in.co_fraction = 1e-12;
+  append(weak, tail);
+  const auto a = after(part, off), b = after(part, weak);
+  for (std::size_t i = 0; i < a.field.values.size(); ++i)
+    CHECK(std::fabs(a.field.values[i] - b.field.values[i]) < 2e-5);  // steps differ after gas off
+}
+
+TEST_CASE("rework: a load begun from the first half's profile ends as one long load") {
+  for (const Section& section : all_shapes(6e-3, 5e-3)) {
+    CAPTURE(static_cast<int>(section.shape));
+    CarburizingPart part = part_of("20MnCr5");
+    part.section = section;
+    const GasCarburizing model(part, MeshDensity{});
+    auto first = noisy_eight_hours(41);
+    const std::vector<IntervalInputs> second(first.begin() + 200, first.end());
+    first.resize(200);
+    GasCarburizing::State whole = model.start(930);
+    run(model, whole, first);
+    const GasCarburizing::State half = whole;
+    run(model, whole, second);
+    GasCarburizing::State rework = model.start(930, profile_of(half));
+    CHECK(rework.field.values == half.field.values);  // same nodes: bit for bit
+    CHECK(rework.initial_wt_pct_m[0] == half.field.inventory_wt_pct_m(0));
+    run(model, rework, second);
+    double worst = 0;
+    for (std::size_t i = 0; i < whole.field.values.size(); ++i)
+      worst = std::max(worst, std::fabs(whole.field.values[i] - rework.field.values[i]));
+    CHECK(worst < 1e-6);  // the steps after the charge are short and damped; the long load has none there
+    CHECK(std::fabs(*depth_at_carbon_m(profile_of(whole), 0.35) -
+                    *depth_at_carbon_m(profile_of(rework), 0.35)) < 1e-8);
+    CHECK(residual(rework) < 1e-12);
+    CHECK(crossed_mm(whole) == doctest::Approx(crossed_mm(half) + crossed_mm(rework)).epsilon(1e-5));
+  }
+}
+
+TEST_CASE("rework: onto another mesh, the carbon inside within 3e-4 of the case, depths within 0.3 um") {
+  for (const Section& section : all_shapes(6e-3, 5e-3))
+    for (double length_m : {0.6e-3, 1.6e-3, 2.5e-3}) {
+      CAPTURE(static_cast<int>(section.shape));
+      CAPTURE(length_m);
+      CarburizingPart part = part_of("20MnCr5");
+      part.section = section;
+      MeshDensity density;
+      density.diffusion_length_m = 1.2e-3;
+      const GasCarburizing earlier(part, density);
+      GasCarburizing::State state = earlier.start(930);
+      run(earlier, state, noisy_eight_hours(42));
+      const Profile profile = profile_of(state);
+      density.diffusion_length_m = length_m;
+      const GasCarburizing later(part, density);
+      const GasCarburizing::State rework = later.start(850, profile);
+      const double above_core = state.field.inventory_wt_pct_m(0) - state.initial_wt_pct_m[0];
+      CHECK(std::fabs(rework.field.inventory_wt_pct_m(0) - state.field.inventory_wt_pct_m(0)) <
+            3e-4 * above_core);
+      CHECK(std::fabs(*depth_at_carbon_m(profile_of(rework), 0.35) - *depth_at_carbon_m(profile, 0.35)) <
+            0.3e-6);
+      CHECK(rework.field.values[0] == state.field.values[0]);
+      CHECK(rework.part_temperature_degc[0] == 850);
+    }
+}
+
+TEST_CASE("rework: members keep their own core; a film is there anew") {
+  CarburizingPart part = part_of("8620");
+  part.film_s = 300;
+  std::vector<Member> members(2);
+  members[1].core_carbon_offset_wt_pct = 0.02;
+  const GasCarburizing model(part, MeshDensity{}, members);
+  GasCarburizing::State state = model.start(930);
+  run(model, state, constant_inputs(3600, 930, 1.0));
+  const GasCarburizing::State rework = model.start(930, profile_of(state));
+  CHECK(rework.film_age_s == 0);
+  for (std::size_t i = 0; i < model.mesh().nodes(); ++i)
+    CHECK(rework.field.carbon_wt_pct(1, i) == doctest::Approx(rework.field.carbon_wt_pct(0, i) + 0.02));
+}
+
+TEST_CASE("rework: a profile that cannot be of this section is refused") {
+  const GasCarburizing model({}, MeshDensity{});
+  const Profile good = profile_of(model.start(930));
+  CHECK_NOTHROW(model.start(930, good));
+  const auto refused = [&](auto change) {
+    Profile profile = good;
+    change(profile);
+    CHECK_THROWS_AS(model.start(930, profile), std::invalid_argument);
+  };
+  refused([](Profile& p) {
+    for (double& x : p.depth_m) x *= 1.1;
+  });
+  refused([](Profile& p) {
+    for (double& x : p.depth_m) x *= 0.9;
+  });
+  refused([](Profile& p) { std::swap(p.depth_m[3], p.depth_m[4]); });
+  refused([](Profile& p) { p.depth_m[0] = 1e-6; });
+  refused([](Profile& p) { p.depth_m.pop_back(); });
+  refused([](Profile& p) { p.carbon_wt_pct[7] = std::nan(""); });
+  refused([](Profile& p) { p.carbon_wt_pct[7] = -0.1; });
+  refused([](Profile& p) { p = {{0, 1e-3, 1e-2}, {1, 0.5, 0.2}}; });
+}
