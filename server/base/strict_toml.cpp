@@ -246,6 +246,21 @@ std::optional<ConfigTable> ConfigTable::table(std::string_view key) {
   return ConfigTable(file_, member->value, "[" + std::string(key) + "]", errors_);
 }
 
+bool ConfigTable::texts(std::string_view key, std::vector<std::string>& into) {
+  const ConfigMember* member = find_of(key, Kind::array, "an array of words, [\"...\"]");
+  if (member == nullptr) return false;
+  std::vector<std::string> words;
+  for (const ConfigValue& element : member->value.array) {
+    if (element.kind != Kind::text) {
+      report(element.place, std::string(key) + ": expected words, got " + std::string(name_of(element.kind)));
+      return false;
+    }
+    words.push_back(element.text);
+  }
+  into = std::move(words);
+  return true;
+}
+
 std::vector<ConfigTable> ConfigTable::tables(std::string_view key) {
   std::vector<ConfigTable> found;
   const ConfigMember* member =

@@ -54,6 +54,7 @@ class ConfigTable {
   bool number(std::string_view key, std::optional<double>& into, double low, double high);
   bool character(std::string_view key, char& into);  // a string of one ASCII character
   bool numbers(std::string_view key, std::vector<double>& into, std::size_t count, double low, double high);
+  bool texts(std::string_view key, std::vector<std::string>& into);
   std::optional<ConfigTable> table(std::string_view key);
   std::vector<ConfigTable> tables(std::string_view key);  // [[key]] or key = [{...}, {...}]
 

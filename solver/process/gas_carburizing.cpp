@@ -104,15 +104,17 @@ GasCarburizing::State GasCarburizing::start_from(double charge_temperature_degc,
 // Mean over the interval.
 double GasCarburizing::lane_beta_m_per_s(const State& state, const IntervalInputs& inputs,
                                          const Member& member, double t_k) const {
-  const double co = inputs.co_fraction.value_or(part_.co_fraction);
-  const double h2 = inputs.h2_fraction.value_or(part_.h2_fraction);
+  const FurnaceSettings furnace =
+      inputs.furnace.value_or(FurnaceSettings{part_.beta_m_per_s, part_.co_fraction, part_.h2_fraction});
+  const double co = inputs.co_fraction.value_or(furnace.co_fraction);
+  const double h2 = inputs.h2_fraction.value_or(furnace.h2_fraction);
   double beta = member.beta_scale;
-  if (!part_.beta_m_per_s)
+  if (!furnace.beta_m_per_s)
     beta *= transfer_coefficient_m_per_s(co, h2, t_k);
   else if (inputs.co_fraction || inputs.h2_fraction)
-    beta *= *part_.beta_m_per_s * transfer_ratio(co, h2, part_.co_fraction, part_.h2_fraction);
+    beta *= *furnace.beta_m_per_s * transfer_ratio(co, h2, furnace.co_fraction, furnace.h2_fraction);
   else
-    beta *= *part_.beta_m_per_s;
+    beta *= *furnace.beta_m_per_s;
   const double film_s = part_.film_s * member.film_scale;
   return film_s > 0.0 ? beta * film_share(state.film_age_s, inputs.duration_s, film_s) : beta;
 }

@@ -48,6 +48,12 @@ struct Member {
   double film_scale = 1;
 };
 
+// Settings of a furnace, as in CarburizingPart.
+struct FurnaceSettings {
+  std::optional<double> beta_m_per_s;
+  double co_fraction = 0.20, h2_fraction = 0.40;
+};
+
 // Means over one lattice interval. A value that is not finite, a mole fraction outside 0-1, or a duration
 // that is not above 0, fails the state.
 struct IntervalInputs {
@@ -55,8 +61,10 @@ struct IntervalInputs {
   double furnace_temperature_degc = 20;
   std::optional<double> load_temperature_degc;
   double carbon_potential_wt_pct = 0;
-  // Measured gas, 0-1; where empty the part's own.
+  // Measured gas, 0-1; where empty the furnace's.
   std::optional<double> co_fraction, h2_fraction;
+  // The furnace the part is in, where it is another than the part's own (a load that moved).
+  std::optional<FurnaceSettings> furnace;
   // False: the part is outside any carburizing gas; potential and fractions are then not looked at.
   bool gas = true;
 };
