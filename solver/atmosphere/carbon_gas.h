@@ -4,14 +4,13 @@
 //   CO2            2CO = C + CO2       a = K_B pCO^2 / pCO2        needs CO
 //   dew point      CO + H2 = C + H2O   a = K_W pCO pH2 / pH2O      needs CO and H2
 //
-// Equilibria: log10 K_O = -5910.5/T - 4.5558, log10 K_B = 8811.7/T - 9.0656, log10 K_W = 7091.9/T - 7.4956, p
-// in
-//   atm: linear fits for 1073-1323 K (within 0.002) to the NASA polynomials of NASA TM-4513. Lines fitted
-//   from room temperature upward also circulate; at 927 degC they are 10 % high in activity.
+// Equilibria, p in atm:
+//   log10 K_O = -5910.5/T - 4.5558, log10 K_B = 8811.7/T - 9.0656, log10 K_W = 7091.9/T - 7.4956:
+//   linear fits for 1073-1323 K (within 0.002) to the NASA polynomials of NASA TM-4513. Lines fitted from
+//   room temperature upward also circulate; at 927 degC they are 10 % high in activity.
 // Probe: Nernst's equation against dry air at one atmosphere (20.95 % O2).
 // Dew point: Magnus' formula with the coefficients of the WMO (-40 to 50 degC, within 0.4 %); over frost from
-//   memory. Below 0 degC a mirror may show either: they differ by 0.7 K, 0.04 wt% in carbon potential, at -6
-//   degC.
+//   memory. Below 0 degC a mirror may show either: at -6 degC they differ by 0.7 K, which is 0.04 wt%.
 // Transfer coefficient: median of German practice tables for 900-950 degC (from memory) scaled by
 //   pCO pH2^0.5 (H. J. Grabke's rate law for the CO + H2 path); temperature ratio exp(-34900/(R T)) from
 //   textbook use (origin not verified), 1 at 940 degC. Expect a factor 1.4 (one sigma) around it.

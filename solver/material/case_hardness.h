@@ -4,9 +4,9 @@
 // HV_austenite 225 (200-250, from memory). The martensite share is that of the transformation during the
 // quench, the same for the whole case: a case is taken as fully martensitic (99 %) unless told otherwise. Not
 // in it: intergranular oxidation (the first 20-30 um of a gas-carburized case are softer), carbides, bainite.
-// The measured martensite table holds the few per cent of austenite of its own steels: at 0.3-0.5 wt% C
-// counting retained austenite here lowers the hardness by about 5-15 HV too much. Leave the quench
-// temperature empty to have the table alone.
+// The measured martensite table holds the few per cent of austenite of its own steels, so at 0.3-0.5 wt% C
+// part of the 5-25 HV that retained austenite takes here is counted twice. Leave the quench temperature empty
+// to have the table alone.
 #pragma once
 
 #include <optional>

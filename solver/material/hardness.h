@@ -25,8 +25,7 @@ double martensite_hardness_hrc(double carbon_wt_pct, double martensite_pct);
 // In HV, with the rise above 0.60 wt% C; other shares of martensite keep their ratio to 99 % there.
 double martensite_hardness_hv(double carbon_wt_pct, double martensite_pct);
 
-// The carbon content whose martensite has that hardness by the table. Empty where the table does not reach
-// it.
+// The carbon content whose martensite has that hardness by the table. Empty where it does not reach so far.
 std::optional<double> carbon_for_hardness_hrc(double hrc, double martensite_pct);
 
 }  // namespace hearthfront::solver

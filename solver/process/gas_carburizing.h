@@ -4,7 +4,7 @@
 // The model is immutable and may be shared by threads; State is a value (copying it sets a mark);
 // a Workspace belongs to one thread. advance() never throws, allocates or blocks.
 //
-// Outside any carburizing gas (a vacuum, nitrogen, a move between furnaces) nothing crosses the surface and
+// Outside any carburizing gas (vacuum, nitrogen, a move between furnaces) nothing crosses the surface and
 // carbon goes on spreading; oxidation and decarburizing by air are not modelled. A film left on the surface
 // (oxide, washing residue) makes a slow start: beta (1 - exp(-t/film_s)), a suggestion of practice without a
 // published law; t counts the time in gas as austenite and each interval takes its mean. Below the austenite
@@ -118,12 +118,12 @@ class GasCarburizing {
   // A new part: core carbon everywhere.
   State start(double charge_temperature_degc) const;
   // Rework: a part that an earlier load left with `initial`. The section must be the same; core carbon is the
-  // profile's own. A profile on this model's nodes is taken over bit for bit. Any other is read at this
-  // model's nodes by `carbon_at_depth_wt_pct`: depths within 0.3 um, and the carbon inside (a quadrature over
-  // each mesh's own nodes) within 3e-4 of what the profile holds above its core (tests); it is the start of
-  // this load's balance. Throws std::invalid_argument where the profile has fewer than four depths, does not
-  // ascend from the surface to this section's centre (within 5 % of its extent), or holds a value that is not
-  // within 0-2.6 wt%.
+  // profile's own. Lay the mesh out for both loads: the root of the sum of their squared diffusion lengths.
+  // A profile on this model's nodes is taken over bit for bit. Any other is read at this model's nodes by
+  // `carbon_at_depth_wt_pct`: depths within 0.3 um, and the carbon inside (a quadrature over each mesh's own
+  // nodes) within 3e-4 of what the profile holds above its core (tests); it is the start of this load's
+  // balance. Throws std::invalid_argument where the profile has fewer than four depths, does not ascend from
+  // the surface to this section's centre (within 5 % of its extent), or holds carbon outside 0-2.6 wt%.
   State start(double charge_temperature_degc, const Profile& initial) const;
   Outcome advance(State& state, const IntervalInputs& inputs, Workspace& workspace) const;
 

@@ -28,6 +28,7 @@ Profile carburized(const Composition& steel, double boost_potential, double diff
   part.section = {Shape::plate, 10e-3, 0};
   part.steel = steel;
   part.core_carbon_wt_pct = steel.c_wt_pct;
+  part.beta_m_per_s = 1.3e-7;
   const GasCarburizing model(part, MeshDensity{});
   GasCarburizing::State state = model.start(930);
   hearthfront::testing::run(model, state, hearthfront::testing::constant_inputs(14400, 930, boost_potential));
@@ -145,6 +146,24 @@ TEST_CASE("the carbon limit of a hardness criterion and the hardness profile giv
     CHECK(alone - frozen < 10e-6);
     CHECK(alone - frozen < alone - *depth_at_hardness_m(profile, 550, c, {}));
   }
+}
+
+TEST_CASE("a traverse by hand: ISO 18203's interpolation between two indents, and SAE J423's 50 HRC") {
+  // CHD = d1 + (d2 - d1)(H1 - 550)/(H1 - H2), d2 - d1 <= 0.3 mm (from memory).
+  const Profile profile = carburized({0.2, 0, 0, 0, 0, 0}, 1.10, 0.80);
+  const auto hv = [&](double depth) { return hardness_at_depth_hv(profile, depth, {}, martensite_alone); };
+  const double read = *depth_at_hardness_m(profile, 550, {}, martensite_alone);
+  for (double apart_m : {0.1e-3, 0.3e-3})
+    for (double share : {0.2, 0.5, 0.8}) {
+      const double d1 = read - share * apart_m, d2 = d1 + apart_m;
+      const double interpolated = d1 + (d2 - d1) * (hv(d1) - 550) / (hv(d1) - hv(d2));
+      CHECK(std::fabs(interpolated - read) < (apart_m < 0.2e-3 ? 4e-6 : 25e-6));
+    }
+  // Hardness falls by 366 HV/mm there in the base case (computed): 16 HV are 0.044 mm. Within 5 %: both
+  // tables are bent at their points.
+  CHECK(std::fabs((hv(read - 50e-6) - hv(read + 50e-6)) / 0.1 / 366 - 1) < 0.05);
+  // 50 HRC is 513 HV: a deeper case than CHD 550 HV.
+  CHECK(*depth_at_hardness_m(profile, *hv_from_hrc(50), {}, martensite_alone) > read + 50e-6);
 }
 
 TEST_CASE("a surface made soft by retained austenite does not end the case") {
