@@ -71,9 +71,10 @@ void Api::check_times(const LoadDefinition& load) const {
 }
 
 Response Api::create_load(const Request& request) {
-  const LoadDefinition load = read_load_body(with_rework(request.body), parts_.plant);
+  LoadDefinition load = read_load_body(with_rework(request.body), parts_.plant);
   check_times(load);
   const std::int64_t now = parts_.clock.now_us();
+  if (load.path.size() == 1) follow_line(load, *readers_.take(), now);
   storage::LoadRow row = row_of(load);
   row.created_us = now;
   const storage::AuditRow audit{now, load.person, "start load", "", "", load_body(load)};

@@ -56,6 +56,26 @@ std::optional<std::string> zone_at(const Furnace& line, int position) {
   return std::nullopt;
 }
 
+bool follow_line(LoadDefinition& load, storage::Reader& reader, std::int64_t until_us) {
+  const PathStep place = load.last_place();
+  const Furnace* line = load.furnace(place.furnace);
+  if (!line || !line->line) return false;
+  bool moved = false;
+  int position = 1;
+  for (const storage::PushRow& push : reader.pushes(place.furnace, *came_us(load, place.from_us) + 1, until_us)) {
+    if (load.ended_us && push.at_us >= *load.ended_us) break;
+    const auto zone = zone_at(*line, ++position);
+    if (push.at_us <= load.last_place().from_us || zone == load.last_place().chamber) continue;
+    moved = true;
+    if (!zone) {
+      load.ended_us = push.at_us;
+      break;
+    }
+    load.path.push_back({push.at_us, line->id, *zone});
+  }
+  return moved;
+}
+
 std::vector<MovedLoad> push_line(const Furnace& line, storage::Store& store, storage::Reader& reader,
                                  const storage::PushRow& push, std::int64_t now_us) {
   const auto refuse = [](const std::string& text) {

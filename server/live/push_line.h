@@ -28,6 +28,10 @@ std::optional<int> line_position(const LoadDefinition& load, storage::Reader& re
 // The zone that a position lies in; empty beyond the last.
 std::optional<std::string> zone_at(const Furnace& line, int position);
 
+// Takes a load through the pushes that happened since it came where it is: a tray that is entered late is
+// where the line has carried it. Returns whether anything changed.
+bool follow_line(LoadDefinition& load, storage::Reader& reader, std::int64_t until_us);
+
 struct MovedLoad {
   std::int64_t id = 0;
   std::string name, from;         // zone

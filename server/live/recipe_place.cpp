@@ -115,9 +115,11 @@ void RecipePlace::step(const Recipe& recipe, const FurnaceSight& sight, bool due
       enter(index + 1, std::max(now().from_us + 1, std::min(*next_us_, left_us_.value_or(*next_us_))),
             PlacedBy::readings);
     } else if (const std::int64_t end = planned_end_us(recipe);
-               end <= sight.to_us && !(told_apart && here) && !(next_us_ && end > *next_us_)) {
+               end <= sight.to_us && !(told_apart && here) && !next_us_) {
       const bool by_model = segment.until && due_us_;
-      enter(index + 1, end, by_model ? PlacedBy::model : PlacedBy::recipe_time);
+      // A furnace that stayed longer goes on when it leaves.
+      const std::int64_t from = told_apart && left_us_ ? std::max(end, *left_us_) : end;
+      enter(index + 1, from, by_model ? PlacedBy::model : PlacedBy::recipe_time);
       due = false;
       moved = true;
     }
