@@ -108,6 +108,26 @@ TEST_CASE("a film's clock runs only as austenite in gas") {
   CHECK(state.film_age_s == 60);
 }
 
+TEST_CASE("a film that has worn off stays off: neither a new gas nor a dip below austenite brings it back") {
+  CarburizingPart part = part_of("8620");
+  part.beta_m_per_s = 1e-7;
+  part.film_s = 120;
+  const GasCarburizing model(part, MeshDensity{});
+  GasCarburizing::State state = model.start(930);
+  const auto share_of_beta = [&] {
+    return 1 / (state.conditions[0].surface.resistance_s_per_m * 1e-7 * model.alloy_factor());
+  };
+  run(model, state, constant_inputs(60, 930, 0.8));
+  CHECK(share_of_beta() ==
+        doctest::Approx(1 - 2 * (1 - std::exp(-0.5))).epsilon(1e-12));  // mean of the minute
+  run(model, state, constant_inputs(3600, 930, 0.8));
+  run(model, state, constant_inputs(60, 930, 1.1));
+  CHECK(share_of_beta() > 1 - 1e-9);
+  run(model, state, constant_inputs(600, 700, 1.1));
+  run(model, state, constant_inputs(60, 930, 1.1));
+  CHECK(share_of_beta() > 1 - 1e-9);
+}
+
 TEST_CASE("a member's own film: scale 0 is no film, same bits as a part without one") {
   CarburizingPart filmed = part_of("8620"), clean = filmed;
   filmed.film_s = 600;
