@@ -1,0 +1,194 @@
+// Many hostile clients at once against the real daemon: slow ones, greedy ones, silent ones, and floods. None may hold
+// up the others, and memory and processor time stay below the bounds that each check states. Figures are printed. The
+// daemon runs with short time limits of its own settings, so that this ends within a minute. All bounds are common
+// practice, no source, unless a check names one; the time to cut a client is the daemon's own setting.
+import { readFileSync } from 'node:fs';
+import { Daemon, binary, check, expect, finish, iso, sleep, waitFor } from './support.mjs';
+import { HOST, MB, Raw, alive, answerOf, get, healthWhile, kernelBuffers_mb, memoryBounded, memoryOf, post, processorSeconds, sanitized, summary } from './hostile_support.mjs';
+
+binary();
+const REQUEST_TIMEOUT_S = 3;
+const daemon = await Daemon.fresh(`[http]\nrequest_timeout_s = ${REQUEST_TIMEOUT_S}\n`);
+const { port } = daemon;
+const LATENCY_MS = 250; // worst of /healthz under attack; two cores shared with the attackers
+const slowdown = sanitized(daemon) ? 10 : 1;
+const open = (count, options) => Array.from({ length: count }, () => new Raw(port, options));
+const close = (clients) => clients.forEach((client) => client.destroy());
+const counters = async () => (await daemon.request('GET', '/metrics')).text;
+const openConnections = async () => Number(/^hearthfront_http_open_connections (\d+)/m.exec(await counters())?.[1] ?? NaN);
+const fast = (times_ms) => {
+  console.log(`     /healthz meanwhile: ${summary(times_ms)}`);
+  expect(times_ms.length >= 5 && times_ms.at(-1) < LATENCY_MS * slowdown, summary(times_ms));
+};
+
+// A client that is never late with a byte, and never done.
+const drip = async (clients, byte, limit_s) => {
+  const end = performance.now() + limit_s * 1000;
+  while (performance.now() < end && clients.some((client) => !client.ended)) {
+    for (const client of clients) if (!client.ended) client.send(byte);
+    await sleep(1000);
+  }
+};
+for (const [name, first] of [
+  ['in the request line', 'GET /'],
+  ['in the head', `GET /healthz HTTP/1.1\r\n${HOST}X: `],
+  ['in the body', `POST /api/v1/readings HTTP/1.1\r\n${HOST}Content-Length: 1000\r\n\r\n`],
+]) {
+  await check(`64 clients that send a byte a second ${name} hold up nobody and are cut at the deadline with 408 (RFC 9110 15.5.9)`, async () => {
+    const clients = open(64);
+    clients.forEach((client) => client.send(first));
+    fast(await healthWhile(port, drip(clients, 'a', REQUEST_TIMEOUT_S + 3)));
+    const late = clients.filter((client) => !client.text().startsWith('HTTP/1.1 408') || client.ended_at - client.began > (REQUEST_TIMEOUT_S + 1.5) * 1000);
+    close(clients);
+    expect(late.length === 0, `${late.length} of 64 were not cut in time: ${late[0]?.text().slice(0, 60)}`);
+  });
+}
+
+await check('a client that connects and says nothing is let go at the deadline', async () => {
+  const client = new Raw(port);
+  await Promise.race([client.over, sleep((REQUEST_TIMEOUT_S + 2) * 1000)]);
+  expect(client.ended && client.bytes_in === 0, 'still open');
+  client.destroy();
+});
+
+await check('a request line of 100 MB without end: 414, memory +8 MB at most (CVE-2025-53628)', () =>
+  memoryBounded(daemon, 8, async () => {
+    const client = new Raw(port).send('GET /');
+    await client.pour(Buffer.alloc(65536, 'a'), 100 * MB);
+    expect((await client.answers())[0]?.status === 414, client.text().slice(0, 100));
+    client.destroy();
+  }));
+await check('a head of 100 MB without end: 431, memory +8 MB at most (CVE-2025-52887)', () =>
+  memoryBounded(daemon, 8, async () => {
+    const client = new Raw(port).send(`GET / HTTP/1.1\r\n${HOST}`);
+    await client.pour(Buffer.from('X-A: b\r\n'.repeat(8192)), 100 * MB);
+    expect((await client.answers())[0]?.status === 431, client.text().slice(0, 100));
+    client.destroy();
+  }));
+await check('a chunked body of 100 MB: 411, memory +8 MB at most (CVE-2025-46728)', () =>
+  memoryBounded(daemon, 8, async () => {
+    const client = new Raw(port).send(`POST /api/v1/readings HTTP/1.1\r\n${HOST}Transfer-Encoding: chunked\r\n\r\n`);
+    await client.pour(Buffer.from(`10000\r\n${'a'.repeat(65536)}\r\n`), 100 * MB);
+    expect((await client.answers())[0]?.status === 411, client.text().slice(0, 100));
+    client.destroy();
+  }));
+await check('a body of 50 MB that is sent: 413, memory +8 MB at most (RFC 9110 15.5.14)', () =>
+  memoryBounded(daemon, 8, async () => {
+    const client = new Raw(port).send(`POST /api/v1/readings HTTP/1.1\r\n${HOST}Content-Length: ${50 * MB}\r\n\r\n`);
+    await client.pour(Buffer.alloc(65536, ' '), 50 * MB);
+    expect((await client.answers())[0]?.status === 413, client.text().slice(0, 100));
+    client.destroy();
+  }));
+
+// 64 MiB of large bodies are held at most; a growing buffer may be twice its content.
+await check('40 bodies of 8 MB, each short of its last byte: some wait, the others get 503, memory +160 MB at most, small requests go on', () =>
+  memoryBounded(daemon, 160, async () => {
+    const clients = open(40);
+    const piece = Buffer.alloc(1 * MB, ' ');
+    clients.forEach((client) => client.send(`POST /api/v1/readings HTTP/1.1\r\n${HOST}Content-Length: ${8 * MB}\r\n\r\n`));
+    const pouring = Promise.all(clients.map((client) => client.pour(piece, 7 * MB)));
+    fast(await healthWhile(port, Promise.race([pouring, sleep(4000)]).then(() => sleep(500))));
+    const busy = clients.filter((client) => client.text().startsWith('HTTP/1.1 503'));
+    close(clients);
+    console.log(`     ${busy.length} of 40 refused`);
+    expect(busy.length >= 24 && busy.every((client) => /\r\nRetry-After: /.test(client.text())), `${busy.length} of 40 refused`);
+  }));
+
+// The largest answer that a small request asks for: 10 000 reasons.
+const now_ms = Date.now();
+const ASK_MUCH = post('/api/v1/readings', JSON.stringify({ readings: Array(9000).fill({ furnace: 'pit-9', channel: 'temperature', time: iso(now_ms - 60000), value: 1 }) }));
+await check('60 clients that ask for a large answer and never read it: memory +100 MB and kernel buffers +60 MB at most, cut within the deadline, others served', async () => {
+  const answer_mb = Buffer.byteLength((await answerOf(port, ASK_MUCH)).body) / MB;
+  const kernel_before = kernelBuffers_mb();
+  let kernel_peak = 0;
+  const clients = [];
+  await memoryBounded(daemon, 100, async () => {
+    clients.push(...open(60, { reads: false }));
+    clients.forEach((client) => client.send(ASK_MUCH));
+    const watched = (async () => {
+      for (let i = 0; i < 30; i++) {
+        await sleep(100);
+        kernel_peak = Math.max(kernel_peak, kernelBuffers_mb() - kernel_before);
+      }
+    })();
+    fast(await healthWhile(port, watched));
+  });
+  console.log(`     60 answers of ${answer_mb.toFixed(2)} MB; kernel buffers +${kernel_peak.toFixed(0)} MB`);
+  await waitFor('the daemon to let go of them', (REQUEST_TIMEOUT_S + 10) * 1000, async () => (await openConnections()) <= 2);
+  const left = kernelBuffers_mb() - kernel_before;
+  console.log(`     after they were cut: kernel buffers +${left.toFixed(0)} MB`);
+  close(clients);
+  expect(kernel_peak <= 60, `kernel buffers +${kernel_peak.toFixed(0)} MB`);
+});
+
+await check('200 idle connections cost less than 5 % of a core, hold up nobody, and stay usable', async () => {
+  const clients = open(200);
+  clients.forEach((client) => client.send(get('/healthz')));
+  for (const client of clients) expect((await client.answers(1)).length === 1, `no answer: ${client.error}`);
+  const began = [performance.now(), processorSeconds(daemon)];
+  await sleep(3000);
+  const share = (100000 * (processorSeconds(daemon) - began[1])) / (performance.now() - began[0]);
+  console.log(`     ${share.toFixed(1)} % of a core`);
+  fast(await healthWhile(port, sleep(500)));
+  clients.forEach((client) => client.send(get('/healthz')));
+  for (const client of clients) expect((await client.answers(2)).length === 2, `no second answer: ${client.error}`);
+  close(clients);
+  expect(share < 5 * slowdown, `${share.toFixed(1)} % of a core`);
+});
+
+await check('400 connects at once: all are answered or closed at once, never left waiting; 200 up to the limit of one address (256), 503 above', async () => {
+  await waitFor('free places', 5000, async () => (await openConnections()) <= 2);
+  const began = performance.now();
+  const clients = open(400);
+  clients.forEach((client) => client.send(get('/healthz')));
+  const statuses = {};
+  for (const client of clients) {
+    const [answer] = await client.answers(1, 3000 * slowdown);
+    const word = answer ? answer.status : client.ended ? 'closed' : 'left waiting';
+    statuses[word] = (statuses[word] ?? 0) + 1;
+  }
+  const took_ms = performance.now() - began;
+  console.log(`     ${JSON.stringify(statuses)} within ${took_ms.toFixed(0)} ms`);
+  close(clients);
+  expect(statuses[200] >= 250 && !statuses['left waiting'] && took_ms < 3000 * slowdown, JSON.stringify(statuses));
+  await waitFor('free places', 5000, async () => (await openConnections()) <= 2);
+});
+await check('800 connects at once from four addresses are all answered 200 (backlog; measured with 1024 places)', async () => {
+  const began = performance.now();
+  const clients = [1, 2, 3, 4].flatMap((host) => open(200, { from: `127.0.0.${host}` }));
+  clients.forEach((client) => client.send(get('/healthz')));
+  let good = 0;
+  for (const client of clients) good += (await client.answers(1, 5000 * slowdown))[0]?.status === 200 ? 1 : 0;
+  console.log(`     ${good} within ${(performance.now() - began).toFixed(0)} ms`);
+  close(clients);
+  expect(good === 800, `${good} of 800`);
+});
+
+await check('300 requests at once on each of 32 connections, without reading: answered in order or cut, memory +20 MB at most', () =>
+  memoryBounded(daemon, 20, async () => {
+    const clients = open(32, { reads: false });
+    clients.forEach((client) => client.send(get('/api/v1/openapi.yaml').repeat(300)));
+    fast(await healthWhile(port, sleep(2500)));
+    close(clients);
+  }));
+await check('connections that are torn down in the middle of everything leave no place taken', async () => {
+  for (let round = 0; round < 5; round++) {
+    const clients = open(100);
+    clients.forEach((client, i) => client.send([get('/api/v1/openapi.yaml').repeat(20), 'GET', post('/api/v1/readings', '{}').slice(0, -1), ASK_MUCH][i % 4]));
+    await sleep(30);
+    clients.forEach((client) => client.socket.resetAndDestroy());
+  }
+  await waitFor('all places to be free', 8000, async () => (await openConnections()) <= 2);
+  await alive(port);
+});
+
+await check('after all that: memory back near the start, no failure in the log, end with code 0', async () => {
+  const { before } = await memoryOf(daemon, () => alive(port));
+  expect(sanitized(daemon) || before < 200, `${before} MB`);
+  const log = readFileSync(`${daemon.folder}/daemon.log`, 'utf8');
+  expect(!/failed|error/i.test(log), log.slice(-600));
+  const end = await daemon.stop();
+  expect(end.code === 0, JSON.stringify(end));
+});
+
+finish();
