@@ -1,11 +1,13 @@
 #include "server/api/http_socket.h"
 
 #include <arpa/inet.h>
+#include <linux/sockios.h>
 #include <netdb.h>
 #include <netinet/in.h>
 #include <netinet/tcp.h>
 #include <sys/epoll.h>
 #include <sys/eventfd.h>
+#include <sys/ioctl.h>
 #include <sys/socket.h>
 #include <unistd.h>
 
@@ -20,6 +22,9 @@ namespace {
 
 constexpr int backlog = 1024;
 constexpr unsigned vanished_after_ms = 30000;
+// Beside what the peer's window admits. Without it the kernel takes some megabytes for each peer that does not
+// read, which no limit of ours would see.
+constexpr int max_unsent_in_kernel_bytes = 128 << 10;
 
 // bind, getsockname and the like take the general address type of C.
 sockaddr* general(sockaddr_storage& storage) {
@@ -116,6 +121,22 @@ Listener open_listener(const std::string& address, int port) {
 void tune_connection(int socket) {
   switch_on(socket, IPPROTO_TCP, TCP_NODELAY);
   setsockopt(socket, IPPROTO_TCP, TCP_USER_TIMEOUT, &vanished_after_ms, sizeof vanished_after_ms);
+  setsockopt(socket, IPPROTO_TCP, TCP_NOTSENT_LOWAT, &max_unsent_in_kernel_bytes,
+             sizeof max_unsent_in_kernel_bytes);
+}
+
+bool has_untaken(int socket) {
+  tcp_info info{};
+  socklen_t size = sizeof info;
+  if (getsockopt(socket, IPPROTO_TCP, TCP_INFO, &info, &size) != 0 || info.tcpi_state == TCP_CLOSE)
+    return false;
+  int bytes = 0;
+  return ioctl(socket, SIOCOUTQ, &bytes) == 0 && bytes > 0;
+}
+
+void discard_untaken(int socket) {
+  const linger at_once{1, 0};
+  setsockopt(socket, SOL_SOCKET, SO_LINGER, &at_once, sizeof at_once);
 }
 
 std::string remote_address_of(int socket) {
