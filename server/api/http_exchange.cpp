@@ -19,7 +19,7 @@ constexpr std::size_t max_drained_bytes = 32u << 20;
 constexpr std::size_t small_body_bytes = 64u << 10;
 constexpr std::size_t kept_buffer_bytes = 64u << 10;
 constexpr std::size_t slowest_bytes_per_s = 256u << 10;  // counts beside the request's own time
-constexpr int reads_per_turn = 4;                        // then others get their turn
+constexpr int reads_per_turn = 1;  // of 64 KiB; then others get their turn, or many large bodies hold up all
 
 void shrink(std::string& buffer) {
   if (buffer.capacity() > kept_buffer_bytes) buffer.shrink_to_fit();

@@ -51,8 +51,8 @@ void check_target(std::string_view target) {
   }
 }
 
-// RFC 9112 3.2.2: a server accepts the absolute form; its authority then stands for the Host field, which must be
-// there all the same (3.2).
+// RFC 9112 3.2.2: a server accepts the absolute form; its authority then stands for the Host field, which
+// must be there all the same (3.2).
 void take_absolute_form(RequestHead& head) {
   constexpr std::string_view scheme = "http://";
   if (lower_ascii(std::string_view(head.target).substr(0, scheme.size())) != scheme) return;

@@ -31,8 +31,8 @@ struct Connection {
     collecting,  // idle, or part of a request is here
     working,     // with a worker, watched by nobody
     flushing,    // part of the answer is still to be sent
-    draining     // answered and closed on our side; input is thrown away so that no reset eats the answer, and
-                 // the place is kept while the kernel holds bytes of it
+    draining  // answered and closed on our side; input is thrown away so that no reset eats the answer, and
+              // the place is kept while the kernel holds bytes of it
   };
 
   std::uint64_t key = 0;

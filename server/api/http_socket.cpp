@@ -22,9 +22,12 @@ namespace {
 
 constexpr int backlog = 1024;
 constexpr unsigned vanished_after_ms = 30000;
-// Beside what the peer's window admits. Without it the kernel takes some megabytes for each peer that does not
-// read, which no limit of ours would see.
+// Beside what the peer's window admits. Without it the kernel takes some megabytes for each peer that does
+// not read, which no limit of ours would see.
 constexpr int max_unsent_in_kernel_bytes = 128 << 10;
+// The kernel doubles it. Else a buffer grows to what the system allows each, often 6 MB or more, and a peer
+// whose requests wait can fill it.
+constexpr int receive_buffer_bytes = 256 << 10;
 
 // bind, getsockname and the like take the general address type of C.
 sockaddr* general(sockaddr_storage& storage) {
@@ -104,7 +107,11 @@ Listener open_listener(const std::string& address, int port) {
   for (const addrinfo* one = found; one != nullptr; one = one->ai_next) {
     Descriptor socket(::socket(one->ai_family, SOCK_STREAM | SOCK_NONBLOCK | SOCK_CLOEXEC, 0));
     // Not SO_REUSEPORT: with it a second daemon would take half of the connections without a word.
-    if (socket) switch_on(socket.get(), SOL_SOCKET, SO_REUSEADDR);
+    if (socket) {
+      switch_on(socket.get(), SOL_SOCKET, SO_REUSEADDR);
+      // Connections inherit it.
+      setsockopt(socket.get(), SOL_SOCKET, SO_RCVBUF, &receive_buffer_bytes, sizeof receive_buffer_bytes);
+    }
     if (socket && ::bind(socket.get(), one->ai_addr, one->ai_addrlen) == 0 &&
         ::listen(socket.get(), backlog) == 0) {
       const int bound_port = port_of(socket.get());

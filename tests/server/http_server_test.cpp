@@ -397,7 +397,8 @@ TEST_CASE("what needs no worker is answered while every worker waits") {
   CHECK_THROWS_AS(server.route_at_once("/late", [](const Request&) { return Response{}; }), std::logic_error);
 }
 
-TEST_CASE("a client that ended its side but takes no answer keeps its place until it is cut, and is reset then") {
+TEST_CASE(
+    "a client that ended its side but takes no answer keeps its place until it is cut, and is reset then") {
   HttpLimits limits;
   limits.request_timeout_s = 1;
   Fixture fixture(limits);

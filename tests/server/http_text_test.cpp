@@ -94,7 +94,7 @@ TEST_CASE("a head that two readers could read in two ways is refused (RFC 9112 s
   CHECK(verdict_with("X: a\rb\r\n") == 400);
   CHECK(verdict_with(std::string("X: a\0b\r\n", 8)) == 400);
   CHECK(verdict_with("Host: other\r\n") == 400);
-  CHECK(verdict("GET / HTTP/1.1\r\n\r\n") == 400);  // RFC 9112 section 3.2: Host is required
+  CHECK(verdict("GET / HTTP/1.1\r\n\r\n") == 400);                  // RFC 9112 section 3.2: Host is required
   CHECK(verdict("GET http://localhost/ HTTP/1.1\r\n\r\n") == 400);  // in absolute form as well
   CHECK(verdict("GET / HTTP/1.0\r\n\r\n") == 200);
   CHECK(verdict("GET / HTTP/1.1\nHost: localhost\n\n") == 400);

@@ -4,22 +4,32 @@
 // practice, no source, unless a check names one; the time to cut a client is the daemon's own setting.
 import { readFileSync } from 'node:fs';
 import { Daemon, binary, check, expect, finish, sleep, waitFor } from './support.mjs';
-import { HOST, MB, Raw, alive, get, healthWhile, kernelBuffers_mb, memoryBounded, memoryOf, post, processorSeconds, sanitized, summary } from './hostile_support.mjs';
+import {
+  HOST, MB, Raw, alive, get, healthWhile, heldByKernel_mb, memoryBounded, memoryOf, post, processorSeconds, sanitized, summary,
+} from './hostile_support.mjs';
 
 binary();
 const REQUEST_TIMEOUT_S = 3;
 const daemon = await Daemon.fresh(`[http]\nrequest_timeout_s = ${REQUEST_TIMEOUT_S}\n`);
 const { port } = daemon;
-const LATENCY_MS = 250; // worst of /healthz under attack; two cores shared with the attackers
+const WORST_MS = 1000; // of /healthz under attack, on two cores shared with the attackers and others; a daemon that waits
+// for one of them would take REQUEST_TIMEOUT_S
 const slowdown = sanitized(daemon) ? 10 : 1;
-const open = (count, options) => Array.from({ length: count }, () => new Raw(port, options));
-const close = (clients) => clients.forEach((client) => client.destroy());
+const opened = [];
+const open = (count, options) => {
+  const clients = Array.from({ length: count }, () => new Raw(port, options));
+  opened.push(...clients);
+  return clients;
+};
+const close = () => opened.splice(0).forEach((client) => client.destroy());
+// One check; its clients leave with it, whatever comes of it.
+const probe = (name, body) => check(name, body).finally(close);
 const counters = async () => (await daemon.request('GET', '/metrics')).text;
 const openConnections = async () => Number(/^hearthfront_http_open_connections (\d+)/m.exec(await counters())?.[1] ?? NaN);
 const freePlaces = (limit_s = 5) => waitFor('free places', limit_s * 1000, async () => (await openConnections()) <= 4);
-const fast = (times_ms) => {
+const fast = (times_ms, median_ms = 50) => {
   console.log(`     /healthz meanwhile: ${summary(times_ms)}`);
-  expect(times_ms.length >= 5 && times_ms.at(-1) < LATENCY_MS * slowdown, summary(times_ms));
+  expect(times_ms.length >= 5 && times_ms[times_ms.length >> 1] < median_ms * slowdown && times_ms.at(-1) < WORST_MS * slowdown, summary(times_ms));
 };
 
 // A client that is never late with a byte, and never done.
@@ -35,100 +45,109 @@ for (const [name, first] of [
   ['in the head', `GET /healthz HTTP/1.1\r\n${HOST}X: `],
   ['in the body', `POST /api/v1/readings HTTP/1.1\r\n${HOST}Content-Length: 1000\r\n\r\n`],
 ]) {
-  await check(`64 clients that send a byte a second ${name} hold up nobody and are cut at the deadline with 408 (RFC 9110 15.5.9)`, async () => {
+  await probe(`64 clients that send a byte a second ${name} hold up nobody and are cut at the deadline with 408 (RFC 9110 15.5.9)`, async () => {
     const clients = open(64);
     clients.forEach((client) => client.send(first));
     fast(await healthWhile(port, drip(clients, 'a', REQUEST_TIMEOUT_S + 3)));
     const late = clients.filter((client) => !client.text().startsWith('HTTP/1.1 408') || client.ended_at - client.began > (REQUEST_TIMEOUT_S + 1.5) * 1000);
-    close(clients);
     expect(late.length === 0, `${late.length} of 64 were not cut in time: ${late[0]?.text().slice(0, 60)}`);
   });
 }
 
-await check('a client that connects and says nothing is let go at the deadline', async () => {
-  const client = new Raw(port);
+await probe('a client that connects and says nothing is let go at the deadline', async () => {
+  const [client] = open(1);
   await Promise.race([client.over, sleep((REQUEST_TIMEOUT_S + 2) * 1000)]);
   expect(client.ended && client.bytes_in === 0, 'still open');
-  client.destroy();
 });
 
-await check('a request line of 100 MB without end: 414, memory +8 MB at most (CVE-2025-53628)', () =>
+await probe('a request line of 100 MB without end: 414, memory +8 MB at most (CVE-2025-53628)', () =>
   memoryBounded(daemon, 8, async () => {
-    const client = new Raw(port).send('GET /');
+    const client = open(1)[0].send('GET /');
     await client.pour(Buffer.alloc(65536, 'a'), 100 * MB);
     expect((await client.answers())[0]?.status === 414, client.text().slice(0, 100));
-    client.destroy();
   }));
-await check('a head of 100 MB without end: 431, memory +8 MB at most (CVE-2025-52887)', () =>
+await probe('a head of 100 MB without end: 431, memory +8 MB at most (CVE-2025-52887)', () =>
   memoryBounded(daemon, 8, async () => {
-    const client = new Raw(port).send(`GET / HTTP/1.1\r\n${HOST}`);
+    const client = open(1)[0].send(`GET / HTTP/1.1\r\n${HOST}`);
     await client.pour(Buffer.from('X-A: b\r\n'.repeat(8192)), 100 * MB);
     expect((await client.answers())[0]?.status === 431, client.text().slice(0, 100));
-    client.destroy();
   }));
-await check('a chunked body of 100 MB: 411, memory +8 MB at most (CVE-2025-46728)', () =>
+await probe('a chunked body of 100 MB: 411, memory +8 MB at most (CVE-2025-46728)', () =>
   memoryBounded(daemon, 8, async () => {
-    const client = new Raw(port).send(`POST /api/v1/readings HTTP/1.1\r\n${HOST}Transfer-Encoding: chunked\r\n\r\n`);
+    const client = open(1)[0].send(`POST /api/v1/readings HTTP/1.1\r\n${HOST}Transfer-Encoding: chunked\r\n\r\n`);
     await client.pour(Buffer.from(`10000\r\n${'a'.repeat(65536)}\r\n`), 100 * MB);
     expect((await client.answers())[0]?.status === 411, client.text().slice(0, 100));
-    client.destroy();
   }));
-await check('a body of 50 MB that is sent: 413, memory +8 MB at most (RFC 9110 15.5.14)', () =>
+await probe('a body of 50 MB that is sent: 413, memory +8 MB at most (RFC 9110 15.5.14)', () =>
   memoryBounded(daemon, 8, async () => {
-    const client = new Raw(port).send(`POST /api/v1/readings HTTP/1.1\r\n${HOST}Content-Length: ${50 * MB}\r\n\r\n`);
+    const client = open(1)[0].send(`POST /api/v1/readings HTTP/1.1\r\n${HOST}Content-Length: ${50 * MB}\r\n\r\n`);
     await client.pour(Buffer.alloc(65536, ' '), 50 * MB);
     expect((await client.answers())[0]?.status === 413, client.text().slice(0, 100));
-    client.destroy();
   }));
 
 // 64 MiB of large bodies are held at most; a growing buffer may be twice its content.
-await check('40 bodies of 8 MB, each short of its last byte: some wait, the others get 503, memory +160 MB at most, small requests go on', () =>
+await probe('40 bodies of 8 MB, each short of its last byte: some wait, the others get 503, memory +160 MB at most, small requests go on', () =>
   memoryBounded(daemon, 160, async () => {
     const clients = open(40);
     const piece = Buffer.alloc(1 * MB, ' ');
     clients.forEach((client) => client.send(`POST /api/v1/readings HTTP/1.1\r\n${HOST}Content-Length: ${8 * MB}\r\n\r\n`));
     const pouring = Promise.all(clients.map((client) => client.pour(piece, 7 * MB)));
-    fast(await healthWhile(port, Promise.race([pouring, sleep(4000)]).then(() => sleep(500))));
+    fast(await healthWhile(port, Promise.race([pouring, sleep(4000)]).then(() => sleep(500))), 500);  // 280 MB are on the move
     const busy = clients.filter((client) => client.text().startsWith('HTTP/1.1 503'));
-    close(clients);
     console.log(`     ${busy.length} of 40 refused`);
     expect(busy.length >= 24 && busy.every((client) => /\r\nRetry-After: /.test(client.text())), `${busy.length} of 40 refused`);
   }));
 
-await check('200 clients that ask for 10 MB each and read none of it: memory +20 MB, kernel buffers +80 MB at most; cut, kernel buffers free again; others served', async () => {
-  const kernel_before = kernelBuffers_mb();
-  let kernel_peak = 0;
+// Per client 128 KiB unsent beside its own window; without that bound it was 2.8 MB.
+await probe('200 clients that ask for 10 MB each and read none of it: memory +20 MB, +50 MB in the kernel at most; cut, and the kernel is free again; others served', async () => {
+  let held_mb = 0;
   const clients = [];
   await memoryBounded(daemon, 20, async () => {
     clients.push(...open(200, { reads: false }));
     clients.forEach((client) => client.send(get('/api/v1/openapi.yaml').repeat(300)));
     const watched = (async () => {
-      for (let i = 0; i < 30; i++) {
+      for (let i = 0; i < 25; i++) {
         await sleep(100);
-        kernel_peak = Math.max(kernel_peak, kernelBuffers_mb() - kernel_before);
+        held_mb = Math.max(held_mb, heldByKernel_mb(port));
       }
     })();
     fast(await healthWhile(port, watched));
   });
   // Late with the next request first (its answer cannot be sent either), then with taking the answer.
   await freePlaces(2 * REQUEST_TIMEOUT_S + 4);
-  const left = kernelBuffers_mb() - kernel_before;
-  console.log(`     kernel buffers +${kernel_peak.toFixed(0)} MB at most, +${left.toFixed(0)} MB after the cut`);
-  close(clients);
-  expect(kernel_peak <= 80 && left <= 40, `kernel buffers +${kernel_peak.toFixed(0)} MB, later +${left.toFixed(0)} MB`);
+  const left_mb = heldByKernel_mb(port);
+  console.log(`     ${held_mb.toFixed(1)} MB in the kernel at most, ${left_mb.toFixed(1)} MB after the cut`);
+  expect(held_mb > 1 && held_mb <= 50 && left_mb <= 1, `${held_mb.toFixed(1)} MB, later ${left_mb.toFixed(1)} MB`);
 });
-await check('100 clients that ask for 10 MB, end their side and read nothing are cut too, and their memory is free', async () => {
-  const kernel_before = kernelBuffers_mb();
+await probe('100 clients that ask for 10 MB, end their side and read nothing are cut too, and the kernel is free again', async () => {
   const clients = open(100, { reads: false });
   clients.forEach((client) => client.send(get('/api/v1/openapi.yaml').repeat(300)).socket.end());
-  await sleep(1000);
+  await sleep(500);
+  expect(heldByKernel_mb(port) > 1, 'nothing held');
   await freePlaces(2 * REQUEST_TIMEOUT_S + 4);
-  const left = kernelBuffers_mb() - kernel_before;
-  close(clients);
-  expect(left <= 25, `kernel buffers +${left.toFixed(0)} MB`);
+  const left_mb = heldByKernel_mb(port);
+  expect(left_mb <= 1, `${left_mb.toFixed(1)} MB left`);
+});
+// A window opened wide by a first large body: 512 KiB each at most, beside what is unsent; without that bound it was 3.2 MB and more.
+await probe('30 clients that send 7 MB, then requests without end and read no answer: +24 MB in the kernel at most', async () => {
+  const clients = open(30);
+  const large = post('/api/v1/readings', '{"a":' + ' '.repeat(7 * MB));
+  for (const client of clients) expect((await client.send(large).answers(1))[0]?.status === 422, client.text().slice(0, 100));
+  clients.forEach((client) => client.socket.pause());
+  clients.forEach((client) => client.send(get('/api/v1/openapi.yaml').repeat(300)));
+  const pouring = Promise.all(clients.map((client) => client.pour(Buffer.from(get('/api/v1/status').repeat(1000)), 16 * MB)));
+  let held_mb = 0;
+  for (let i = 0; i < 20; i++) {
+    await sleep(100);
+    held_mb = Math.max(held_mb, heldByKernel_mb(port));
+  }
+  close();
+  await pouring;
+  console.log(`     ${held_mb.toFixed(1)} MB in the kernel at most`);
+  expect(held_mb > 1 && held_mb <= 24, `${held_mb.toFixed(1)} MB`);
 });
 
-await check('200 idle connections cost less than 5 % of a core, hold up nobody, and stay usable', async () => {
+await probe('200 idle connections cost less than 5 % of a core, hold up nobody, and stay usable', async () => {
   const clients = open(200);
   clients.forEach((client) => client.send(get('/healthz')));
   for (const client of clients) expect((await client.answers(1)).length === 1, `no answer: ${client.error}`);
@@ -139,11 +158,10 @@ await check('200 idle connections cost less than 5 % of a core, hold up nobody, 
   fast(await healthWhile(port, sleep(500)));
   clients.forEach((client) => client.send(get('/healthz')));
   for (const client of clients) expect((await client.answers(2)).length === 2, `no second answer: ${client.error}`);
-  close(clients);
   expect(share < 5 * slowdown, `${share.toFixed(1)} % of a core`);
 });
 
-await check('400 connects at once: all are answered or closed at once, never left waiting; 200 up to the limit of one address (256), 503 above', async () => {
+await probe('400 connects at once: all are answered or closed at once, never left waiting; 200 up to the limit of one address (256), 503 above', async () => {
   await freePlaces();
   const began = performance.now();
   const clients = open(400);
@@ -156,29 +174,27 @@ await check('400 connects at once: all are answered or closed at once, never lef
   }
   const took_ms = performance.now() - began;
   console.log(`     ${JSON.stringify(statuses)} within ${took_ms.toFixed(0)} ms`);
-  close(clients);
   expect(statuses[200] >= 250 && !statuses['left waiting'] && took_ms < 3000 * slowdown, JSON.stringify(statuses));
+  close();
   await freePlaces();
 });
-await check('800 connects at once from four addresses are all answered 200 (backlog; measured with 1024 places)', async () => {
+await probe('800 connects at once from four addresses are all answered 200 (backlog; measured with 1024 places)', async () => {
   const began = performance.now();
   const clients = [1, 2, 3, 4].flatMap((host) => open(200, { from: `127.0.0.${host}` }));
   clients.forEach((client) => client.send(get('/healthz')));
   let good = 0;
   for (const client of clients) good += (await client.answers(1, 5000 * slowdown))[0]?.status === 200 ? 1 : 0;
   console.log(`     ${good} within ${(performance.now() - began).toFixed(0)} ms`);
-  close(clients);
   expect(good === 800, `${good} of 800`);
 });
 
-await check('300 requests at once on each of 32 connections, without reading: answered in order or cut, memory +20 MB at most', () =>
+await probe('300 requests at once on each of 32 connections, without reading: answered in order or cut, memory +20 MB at most', () =>
   memoryBounded(daemon, 20, async () => {
     const clients = open(32, { reads: false });
     clients.forEach((client) => client.send(get('/api/v1/openapi.yaml').repeat(300)));
     fast(await healthWhile(port, sleep(2500)));
-    close(clients);
   }));
-await check('connections that are torn down in the middle of everything leave no place taken', async () => {
+await probe('connections that are torn down in the middle of everything leave no place taken', async () => {
   for (let round = 0; round < 5; round++) {
     const clients = open(100);
     clients.forEach((client, i) => client.send([get('/api/v1/openapi.yaml').repeat(20), 'GET', post('/api/v1/readings', '{}').slice(0, -1), get('/api/v1/floor')][i % 4]));
@@ -189,7 +205,7 @@ await check('connections that are torn down in the middle of everything leave no
   await alive(port);
 });
 
-await check('after all that: memory back near the start, no failure in the log, end with code 0', async () => {
+await probe('after all that: memory back near the start, no failure in the log, end with code 0', async () => {
   const { before } = await memoryOf(daemon, () => alive(port));
   expect(sanitized(daemon) || before < 200, `${before} MB`);
   const log = readFileSync(`${daemon.folder}/daemon.log`, 'utf8');

@@ -196,5 +196,15 @@ export function processorSeconds(daemon) {
   return (Number(words[11]) + Number(words[12])) / 100;
 }
 
-// Memory of all TCP buffers in MB (pages of 4 KiB): what slow readers cost beside the process itself.
-export const kernelBuffers_mb = () => (Number(/TCP:.* mem (\d+)/.exec(readFileSync('/proc/net/sockstat', 'utf8'))[1]) * 4096) / MB;
+// Bytes in MB that the kernel holds for the daemon's connections, both ways, cut ones included (proc(5), /proc/net/tcp):
+// what slow readers cost beside the process itself.
+export function heldByKernel_mb(port) {
+  const local = `:${port.toString(16).toUpperCase().padStart(4, '0')}`;
+  let bytes = 0;
+  for (const line of readFileSync('/proc/net/tcp', 'utf8').split('\n').slice(1)) {
+    const words = line.trim().split(/\s+/);
+    if (!words[1]?.endsWith(local) || words[3] === '0A') continue; // 0A: listening
+    bytes += words[4].split(':').reduce((sum, queue) => sum + parseInt(queue, 16), 0);
+  }
+  return bytes / MB;
+}
