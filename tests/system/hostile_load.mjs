@@ -12,8 +12,8 @@ binary();
 const REQUEST_TIMEOUT_S = 3;
 const daemon = await Daemon.fresh(`[http]\nrequest_timeout_s = ${REQUEST_TIMEOUT_S}\n`);
 const { port } = daemon;
-const WORST_MS = 1000; // of /healthz under attack, on two cores shared with the attackers and others; a daemon that waits
-// for one of them would take REQUEST_TIMEOUT_S
+const WORST_MS = 2500; // of /healthz under attack, on cores shared with the attackers and others; a daemon that waits for
+// one of them would take the 3 s of REQUEST_TIMEOUT_S
 const slowdown = sanitized(daemon) ? 10 : 1;
 const opened = [];
 const open = (count, options) => {
@@ -29,7 +29,7 @@ const openConnections = async () => Number(/^hearthfront_http_open_connections (
 const freePlaces = (limit_s = 5) => waitFor('free places', limit_s * 1000, async () => (await openConnections()) <= 4);
 const fast = (times_ms, median_ms = 50) => {
   console.log(`     /healthz meanwhile: ${summary(times_ms)}`);
-  expect(times_ms.length >= 5 && times_ms[times_ms.length >> 1] < median_ms * slowdown && times_ms.at(-1) < WORST_MS * slowdown, summary(times_ms));
+  expect(times_ms.length >= 3 && times_ms[times_ms.length >> 1] < median_ms * slowdown && times_ms.at(-1) < WORST_MS * slowdown, summary(times_ms));
 };
 
 // A client that is never late with a byte, and never done.
@@ -85,24 +85,25 @@ await probe('a body of 50 MB that is sent: 413, memory +8 MB at most (RFC 9110 1
     expect((await client.answers())[0]?.status === 413, client.text().slice(0, 100));
   }));
 
-// 64 MiB of large bodies are held at most; a growing buffer may be twice its content.
-await probe('40 bodies of 8 MB, each short of its last byte: some wait, the others get 503, memory +160 MB at most, small requests go on', () =>
-  memoryBounded(daemon, 160, async () => {
+// 64 MiB of large bodies are held at most; a growing buffer may be twice its content, and is copied as it grows.
+await probe('40 bodies of 8 MB, each short of its last byte: 9 wait, the others get 503, memory +200 MB at most, small requests go on', () =>
+  memoryBounded(daemon, 200, async () => {
     const clients = open(40);
     const piece = Buffer.alloc(1 * MB, ' ');
     clients.forEach((client) => client.send(`POST /api/v1/readings HTTP/1.1\r\n${HOST}Content-Length: ${8 * MB}\r\n\r\n`));
-    const pouring = Promise.all(clients.map((client) => client.pour(piece, 7 * MB)));
-    fast(await healthWhile(port, Promise.race([pouring, sleep(4000)]).then(() => sleep(500))), 500);  // 280 MB are on the move
-    const busy = clients.filter((client) => client.text().startsWith('HTTP/1.1 503'));
-    console.log(`     ${busy.length} of 40 refused`);
-    expect(busy.length >= 24 && busy.every((client) => /\r\nRetry-After: /.test(client.text())), `${busy.length} of 40 refused`);
+    clients.forEach((client) => client.pour(piece, 7 * MB));
+    const busy = () => clients.filter((client) => client.text().startsWith('HTTP/1.1 503'));
+    // 9 of 7 MB fit; 280 MB are on the move, which costs the others some time on a busy machine.
+    fast(await healthWhile(port, waitFor('31 refusals', 20000, () => busy().length >= 31)), 1000);
+    expect(busy().every((client) => /\r\nRetry-After: /.test(client.text())), 'Retry-After');
   }));
 
-// Per client 128 KiB unsent beside its own window; without that bound it was 2.8 MB.
-await probe('200 clients that ask for 10 MB each and read none of it: memory +20 MB, +50 MB in the kernel at most; cut, and the kernel is free again; others served', async () => {
+// Each holds 24 kB of requests and one answer of 35 kB in the daemon, and 128 KiB beside its own window in the kernel;
+// without that bound it was 2.8 MB.
+await probe('200 clients that ask for 10 MB each and read none of it: memory +40 MB, +50 MB in the kernel at most; cut, and the kernel is free again; others served', async () => {
   let held_mb = 0;
   const clients = [];
-  await memoryBounded(daemon, 20, async () => {
+  await memoryBounded(daemon, 40, async () => {
     clients.push(...open(200, { reads: false }));
     clients.forEach((client) => client.send(get('/api/v1/openapi.yaml').repeat(300)));
     const watched = (async () => {
@@ -132,7 +133,7 @@ await probe('100 clients that ask for 10 MB, end their side and read nothing are
 await probe('30 clients that send 7 MB, then requests without end and read no answer: +24 MB in the kernel at most', async () => {
   const clients = open(30);
   const large = post('/api/v1/readings', '{"a":' + ' '.repeat(7 * MB));
-  for (const client of clients) expect((await client.send(large).answers(1))[0]?.status === 422, client.text().slice(0, 100));
+  for (const client of clients) expect((await client.send(large).answers(1, 20000))[0]?.status === 422, client.text().slice(0, 100));
   clients.forEach((client) => client.socket.pause());
   clients.forEach((client) => client.send(get('/api/v1/openapi.yaml').repeat(300)));
   const pouring = Promise.all(clients.map((client) => client.pour(Buffer.from(get('/api/v1/status').repeat(1000)), 16 * MB)));
@@ -155,7 +156,7 @@ await probe('200 idle connections cost less than 5 % of a core, hold up nobody, 
   await sleep(3000);
   const share = (100000 * (processorSeconds(daemon) - began[1])) / (performance.now() - began[0]);
   console.log(`     ${share.toFixed(1)} % of a core`);
-  fast(await healthWhile(port, sleep(500)));
+  fast(await healthWhile(port, sleep(1500)));
   clients.forEach((client) => client.send(get('/healthz')));
   for (const client of clients) expect((await client.answers(2)).length === 2, `no second answer: ${client.error}`);
   expect(share < 5 * slowdown, `${share.toFixed(1)} % of a core`);

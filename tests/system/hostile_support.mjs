@@ -68,7 +68,7 @@ export class Raw {
     return this;
   }
 
-  // Sends `total` bytes made of `chunk`, no faster than the daemon takes them, until it takes no more for two seconds.
+  // Sends `total` bytes made of `chunk`, no faster than the daemon takes them, until it takes no more for three seconds.
   async pour(chunk, total) {
     let sent = 0;
     while (sent < total && !this.ended && this.socket.writable) {
@@ -76,7 +76,7 @@ export class Raw {
       sent += chunk.length;
       if (more) continue;
       const drained = new Promise((tell) => this.socket.once('drain', tell));
-      if ((await Promise.race([drained, this.over, sleep(2000).then(() => 'stuck')])) === 'stuck') break;
+      if ((await Promise.race([drained, this.over, sleep(3000).then(() => 'stuck')])) === 'stuck') break;
     }
     return sent;
   }
