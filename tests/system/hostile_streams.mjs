@@ -25,7 +25,7 @@ const STREAM = get('/api/v1/events');
 const level = async (name) => Number(new RegExp(`^hearthfront_http_${name} (\\d+)`, 'm').exec((await daemon.request('GET', '/metrics')).text)?.[1] ?? NaN);
 const streams = (count, options) => Array.from({ length: count }, () => new Raw(port, options).send(STREAM));
 const close = (clients) => clients.forEach((client) => client.destroy());
-const streamsBecome = (count, limit_ms = 8000) => waitFor(`${count} streams`, limit_ms, async () => (await level('open_streams')) === count);
+const streamsBecome = (count, limit_ms = 8000) => waitFor(`${count} streams`, limit_ms * Math.min(slowdown, 4), async () => (await level('open_streams')) === count);
 
 // Open loads, so that each round of the engine has something to tell.
 const item = { name: 'A', part: 'test pin', quantity: 1, steel: '20MnCr5', section: { shape: 'plate', thickness_mm: 20 },
