@@ -177,8 +177,12 @@ double convert(double value, FileUnit from, Unit to) {
 
 std::optional<FileUnit> unit_in_words(std::string_view header, Role role) {
   const std::vector<std::string> tokens = tokens_of(plain(header));
-  // From the end: the unit follows the name, and "C" may also be the carbon in "C-Pot [%]".
+  // From the end, since the unit follows the name. A single letter is a unit only as the last word: C may also
+  // be the carbon in "C-Pot" and "% C", K a kind of thermocouple.
   for (std::size_t i = tokens.size(); i-- > 0;) {
+    const bool letter = tokens[i].size() == 1 && tokens[i] != "%";
+    const std::string before = i > 0 ? tokens[i - 1] : "";
+    if (letter && (i + 1 < tokens.size() || one_of(before, {"%", "pct", "type", "typ"}))) continue;
     if (const auto unit = unit_of_token(tokens[i], role)) return unit;
   }
   return {};

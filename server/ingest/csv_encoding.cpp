@@ -15,6 +15,12 @@ namespace {
 
 constexpr std::string_view utf8_mark = "\xef\xbb\xbf", little_mark = "\xff\xfe", big_mark = "\xfe\xff";
 
+// A fault at the end of the text read so far.
+FileFault fault_after(std::string_view before, const std::string& what) {
+  const int line = count_lines(before);
+  return {line, "Line " + std::to_string(line) + ": " + what};
+}
+
 std::string hex(char byte) {
   char text[8];
   std::snprintf(text, sizeof text, "0x%02X", static_cast<unsigned>(static_cast<unsigned char>(byte)));
@@ -65,11 +71,11 @@ FileText::FileText(std::string_view bytes, Encoding wanted) : text(bytes), encod
   const bool little = bytes.starts_with(little_mark), big = bytes.starts_with(big_mark);
   const auto says = [&] { return std::string("the mapping says encoding = \"") + std::string(server::text(wanted)) + "\"."; };
   if ((little || big) && !utf16 && wanted != Encoding::automatic) {
-    fault = {1, "The file begins with the byte order mark of UTF-16, " + says()};
+    fault = {1, "Line 1: the file begins with the byte order mark of UTF-16, " + says()};
   } else if ((little && wanted == Encoding::utf16_be) || (big && wanted == Encoding::utf16_le)) {
-    fault = {1, std::string("The file begins with the byte order mark of UTF-16 ") + (little ? "LE, " : "BE, ") + says()};
+    fault = {1, std::string("Line 1: the file begins with the byte order mark of UTF-16 ") + (little ? "LE, " : "BE, ") + says()};
   } else if (wanted == Encoding::utf16 && !little && !big) {
-    fault = {1, "The file does not begin with a byte order mark, " + says() +
+    fault = {1, "Line 1: the file does not begin with a byte order mark, " + says() +
                     " Without one say utf-16-le or utf-16-be, or the encoding is another one."};
   } else if (little || wanted == Encoding::utf16_le) {
     encoding = Encoding::utf16_le;
@@ -87,8 +93,8 @@ FileText::FileText(std::string_view bytes, Encoding wanted) : text(bytes), encod
       return byte >= 0x80 && byte < 0xa0;
     });
     if (odd != bytes.end())
-      fault = {count_lines(bytes.substr(0, static_cast<std::size_t>(odd - bytes.begin()))),
-               "The byte " + hex(*odd) + " is a control character in ISO-8859-1: is the file windows-1252?"};
+      fault = fault_after(bytes.substr(0, static_cast<std::size_t>(odd - bytes.begin())),
+                          "the byte " + hex(*odd) + " is a control character in ISO-8859-1: is the file windows-1252?");
   } else {
     if (bytes.starts_with(utf8_mark)) {
       text.remove_prefix(utf8_mark.size());
@@ -101,13 +107,15 @@ FileText::FileText(std::string_view bytes, Encoding wanted) : text(bytes), encod
       rest.remove_prefix(length);
     }
     if (wanted == Encoding::utf8 && !rest.empty())
-      fault = {count_lines(text.substr(0, text.size() - rest.size())),
-               "The byte " + hex(rest.front()) + " is not UTF-8, " + says() + " Is the file windows-1252?"};
+      fault = fault_after(text.substr(0, text.size() - rest.size()),
+                          "the byte " + hex(rest.front()) + " is not UTF-8, " + says() +
+                              " Is the file windows-1252?");
   }
   if (fault) return;
   if (const std::size_t at = text.find('\0'); at != std::string_view::npos)
-    fault = {count_lines(text.substr(0, at)),
-             "A zero byte: the file is UTF-16 without byte order mark (say utf-16-le or utf-16-be), or not a text at all."};
+    fault = fault_after(text.substr(0, at),
+                        "a zero byte: the file is UTF-16 without byte order mark (say utf-16-le or utf-16-be), "
+                        "or not a text at all.");
   else if (text.find_first_not_of(" \t\r\n") == std::string_view::npos)
     fault = {0, "The file is empty."};
 }
@@ -116,8 +124,8 @@ void FileText::convert(std::string_view bytes, const char* from) {
   converted_.reserve(bytes.size() + bytes.size() / 8);
   std::string_view rest = bytes;
   if (!Converter(from).run(rest, converted_))
-    fault = {count_lines(converted_), "The byte " + hex(rest.front()) + " has no meaning in " + from +
-                                          " here: the file is cut, damaged, or in another encoding."};
+    fault = fault_after(converted_, "the byte " + hex(rest.front()) + " has no meaning in " + from +
+                                        " here: the file is cut, damaged, or in another encoding.");
   text = converted_;
 }
 

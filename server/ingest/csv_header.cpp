@@ -70,6 +70,10 @@ void CsvReader::locate_columns() {
   std::string faults;
   const std::size_t wide = header_.size();
   const auto locate = [&](const std::string& column) -> std::size_t {
+    if (column.empty()) {
+      faults += "The mapping names no column that holds the time. ";
+      return 0;
+    }
     if (column.size() > 1 && column.front() == '#') {
       std::size_t number = 0;
       std::from_chars(column.data() + 1, column.data() + column.size(), number);

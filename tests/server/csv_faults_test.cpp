@@ -21,10 +21,10 @@ TEST_CASE("a file that does not fit its mapping is refused as a whole") {
       {"", "422 bad-csv: The file is empty."},
       {"\r\n \r\n", "422 bad-csv: The file is empty."},
       {std::string("\xff\xfeT\0i", 5),
-       "422 bad-csv: The byte 0x69 has no meaning in UTF-16LE here: the file is cut, damaged, or in another "
+       "422 bad-csv: Line 1: the byte 0x69 has no meaning in UTF-16LE here: the file is cut, damaged, or in another "
        "encoding."},
       {std::string("Time,\0TC1", 9),
-       "422 bad-csv: A zero byte: the file is UTF-16 without byte order mark (say utf-16-le or utf-16-be), or "
+       "422 bad-csv: Line 1: a zero byte: the file is UTF-16 without byte order mark (say utf-16-le or utf-16-be), or "
        "not a text at all."},
       {"Time,TC2,CP\n",
        "422 bad-csv: There is no column \"TC1\" (did you mean \"TC2\"?). The header (line 1) reads: "
