@@ -192,7 +192,7 @@ class PatternReader {
 };
 
 // Digits and, after a point or comma, a fraction: as a whole number of units of 10^-`decimals`, further
-// digits cut. Empty where it is none, or has more than 18 digits.
+// digits cut. Empty where it is none, or more than 64 bits hold.
 std::optional<std::int64_t> scaled_number(std::string_view text, int decimals) {
   const std::size_t sign = std::min(text.find_first_of(".,"), text.size());
   std::string digits(text.substr(0, sign));
@@ -203,7 +203,8 @@ std::optional<std::int64_t> scaled_number(std::string_view text, int decimals) {
   digits += fraction;
   std::int64_t value = 0;
   const char* last = digits.data() + digits.size();
-  if (digits.size() > 18 || std::from_chars(digits.data(), last, value).ptr != last) return {};
+  const auto [end, fault] = std::from_chars(digits.data(), last, value);
+  if (fault != std::errc{} || end != last) return {};
   return value;
 }
 

@@ -107,7 +107,7 @@ class CsvReader {
   const FileText text_;
   RecordReader records_;
   RowTimes times_;
-  int row_ = 0, repeated_ = 0;
+  int row_ = 0, repeated_ = 0, named_line_ = 0;
   std::size_t time_index_ = 0, needed_ = 0;
   std::optional<std::size_t> date_index_;
   std::vector<std::string> header_, units_;

@@ -13,7 +13,7 @@
 namespace hearthfront::server {
 namespace {
 
-constexpr std::size_t sample_lines = 300;
+constexpr std::size_t sample_lines = 300;  // looked at
 constexpr double most_rows_agree = 0.8;
 
 Encoding guess_encoding(std::string_view bytes, std::vector<Unsure>& unsure) {
@@ -47,14 +47,25 @@ bool is_filled(std::string_view line) {
   return line.find_first_not_of(" \t") != std::string_view::npos;
 }
 
-// The lines that surely hold rows: the later half.
-std::vector<std::string_view> later(const std::vector<std::string_view>& lines) {
-  std::vector<std::string_view> filled;
-  for (const std::string_view line : lines) {
-    if (is_filled(line)) filled.push_back(line);
+// The first records that are not empty, split; a record that cannot be split counts without fields.
+std::vector<Cells> records_of(std::string_view text, const CsvMapping& mapping) {
+  RecordReader reader(text, mapping);
+  std::vector<Cells> records;
+  std::string_view record;
+  Cells fields;
+  Split split = Split::whole;
+  while (records.size() < sample_lines && reader.take_record(record, fields, split, 0)) {
+    if (!is_filled(record)) continue;
+    if (split != Split::whole) fields.clear();
+    records.push_back(fields);
   }
-  filled.erase(filled.begin(), filled.begin() + static_cast<std::ptrdiff_t>(filled.size() / 2));
-  return filled;
+  return records;
+}
+
+// The later half surely holds rows.
+std::vector<Cells> later(std::vector<Cells> records) {
+  records.erase(records.begin(), records.begin() + static_cast<std::ptrdiff_t>(records.size() / 2));
+  return records;
 }
 
 struct Shape {
@@ -63,14 +74,13 @@ struct Shape {
   double share = 0;       // of the rows that have it
 };
 
-Shape shape_by(const std::string& word, const std::vector<std::string_view>& lines) {
-  CsvMapping by;
+Shape shape_by(const std::string& word, std::string_view text, CsvMapping by) {
   read_separator(word, by);
+  const std::vector<Cells> records = later(records_of(text, by));
   std::map<std::size_t, std::size_t> widths;
   std::size_t cells = 0, torn = 0;
-  Cells fields;
-  for (const std::string_view line : lines) {
-    if (split_record(line, by, fields) != Split::whole) continue;
+  for (const Cells& fields : records) {
+    if (fields.empty()) continue;
     ++widths[fields.size()];
     cells += fields.size();
     // Columns that another separator parts show as wide gaps within a cell.
@@ -83,15 +93,15 @@ Shape shape_by(const std::string& word, const std::vector<std::string_view>& lin
   const auto most = std::max_element(widths.begin(), widths.end(),
                                      [](const auto& a, const auto& b) { return a.second < b.second; });
   shape.width = most->first;
-  shape.share = static_cast<double>(most->second) / static_cast<double>(lines.size());
+  shape.share = static_cast<double>(most->second) / static_cast<double>(records.size());
   return shape;
 }
 
 // The first in order of how surely it separates: a comma may as well be a decimal sign, a blank part of a time.
-Shape guess_separator(const std::vector<std::string_view>& lines, std::vector<Unsure>& unsure) {
+Shape guess_separator(std::string_view text, const CsvMapping& mapping, std::vector<Unsure>& unsure) {
   Shape best;
   for (const char* word : {";", "\t", "|", ",", "wide_spaces", "spaces"}) {
-    const Shape shape = shape_by(word, lines);
+    const Shape shape = shape_by(word, text, mapping);
     if (shape.width < 2) continue;
     if (shape.share >= most_rows_agree) return shape;
     if (shape.share > best.share) best = shape;
@@ -151,6 +161,12 @@ void guess_zone(const Furnace& furnace, bool has_zone, CsvGuess& guess) {
                                        "shows, such as Europe/Berlin."});
 }
 
+// A record above the rows.
+struct Above {
+  int lines_above = 0;  // comments not counted
+  Cells fields;         // none: an empty line
+};
+
 class Guesser {
  public:
   Guesser(const Furnace& furnace, std::int64_t now_us) : furnace_(furnace), now_us_(now_us) {}
@@ -159,30 +175,29 @@ class Guesser {
     guess_.mapping.encoding = guess_encoding(bytes, guess_.unsure);
     const FileText text(bytes, guess_.mapping.encoding);
     if (text.fault) throw Problem{422, "bad-csv", "The file cannot be read", text.fault->text, {}};
-    std::vector<std::string_view> lines = lines_of(text.text, guess_.mapping);
-    const Shape shape = guess_separator(later(lines), guess_.unsure);
+    const Shape shape = guess_separator(text.text, guess_.mapping, guess_.unsure);
     if (shape.width == 0) return std::move(guess_);
     read_separator(shape.word, guess_.mapping);
-    guess_.mapping.comment = guess_comment(lines, guess_.mapping, shape.width);
-    lines = lines_of(text.text, guess_.mapping);
-    guess_table(lines, shape.width);
+    guess_.mapping.comment = guess_comment(lines_of(text.text, guess_.mapping), guess_.mapping, shape.width);
+    guess_table(text.text, shape.width);
     return std::move(guess_);
   }
 
  private:
-  void guess_table(const std::vector<std::string_view>& lines, std::size_t width) {
-    std::vector<Cells> rows;
-    Cells fields;
-    for (const std::string_view line : later(lines)) {
-      if (split_record(line, guess_.mapping, fields) == Split::whole && fields.size() == width)
-        rows.push_back(fields);
+  void guess_table(std::string_view text, std::size_t width) {
+    std::vector<Cells> rows = later(records_of(text, guess_.mapping));
+    std::erase_if(rows, [width](const Cells& fields) { return fields.size() != width; });
+    std::optional<GuessedTimes> times = guess_times(rows, now_us_);
+    // In a short file lines of the header may be among them.
+    while (!times && rows.size() > 1) {
+      rows = later(std::move(rows));
+      times = guess_times(rows, now_us_);
     }
-    const std::optional<GuessedTimes> times = guess_times(rows, now_us_);
     if (!times) {
       guess_.mapping.time_column.clear();
       guess_.unsure.push_back({"time_column", "No column could be read as a time. Name the column and the format."});
     }
-    guess_header(lines, width, times);
+    guess_header(text, width, times);
     std::vector<std::size_t> time_columns;
     if (times) {
       guess_.mapping.time_column = column_word(names_, times->time_index);
@@ -199,33 +214,34 @@ class Guesser {
     guess_columns(rows, names_, units_, time_columns, furnace_, guess_);
   }
 
-  // The rows begin where a time can be read; the filled line above names the columns.
-  void guess_header(const std::vector<std::string_view>& lines, std::size_t width,
-                    const std::optional<GuessedTimes>& times) {
+  // The rows begin where a time can be read; the filled record above names the columns.
+  void guess_header(std::string_view text, std::size_t width, const std::optional<GuessedTimes>& times) {
+    RecordReader reader(text, guess_.mapping);
+    std::vector<Above> above;
+    std::string_view record;
     Cells fields;
-    std::size_t first = 0;
-    for (; times && first < lines.size(); ++first) {
-      if (split_record(lines[first], guess_.mapping, fields) == Split::whole && parses(fields, *times)) break;
+    Split split = Split::whole;
+    int lines = 0;
+    while (above.size() < sample_lines && reader.take_record(record, fields, split, 0)) {
+      if (times ? split == Split::whole && parses(fields, *times) : !above.empty()) break;
+      above.push_back({lines, is_filled(record) ? fields : Cells{}});
+      lines += count_lines(record);
     }
-    if (!times) first = lines.size() > 1 ? 1 : 0;
-    const auto filled_above = [&lines](std::size_t below) {
-      while (below > 0 && !is_filled(lines[below - 1])) --below;
-      return below;  // one more than the line's index; 0: none
-    };
-    std::size_t named = filled_above(first);
-    if (named == 0) {
-      guess_.mapping.header_lines = static_cast<int>(first);
+    const int all = lines;
+    while (!above.empty() && above.back().fields.empty()) above.pop_back();
+    if (above.empty()) {
+      guess_.mapping.header_lines = all;
       return;
     }
-    split_record(lines[named - 1], guess_.mapping, names_);
-    const std::size_t above = filled_above(named - 1);
-    if (is_units_line(names_) && above == named - 1 && above > 0) {
-      units_ = names_;
+    Above named = std::move(above.back());
+    above.pop_back();
+    if (is_units_line(named.fields) && !above.empty() && !above.back().fields.empty()) {
+      units_ = std::move(named.fields);
       guess_.mapping.units_line = true;
-      named = above;
-      split_record(lines[named - 1], guess_.mapping, names_);
+      named = std::move(above.back());
     }
-    guess_.mapping.header_lines = static_cast<int>(named);
+    guess_.mapping.header_lines = named.lines_above + 1;
+    names_ = std::move(named.fields);
     for (std::string& name : names_) name = plain_name(clean_text(name));
     for (std::string& unit : units_) unit = plain_name(clean_text(unit));
     while (names_.size() > width && names_.back().empty()) names_.pop_back();

@@ -49,7 +49,7 @@ void CsvReader::read_header() {
     if (no_blank_line(line)) header_lines_.push_back(line);
     for (std::string& name : header_) name = plain_name(clean_text(name));
   }
-  const int named_line = records_.line();
+  named_line_ = records_.line();
   if (mapping_.units_line) {
     if (!records_.take_record(line, units_, split, 0)) return too_short();
     if (no_blank_line(line)) header_lines_.push_back(line);
@@ -57,9 +57,9 @@ void CsvReader::read_header() {
   }
   locate_columns();
   if (fault_) {
-    fault_->line = named_line;
+    fault_->line = named_line_;
     if (mapping_.header_lines > 0)
-      fault_->text += "The header (line " + std::to_string(named_line) + ") reads: " + list_header(header_) + "." +
+      fault_->text += "The header (line " + std::to_string(named_line_) + ") reads: " + list_header(header_) + "." +
                       separator_hint(header_line, mapping_.separator);
     return;
   }
@@ -114,9 +114,10 @@ void CsvReader::find_units() {
     auto unit = unit_in_words(below, source.channel->role);
     if (!unit) unit = unit_in_words(above, source.channel->role);
     if (!unit) {
-      fault_ = FileFault{records_.line(), "Column " + quoted_text(source.column->column) +
+      fault_ = FileFault{named_line_, "Column " + quoted_text(source.column->column) +
                                               ": unit = \"from header\", but neither " + quoted_text(above) +
-                                              " nor a units line names a unit of a " +
+                                              " (line " + std::to_string(named_line_) +
+                                              ") nor a units line names a unit of a " +
                                               std::string(server::text(source.channel->role)) + "."};
       return;
     }
