@@ -109,7 +109,8 @@ Json preview_document(const CsvPreview& preview) {
                         {"no_value", each.no_value},
                         {"lowest", number_or_null(each.lowest)},
                         {"highest", number_or_null(each.highest)}});
-  for (const auto& each : preview.problems) problems.push_back({{"line", each.line}, {"reason", each.reason}});
+  for (const auto& each : preview.problems)
+    problems.push_back({{"line", each.line}, {"reason", each.reason}});
   for (const auto& each : preview.warnings) warnings.push_back({{"kind", each.kind}, {"text", each.text}});
   return {{"fits", !preview.fault},
           {"problem", std::move(problem)},

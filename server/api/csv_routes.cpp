@@ -39,13 +39,13 @@ std::vector<KnownMapping> known_mappings(storage::Reader& reader, const Furnace&
     known.push_back(read_saved(std::move(row), furnace, name));
   }
   for (const CsvMapping& mapping : furnace.csv_mappings) {
-    const bool replaced = std::any_of(known.begin(), known.end(),
-                                      [&](const KnownMapping& each) { return each.mapping.name == mapping.name; });
+    const bool replaced = std::any_of(known.begin(), known.end(), [&](const KnownMapping& each) {
+      return each.mapping.name == mapping.name;
+    });
     if (!replaced) known.push_back({mapping, {}, false, {}});
   }
-  std::sort(known.begin(), known.end(), [](const KnownMapping& a, const KnownMapping& b) {
-    return a.mapping.name < b.mapping.name;
-  });
+  std::sort(known.begin(), known.end(),
+            [](const KnownMapping& a, const KnownMapping& b) { return a.mapping.name < b.mapping.name; });
   return known;
 }
 
@@ -59,7 +59,8 @@ const std::string* query_of(const Request& request, const char* name) {
 void Api::add_csv_routes() {
   HttpServer& http = parts_.http;
   http.route("POST", "/api/v1/furnaces/{}/log", guarded([this](const Request& r) { return take_log(r); }));
-  http.route("POST", "/api/v1/furnaces/{}/log/guess", guarded([this](const Request& r) { return guess_log(r); }));
+  http.route("POST", "/api/v1/furnaces/{}/log/guess",
+             guarded([this](const Request& r) { return guess_log(r); }));
   http.route("POST", "/api/v1/furnaces/{}/log/preview",
              guarded([this](const Request& r) { return preview_log(r); }));
   http.route("GET", "/api/v1/furnaces/{}/mappings",
@@ -77,13 +78,14 @@ CsvMapping Api::mapping_of(const Request& request, const Furnace& furnace) {
     if (name ? each.mapping.name != *name : known.size() != 1) continue;
     if (each.fault.empty()) return std::move(each.mapping);
     throw Problem{422, "invalid-mapping", "The mapping can no longer be used",
-                  "Mapping \"" + each.mapping.name + "\": " + each.fault + " Mend it under /api/v1/furnaces/" +
-                      furnace.id + "/mappings.",
+                  "Mapping \"" + each.mapping.name + "\": " + each.fault +
+                      " Mend it under /api/v1/furnaces/" + furnace.id + "/mappings.",
                   "mapping"};
   }
   throw Problem{422, "unknown-mapping", "Which columns are which?",
                 names.empty() ? "No logger file is described for this furnace, neither in the plant file "
-                                "([[furnace.csv]]) nor under /api/v1/furnaces/" + furnace.id + "/mappings."
+                                "([[furnace.csv]]) nor under /api/v1/furnaces/" +
+                                    furnace.id + "/mappings."
                               : "Add ?mapping=NAME; this furnace knows: " + names + ".",
                 "mapping"};
 }
@@ -93,7 +95,8 @@ Response Api::take_log(const Request& request) {
   const CsvMapping mapping = mapping_of(request, furnace);
   const std::string* part = query_of(request, "part");
   if (part && *part != "true" && *part != "false")
-    throw Problem{422, "invalid-request", "The query cannot be used", "part: expected true or false.", "part"};
+    throw Problem{422, "invalid-request", "The query cannot be used", "part: expected true or false.",
+                  "part"};
   const CsvExtent extent = part && *part == "true" ? CsvExtent::part : CsvExtent::whole;
   const CsvReport report = accept_csv(parts_.acceptor, request.body, furnace, mapping, extent);
   for (const auto& [refusal, count] : report.refused_by_reason)
@@ -101,9 +104,12 @@ Response Api::take_log(const Request& request) {
   Json problems = Json::array();
   for (const auto& problem : report.problems)
     problems.push_back({{"line", problem.line}, {"reason", problem.reason}});
-  const Json json{{"rows", report.rows},           {"stored", report.stored},
-                  {"duplicate", report.duplicate}, {"conflict", report.conflict},
-                  {"refused", report.refused},     {"no_value", report.no_value},
+  const Json json{{"rows", report.rows},
+                  {"stored", report.stored},
+                  {"duplicate", report.duplicate},
+                  {"conflict", report.conflict},
+                  {"refused", report.refused},
+                  {"no_value", report.no_value},
                   {"problems", std::move(problems)}};
   return {200, "application/json", dumped(json), {}};
 }
@@ -111,8 +117,9 @@ Response Api::take_log(const Request& request) {
 Response Api::guess_log(const Request& request) {
   const Furnace& furnace = find_furnace(request);
   const CsvGuess guess = guess_csv_mapping(request.body, furnace, parts_.clock.now_us());
-  const CsvPreview preview = preview_csv(request.body, furnace, guess.mapping,
-                                         [this](const RawReading& item) { return parts_.acceptor.would_be(item); });
+  const CsvPreview preview =
+      preview_csv(request.body, furnace, guess.mapping,
+                  [this](const RawReading& item) { return parts_.acceptor.would_be(item); });
   return {200, "application/json", guess_json(guess, preview), {}};
 }
 
@@ -125,10 +132,11 @@ Response Api::preview_log(const Request& request) {
   } else {
     const std::size_t end = file.find('\n');
     if (end == std::string_view::npos || file.front() != '{')
-      throw Problem{422, "invalid-mapping", "Which columns are which?",
-                    "Name a saved mapping as ?mapping=NAME, or let the body begin with one line of JSON, the mapping, "
-                    "and the file follow after the line end.",
-                    "mapping"};
+      throw Problem{
+          422, "invalid-mapping", "Which columns are which?",
+          "Name a saved mapping as ?mapping=NAME, or let the body begin with one line of JSON, the mapping, "
+          "and the file follow after the line end.",
+          "mapping"};
     mapping = read_csv_mapping_json(file.substr(0, end), furnace, "");
     file.remove_prefix(end + 1);
   }
@@ -158,9 +166,9 @@ Response Api::save_mapping(const Request& request) {
   fields.finish();
   const auto before = readers_.take()->library_item(library_kind, row.key);
   try {
-    row.version = parts_.store.save_library(
-        row, expected,
-        {row.at_us, row.person, "save logger mapping", "mapping " + row.key, before ? before->json : "", row.json});
+    row.version = parts_.store.save_library(row, expected,
+                                            {row.at_us, row.person, "save logger mapping",
+                                             "mapping " + row.key, before ? before->json : "", row.json});
   } catch (const storage::StorageError& error) {
     if (error.fault != storage::StorageFault::misuse) throw;
     throw Problem{409, "mapping-changed", "Another version of the mapping is there already", error.what(),

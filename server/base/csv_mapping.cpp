@@ -57,8 +57,7 @@ class Checker {
   void check_signs() {
     const char separator = mapping_.separator, decimal = mapping_.decimal, thousands = mapping_.thousands;
     if (separator == decimal) {
-      add("decimal",
-          "separator and decimal sign are the same, so a number cannot be told from two columns");
+      add("decimal", "separator and decimal sign are the same, so a number cannot be told from two columns");
     }
     if (thousands == '\0') return;
     if (thousands == decimal) add("thousands", "is the decimal sign as well");
@@ -138,10 +137,10 @@ std::optional<Encoding> encoding_from(std::string_view word) {
 }
 
 std::vector<std::string> usual_no_value() {
-  return {"-",    "--",   "---",   "----",  "-----",    "*",         "***",       "****",      "*****",
-          "?",    "???",  "NaN",   "N/A",   "#N/A",     "n.a.",      "null",      "none",      "no data",
-          "OVER", "OVR",  "UNDER", "UDR",   "OVERFLOW", "UNDERFLOW", "over range", "under range", "OL",
-          "+OL",  "-OL",  "OPEN",  "BURNOUT", "ERR",    "ERROR",     "BAD"};
+  return {"-",    "--",  "---",   "----",    "-----",    "*",         "***",        "****",        "*****",
+          "?",    "???", "NaN",   "N/A",     "#N/A",     "n.a.",      "null",       "none",        "no data",
+          "OVER", "OVR", "UNDER", "UDR",     "OVERFLOW", "UNDERFLOW", "over range", "under range", "OL",
+          "+OL",  "-OL", "OPEN",  "BURNOUT", "ERR",      "ERROR",     "BAD"};
 }
 
 bool read_separator(std::string_view word, CsvMapping& into) {

@@ -177,8 +177,8 @@ double convert(double value, FileUnit from, Unit to) {
 
 std::optional<FileUnit> unit_in_words(std::string_view header, Role role) {
   const std::vector<std::string> tokens = tokens_of(plain(header));
-  // From the end, since the unit follows the name. A single letter is a unit only as the last word: C may also
-  // be the carbon in "C-Pot" and "% C", K a kind of thermocouple.
+  // From the end, since the unit follows the name. A single letter is a unit only as the last word: C may
+  // also be the carbon in "C-Pot" and "% C", K a kind of thermocouple.
   for (std::size_t i = tokens.size(); i-- > 0;) {
     const bool letter = tokens[i].size() == 1 && tokens[i] != "%";
     const std::string before = i > 0 ? tokens[i - 1] : "";
@@ -194,8 +194,9 @@ bool is_unit_word(std::string_view cell) {
     for (const Role role : {Role::temperature, Role::probe_emf, Role::carbon_potential, Role::co}) {
       if (unit_of_token(token, role)) return true;
     }
-    return one_of(token, {"s", "sec", "min", "h", "hh", "mm", "ss", "dd", "yy", "yyyy", "bar", "mbar", "pa", "kpa", "hpa", "l",
-                          "m", "kw", "a", "ma", "ppb", "by", "mass", "rpm", "hz"});
+    return one_of(token,
+                  {"s",   "sec", "min", "h", "hh", "mm", "ss", "dd",  "yy", "yyyy", "bar", "mbar", "pa",
+                   "kpa", "hpa", "l",   "m", "kw", "a",  "ma", "ppb", "by", "mass", "rpm", "hz"});
   };
   return !tokens.empty() && std::all_of(tokens.begin(), tokens.end(), is_unit);
 }

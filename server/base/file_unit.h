@@ -1,6 +1,6 @@
-// Units of logger files: their words, where they fit, conversion into the units of channels. Pure, any thread.
-// Scales by definition: degC = K - 273.15, degF = 1.8 degC + 32 (BIPM, SI Brochure, 9th edition, 2.3.1 for the first);
-// 1 vol% = 10 000 ppm by volume.
+// Units of logger files: their words, where they fit, conversion into the units of channels. Pure, any
+// thread. Scales by definition: degC = K - 273.15, degF = 1.8 degC + 32 (BIPM, SI Brochure, 9th
+// edition, 2.3.1 for the first); 1 vol% = 10 000 ppm by volume.
 #pragma once
 
 #include <optional>
@@ -23,7 +23,8 @@ double convert(double value, FileUnit from, Unit to);
 // The unit that a header text or a cell of a units line names ("TC1 [°F]", "CO in ppm", "C-Pot %") and that
 // fits the role. Empty where there is none. UTF-8.
 std::optional<FileUnit> unit_in_words(std::string_view words, Role role);
-// A unit that words name, whatever it belongs to: "°C", "mV", "%", also "s" or "bar". For telling a units line.
+// A unit that words name, whatever it belongs to: "°C", "mV", "%", also "s" or "bar". For telling a units
+// line.
 bool is_unit_word(std::string_view words);
 
 }  // namespace hearthfront::server

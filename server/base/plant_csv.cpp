@@ -13,8 +13,9 @@ void read_unit(ConfigTable& table, CsvColumn& column) {
   if (column.unit_from_header) return;
   column.unit = file_unit_from(word);
   if (!column.unit) {
-    table.fault("unit", "\"" + word + "\" is no unit of a logger file; expected \"from header\", degC, degF, K, mV, "
-                        "V, uV, wt_pct, vol_pct or ppm");
+    table.fault("unit", "\"" + word +
+                            "\" is no unit of a logger file; expected \"from header\", degC, degF, K, mV, "
+                            "V, uV, wt_pct, vol_pct or ppm");
   }
 }
 
@@ -33,14 +34,17 @@ void read_signs(ConfigTable& table, CsvMapping& mapping) {
   std::string word;
   if (table.text("encoding", word)) {
     const auto encoding = encoding_from(word);
-    if (encoding) mapping.encoding = *encoding;
+    if (encoding)
+      mapping.encoding = *encoding;
     else
-      table.fault("encoding", "expected auto, utf-8, utf-16, utf-16-le, utf-16-be, windows-1252 or iso-8859-1");
+      table.fault("encoding",
+                  "expected auto, utf-8, utf-16, utf-16-le, utf-16-be, windows-1252 or iso-8859-1");
   }
   if (table.raw_text("separator", word) && !read_separator(word, mapping))
     table.fault("separator", "expected \",\", \";\", \"|\", \"\\t\", \"spaces\" or \"wide_spaces\"");
   if (table.text("decimal", word, 0)) {
-    if (word == "." || word == ",") mapping.decimal = word.front();
+    if (word == "." || word == ",")
+      mapping.decimal = word.front();
     else
       table.fault("decimal", "expected \".\" or \",\"");
   }

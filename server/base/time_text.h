@@ -23,7 +23,7 @@ std::optional<std::int64_t> time_us_from(const CivilTime& civil, int utc_offset_
 
 // A time as a file writes it: an instant where it carries its zone, else what a clock on the wall showed.
 struct WrittenTime {
-  std::int64_t us = 0;    // UTC with a zone; else the wall clock counted as though it were UTC
+  std::int64_t us = 0;  // UTC with a zone; else the wall clock counted as though it were UTC
   bool has_zone = false;
 };
 // The instant, without zone at `utc_offset_min` minutes east of Greenwich. Empty with `reason` where that

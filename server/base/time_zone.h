@@ -23,8 +23,8 @@ struct WallTime {
 };
 
 struct ClockChange {
-  std::int64_t at_us = 0;                    // UTC
-  int before_min = 0, after_min = 0;         // offsets east of Greenwich
+  std::int64_t at_us = 0;             // UTC
+  int before_min = 0, after_min = 0;  // offsets east of Greenwich
 };
 
 class TimeZone {

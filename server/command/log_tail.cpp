@@ -90,7 +90,8 @@ bool LogTail::check_header() {
   const Encoding encoding = mapping_.encoding;
   if (header_.starts_with("\xff\xfe") || header_.starts_with("\xfe\xff") || encoding == Encoding::utf16 ||
       encoding == Encoding::utf16_le || encoding == Encoding::utf16_be) {
-    problem_ = path_ + " is UTF-16, which cannot be followed line by line; let the logger write UTF-8 or "
+    problem_ = path_ +
+               " is UTF-16, which cannot be followed line by line; let the logger write UTF-8 or "
                "Windows-1252, or upload the file.";
     return false;
   }

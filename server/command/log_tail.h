@@ -29,7 +29,7 @@ class LogTail {
   bool fill(std::deque<LogRow>& rows, std::size_t wanted, bool growing);
 
   const std::string& header() const { return header_; }  // the mapping's header lines, each with a line end
-  int header_count() const { return header_count_; }           // lines in it, comments included
+  int header_count() const { return header_count_; }     // lines in it, comments included
   const std::string& problem() const { return problem_; }
   bool started_over() const {
     return started_over_;

@@ -67,8 +67,7 @@ void CsvReader::order_times() {
 // What is wrong with the number of fields; empty where nothing is.
 std::string CsvReader::shape_fault(std::string_view record, std::vector<std::string>& fields,
                                    Split split) const {
-  if (split == Split::open_quote) return "a quote is not closed on this line";
-  if (split == Split::text_after_quote) return "text follows a closing quote";
+  if (split != Split::whole) return std::string(fault_text(split));
   const std::size_t wanted = header_.size();
   while (wanted > 0 && fields.size() > wanted && fields.back().empty()) fields.pop_back();
   if (wanted > 0 && fields.size() > wanted) {
@@ -167,10 +166,10 @@ std::optional<FileFault> CsvReader::misfit() const {
     return std::to_string(count) + " of " + std::to_string(tally_.rows) + " rows";
   };
   if (2 * tally_.broken_rows > tally_.rows) {
-    return FileFault{tally_.first_broken_line,
-                     of_rows(static_cast<std::size_t>(tally_.broken_rows)) +
-                         " are not divided as the mapping says; the first, line " +
-                         std::to_string(tally_.first_broken_line) + ": " + tally_.first_broken};
+    return FileFault{tally_.first_broken_line, of_rows(static_cast<std::size_t>(tally_.broken_rows)) +
+                                                   " are not divided as the mapping says; the first, line " +
+                                                   std::to_string(tally_.first_broken_line) + ": " +
+                                                   tally_.first_broken};
   }
   if (tally_.readings == 0 && tally_.refused > 0) {
     return FileFault{tally_.first_refused_line, "None of the " + std::to_string(tally_.rows) +

@@ -31,7 +31,8 @@ class Converter {
  public:
   explicit Converter(const char* from) : handle_(iconv_open("UTF-8", from)) {
     // glibc converts these by itself or from its packaged modules.
-    if (handle_ == reinterpret_cast<iconv_t>(-1))  // NOLINT(performance-no-int-to-ptr): iconv's own error value
+    if (handle_ ==
+        reinterpret_cast<iconv_t>(-1))  // NOLINT(performance-no-int-to-ptr): iconv's own error value
       throw std::runtime_error(std::string("the C library cannot convert from ") + from);
   }
   ~Converter() { iconv_close(handle_); }
@@ -69,11 +70,14 @@ FileText::FileText(std::string_view bytes, Encoding wanted) : text(bytes), encod
   const bool utf16 =
       wanted == Encoding::utf16 || wanted == Encoding::utf16_le || wanted == Encoding::utf16_be;
   const bool little = bytes.starts_with(little_mark), big = bytes.starts_with(big_mark);
-  const auto says = [&] { return std::string("the mapping says encoding = \"") + std::string(server::text(wanted)) + "\"."; };
+  const auto says = [&] {
+    return std::string("the mapping says encoding = \"") + std::string(server::text(wanted)) + "\".";
+  };
   if ((little || big) && !utf16 && wanted != Encoding::automatic) {
     fault = {1, "Line 1: the file begins with the byte order mark of UTF-16, " + says()};
   } else if ((little && wanted == Encoding::utf16_be) || (big && wanted == Encoding::utf16_le)) {
-    fault = {1, std::string("Line 1: the file begins with the byte order mark of UTF-16 ") + (little ? "LE, " : "BE, ") + says()};
+    fault = {1, std::string("Line 1: the file begins with the byte order mark of UTF-16 ") +
+                    (little ? "LE, " : "BE, ") + says()};
   } else if (wanted == Encoding::utf16 && !little && !big) {
     fault = {1, "Line 1: the file does not begin with a byte order mark, " + says() +
                     " Without one say utf-16-le or utf-16-be, or the encoding is another one."};
@@ -93,8 +97,9 @@ FileText::FileText(std::string_view bytes, Encoding wanted) : text(bytes), encod
       return byte >= 0x80 && byte < 0xa0;
     });
     if (odd != bytes.end())
-      fault = fault_after(bytes.substr(0, static_cast<std::size_t>(odd - bytes.begin())),
-                          "the byte " + hex(*odd) + " is a control character in ISO-8859-1: is the file windows-1252?");
+      fault = fault_after(
+          bytes.substr(0, static_cast<std::size_t>(odd - bytes.begin())),
+          "the byte " + hex(*odd) + " is a control character in ISO-8859-1: is the file windows-1252?");
   } else {
     if (bytes.starts_with(utf8_mark)) {
       text.remove_prefix(utf8_mark.size());
@@ -107,15 +112,16 @@ FileText::FileText(std::string_view bytes, Encoding wanted) : text(bytes), encod
       rest.remove_prefix(length);
     }
     if (wanted == Encoding::utf8 && !rest.empty())
-      fault = fault_after(text.substr(0, text.size() - rest.size()),
-                          "the byte " + hex(rest.front()) + " is not UTF-8, " + says() +
-                              " Is the file windows-1252?");
+      fault = fault_after(
+          text.substr(0, text.size() - rest.size()),
+          "the byte " + hex(rest.front()) + " is not UTF-8, " + says() + " Is the file windows-1252?");
   }
   if (fault) return;
   if (const std::size_t at = text.find('\0'); at != std::string_view::npos)
-    fault = fault_after(text.substr(0, at),
-                        "a zero byte: the file is UTF-16 without byte order mark (say utf-16-le or utf-16-be), "
-                        "or not a text at all.");
+    fault =
+        fault_after(text.substr(0, at),
+                    "a zero byte: the file is UTF-16 without byte order mark (say utf-16-le or utf-16-be), "
+                    "or not a text at all.");
   else if (text.find_first_not_of(" \t\r\n") == std::string_view::npos)
     fault = {0, "The file is empty."};
 }

@@ -30,8 +30,9 @@ Encoding guess_encoding(std::string_view bytes, std::vector<Unsure>& unsure) {
   if (ascii) return Encoding::automatic;
   if (valid_utf8(bytes)) return Encoding::utf8;
   if (bytes.find_first_of("\x81\x8d\x8f\x90\x9d") == std::string_view::npos) return Encoding::windows_1252;
-  unsure.push_back({"encoding", "The file is neither UTF-8 nor Windows-1252 throughout; characters such as ° may be "
-                                "read wrongly."});
+  unsure.push_back({"encoding",
+                    "The file is neither UTF-8 nor Windows-1252 throughout; characters such as ° may be "
+                    "read wrongly."});
   return Encoding::automatic;
 }
 
@@ -84,9 +85,10 @@ Shape shape_by(const std::string& word, std::string_view text, CsvMapping by) {
     ++widths[fields.size()];
     cells += fields.size();
     // Columns that another separator parts show as wide gaps within a cell.
-    torn += static_cast<std::size_t>(std::count_if(fields.begin(), fields.end(), [](const std::string& field) {
-      return field.find("  ") != std::string::npos || field.find('\t') != std::string::npos;
-    }));
+    torn +=
+        static_cast<std::size_t>(std::count_if(fields.begin(), fields.end(), [](const std::string& field) {
+          return field.find("  ") != std::string::npos || field.find('\t') != std::string::npos;
+        }));
   }
   Shape shape{word, 0, 0};
   if (widths.empty() || torn * 5 > cells) return shape;
@@ -97,7 +99,8 @@ Shape shape_by(const std::string& word, std::string_view text, CsvMapping by) {
   return shape;
 }
 
-// The first in order of how surely it separates: a comma may as well be a decimal sign, a blank part of a time.
+// The first in order of how surely it separates: a comma may as well be a decimal sign, a blank part of a
+// time.
 Shape guess_separator(std::string_view text, const CsvMapping& mapping, std::vector<Unsure>& unsure) {
   Shape best;
   for (const char* word : {";", "\t", "|", ",", "wide_spaces", "spaces"}) {
@@ -106,8 +109,9 @@ Shape guess_separator(std::string_view text, const CsvMapping& mapping, std::vec
     if (shape.share >= most_rows_agree) return shape;
     if (shape.share > best.share) best = shape;
   }
-  unsure.push_back({"separator", best.width == 0 ? "No separator divides the lines into columns."
-                                                 : "No separator divides all rows into the same number of columns."});
+  unsure.push_back({"separator", best.width == 0
+                                     ? "No separator divides the lines into columns."
+                                     : "No separator divides all rows into the same number of columns."});
   return best;
 }
 
@@ -118,8 +122,10 @@ std::string guess_comment(const std::vector<std::string_view>& lines, const CsvM
     std::string_view last;
     bool all = true;
     for (const std::string_view line : lines) {
-      if (line.starts_with(sign)) last = line;
-      else if (is_filled(line)) all = false;
+      if (line.starts_with(sign))
+        last = line;
+      else if (is_filled(line))
+        all = false;
     }
     if (last.empty() || all) continue;
     Cells fields;
@@ -141,8 +147,8 @@ bool is_units_line(const Cells& fields) {
 
 bool parses(const Cells& fields, const GuessedTimes& times) {
   if (fields.size() <= std::max(times.time_index, times.date_index.value_or(0))) return false;
-  const std::string text =
-      times.date_index ? fields[*times.date_index] + " " + fields[times.time_index] : fields[times.time_index];
+  const std::string text = times.date_index ? fields[*times.date_index] + " " + fields[times.time_index]
+                                            : fields[times.time_index];
   std::string reason;
   return parse_written_time(text, times.format, reason).has_value();
 }
@@ -157,8 +163,9 @@ void guess_zone(const Furnace& furnace, bool has_zone, CsvGuess& guess) {
                                              "\" of this furnace is taken."});
     return;
   }
-  guess.unsure.push_back({"time_zone", "The times carry no zone; UTC is taken. Choose the one that the logger's clock "
-                                       "shows, such as Europe/Berlin."});
+  guess.unsure.push_back({"time_zone",
+                          "The times carry no zone; UTC is taken. Choose the one that the logger's clock "
+                          "shows, such as Europe/Berlin."});
 }
 
 // A record above the rows.
@@ -195,7 +202,8 @@ class Guesser {
     }
     if (!times) {
       guess_.mapping.time_column.clear();
-      guess_.unsure.push_back({"time_column", "No column could be read as a time. Name the column and the format."});
+      guess_.unsure.push_back(
+          {"time_column", "No column could be read as a time. Name the column and the format."});
     }
     guess_header(text, width, times);
     std::vector<std::size_t> time_columns;
@@ -246,7 +254,8 @@ class Guesser {
     for (std::string& unit : units_) unit = plain_name(clean_text(unit));
     while (names_.size() > width && names_.back().empty()) names_.pop_back();
     if (names_.size() + 1 < width || names_.size() > width) {
-      guess_.unsure.push_back({"header_lines", "The line taken for the names has " + std::to_string(names_.size()) +
+      guess_.unsure.push_back({"header_lines", "The line taken for the names has " +
+                                                   std::to_string(names_.size()) +
                                                    " columns, the rows have " + std::to_string(width) + "."});
     }
   }

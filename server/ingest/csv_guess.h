@@ -21,8 +21,8 @@ struct CsvGuess {
   std::vector<Unsure> unsure;
 };
 
-// `now_us`: the daemon's clock, since a log does not lie in the future. Throws Problem (422, bad-csv) where the
-// bytes are no text or empty.
+// `now_us`: the daemon's clock, since a log does not lie in the future. Throws Problem (422, bad-csv) where
+// the bytes are no text or empty.
 CsvGuess guess_csv_mapping(std::string_view bytes, const Furnace& furnace, std::int64_t now_us);
 
 }  // namespace hearthfront::server

@@ -1,4 +1,5 @@
-// guess_signs and guess_columns (csv_guess_parts.h): how numbers are written, and which column feeds which channel.
+// guess_signs and guess_columns (csv_guess_parts.h): how numbers are written, and which column feeds which
+// channel.
 #include <algorithm>
 #include <cmath>
 #include <set>
@@ -27,10 +28,12 @@ void count_sign(const std::string& cell, char sign, char other, Signs& signs) {
   if (first == std::string::npos) return;
   const std::size_t behind = cell.size() - last - 1;
   const std::size_t other_at = cell.rfind(other);
-  if (first != last || (other_at != std::string::npos && other_at > last)) ++signs.grouping;
+  if (first != last || (other_at != std::string::npos && other_at > last))
+    ++signs.grouping;
   else if (behind != 3 || first == 0 || first > 3 || other_at != std::string::npos || cell.front() == '0')
     ++signs.decimal;
-  else ++signs.either;
+  else
+    ++signs.either;
 }
 
 // Digits, signs between them, a leading plus or minus cut off; empty where the cell is something else.
@@ -50,7 +53,8 @@ std::set<std::string> words_of(std::string_view name) {
   std::set<std::string> words;
   std::string word;
   const auto close = [&] {
-    while (word != "co2" && word != "o2" && word != "h2" && word != "ch4" && !word.empty() && is_digit(word.back()))
+    while (word != "co2" && word != "o2" && word != "h2" && word != "ch4" && !word.empty() &&
+           is_digit(word.back()))
       word.pop_back();
     if (!word.empty()) words.insert(word);
     word.clear();
@@ -58,8 +62,10 @@ std::set<std::string> words_of(std::string_view name) {
   for (const char c : name) {
     const bool letter = (c >= 'a' && c <= 'z') || (c >= 'A' && c <= 'Z') || is_digit(c) ||
                         static_cast<unsigned char>(c) >= 0x80;
-    if (letter) word += c >= 'A' && c <= 'Z' ? static_cast<char>(c - 'A' + 'a') : c;
-    else close();
+    if (letter)
+      word += c >= 'A' && c <= 'Z' ? static_cast<char>(c - 'A' + 'a') : c;
+    else
+      close();
   }
   close();
   return words;
@@ -73,16 +79,18 @@ bool any_of_words(const std::set<std::string>& words, std::initializer_list<cons
 bool speaks_of(const std::set<std::string>& words, Role role) {
   switch (role) {
     case Role::temperature:
-      return any_of_words(words, {"temp", "temperature", "temperatur", "furnace", "ofen", "ofentemperatur", "tc", "zone",
-                                  "control", "chamber", "kammer"});
+      return any_of_words(words, {"temp", "temperature", "temperatur", "furnace", "ofen", "ofentemperatur",
+                                  "tc", "zone", "control", "chamber", "kammer"});
     case Role::load_temperature:
-      return any_of_words(words, {"load", "charge", "part", "core", "workpiece", "werkstück", "chargentemperatur"});
+      return any_of_words(words,
+                          {"load", "charge", "part", "core", "workpiece", "werkstück", "chargentemperatur"});
     case Role::probe_temperature:
       return any_of_words(words, {"probe", "sonde", "sondentemperatur"});
     case Role::probe_emf:
       return any_of_words(words, {"emf", "mv", "probe", "sonde", "sondenspannung", "o2", "sensor"});
     case Role::carbon_potential:
-      return any_of_words(words, {"cp", "cpot", "pot", "potential", "carbon", "kohlenstoff", "pegel", "cpegel"});
+      return any_of_words(words,
+                          {"cp", "cpot", "pot", "potential", "carbon", "kohlenstoff", "pegel", "cpegel"});
     case Role::co:
       return any_of_words(words, {"co", "kohlenmonoxid"});
   }
@@ -91,8 +99,9 @@ bool speaks_of(const std::set<std::string>& words, Role role) {
 
 // Set points, outputs and other gases are no measurement of ours.
 bool is_something_else(const std::set<std::string>& words) {
-  return any_of_words(words, {"setpoint", "sp", "set", "soll", "sollwert", "target", "output", "out", "power", "alarm",
-                              "status", "co2", "ch4", "h2", "dew", "dewpoint", "taupunkt", "oil", "quench", "öl"});
+  return any_of_words(
+      words, {"setpoint", "sp",  "set", "soll", "sollwert", "target",   "output",   "out", "power",  "alarm",
+              "status",   "co2", "ch4", "h2",   "dew",      "dewpoint", "taupunkt", "oil", "quench", "öl"});
 }
 
 struct Column {
@@ -142,7 +151,8 @@ int score_of(const Column& column, const Channel& channel, const Furnace& furnac
     for (const CsvColumn& known : other.columns)
       if (known.column == column.name && known.channel == channel.name) score = 100;
   }
-  if (words == wanted) score += 100;
+  if (words == wanted)
+    score += 100;
   else
     for (const std::string& word : wanted) score += words.contains(word) ? 25 : 0;
   if (speaks_of(words, channel.role)) score += 30;
@@ -177,29 +187,32 @@ std::vector<Column> columns_of(const std::vector<Cells>& rows, const Cells& name
 }
 
 // Words in a column of numbers that the usual list does not know.
-void note_unknown_words(const std::vector<Cells>& rows, std::size_t index, const Column& column, CsvGuess& guess) {
+void note_unknown_words(const std::vector<Cells>& rows, std::size_t index, const Column& column,
+                        CsvGuess& guess) {
   std::set<std::string> unknown;
   std::string reason;
   for (const Cells& row : rows) {
     const std::string& cell = row[index];
     const auto same = [&cell](const std::string& word) {
-      return word.size() == cell.size() && std::equal(word.begin(), word.end(), cell.begin(), [](char a, char b) {
-               return (a | 0x20) == (b | 0x20);
-             });
+      return word.size() == cell.size() &&
+             std::equal(word.begin(), word.end(), cell.begin(),
+                        [](char a, char b) { return (a | 0x20) == (b | 0x20); });
     };
     const auto& known = guess.mapping.no_value;
     if (cell.empty() || cell.size() > 40 || std::any_of(known.begin(), known.end(), same)) continue;
     if (!parse_decimal(cell, guess.mapping.decimal, reason, guess.mapping.thousands)) unknown.insert(cell);
   }
   if (unknown.empty()) return;
-  guess.unsure.push_back({"no_value", "Column " + quoted_text(column.word) + " holds " + quoted_text(*unknown.begin()) +
-                                          (unknown.size() > 1 ? " and other words" : "") +
-                                          ", which is no number: add it to no_value if it means that there is none."});
+  guess.unsure.push_back(
+      {"no_value", "Column " + quoted_text(column.word) + " holds " + quoted_text(*unknown.begin()) +
+                       (unknown.size() > 1 ? " and other words" : "") +
+                       ", which is no number: add it to no_value if it means that there is none."});
 }
 
 }  // namespace
 
-void guess_signs(const std::vector<Cells>& rows, const std::vector<std::size_t>& time_columns, CsvGuess& guess) {
+void guess_signs(const std::vector<Cells>& rows, const std::vector<std::size_t>& time_columns,
+                 CsvGuess& guess) {
   Signs comma, point;
   std::size_t blanks = 0, ticks = 0;
   for (const Cells& row : rows) {
@@ -213,17 +226,23 @@ void guess_signs(const std::vector<Cells>& rows, const std::vector<std::size_t>&
     }
   }
   CsvMapping& mapping = guess.mapping;
-  if (comma.decimal > point.decimal || (point.grouping > 0 && comma.either > 0)) mapping.decimal = ',';
-  else if (point.decimal == 0 && comma.grouping == 0 && comma.either > point.either && mapping.separator != ',')
+  if (comma.decimal > point.decimal || (point.grouping > 0 && comma.either > 0))
+    mapping.decimal = ',';
+  else if (point.decimal == 0 && comma.grouping == 0 && comma.either > point.either &&
+           mapping.separator != ',')
     mapping.decimal = ',';
   const Signs& other = mapping.decimal == ',' ? point : comma;
   const char other_sign = mapping.decimal == ',' ? '.' : ',';
-  if (other.grouping > 0 && other_sign != mapping.separator) mapping.thousands = other_sign;
-  else if (ticks > 0) mapping.thousands = '\'';
-  else if (blanks > 0 && mapping.separator != ' ') mapping.thousands = ' ';
+  if (other.grouping > 0 && other_sign != mapping.separator)
+    mapping.thousands = other_sign;
+  else if (ticks > 0)
+    mapping.thousands = '\'';
+  else if (blanks > 0 && mapping.separator != ' ')
+    mapping.thousands = ' ';
   if (comma.decimal + point.decimal == 0 && comma.either + point.either > 0)
-    guess.unsure.push_back({"decimal", "Numbers such as 1,050 or 1.050 may have three decimals or a grouped thousand; "
-                                       "compare a value with the logger."});
+    guess.unsure.push_back({"decimal",
+                            "Numbers such as 1,050 or 1.050 may have three decimals or a grouped thousand; "
+                            "compare a value with the logger."});
   if (comma.decimal > 0 && point.decimal > 0)
     guess.unsure.push_back({"decimal", "Both \",\" and \".\" stand as decimal sign in the file."});
 }
@@ -260,15 +279,18 @@ void guess_columns(const std::vector<Cells>& rows, const Cells& names, const Cel
     const FileUnit unit = named.value_or(likely_unit(column, *match.channel));
     if (unit != own) mapped.unit = unit;
     if (!named && unit != own)
-      guess.unsure.push_back({field + ".unit", "Column " + quoted_text(column.word) + " names no unit; by its values it is " +
+      guess.unsure.push_back({field + ".unit", "Column " + quoted_text(column.word) +
+                                                   " names no unit; by its values it is " +
                                                    std::string(text(unit)) + "."});
     const auto rival = std::find_if(matches.begin(), matches.end(), [&](const Match& other) {
-      return other.channel == match.channel && other.column != match.column && other.score > match.score - close_score &&
-             std::none_of(chosen.begin(), chosen.end(), [&](const Match& c) { return c.column == other.column; });
+      return other.channel == match.channel && other.column != match.column &&
+             other.score > match.score - close_score &&
+             std::none_of(chosen.begin(), chosen.end(),
+                          [&](const Match& c) { return c.column == other.column; });
     });
     if (rival != matches.end())
-      guess.unsure.push_back({field, "Column " + quoted_text(columns[rival->column].word) + " may as well be channel \"" +
-                                         match.channel->name + "\"."});
+      guess.unsure.push_back({field, "Column " + quoted_text(columns[rival->column].word) +
+                                         " may as well be channel \"" + match.channel->name + "\"."});
     else if (match.score < good_score)
       guess.unsure.push_back({field, "Whether column " + quoted_text(column.word) + " is channel \"" +
                                          match.channel->name + "\" is not certain."});
@@ -276,7 +298,8 @@ void guess_columns(const std::vector<Cells>& rows, const Cells& names, const Cel
   }
   std::string missing;
   for (const Channel& channel : furnace.channels) {
-    const bool found = std::any_of(chosen.begin(), chosen.end(), [&](const Match& m) { return m.channel == &channel; });
+    const bool found =
+        std::any_of(chosen.begin(), chosen.end(), [&](const Match& m) { return m.channel == &channel; });
     if (!found) missing += (missing.empty() ? "" : ", ") + channel.name;
   }
   if (!missing.empty()) guess.unsure.push_back({"columns", "No column was recognised for: " + missing + "."});

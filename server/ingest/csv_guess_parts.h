@@ -23,7 +23,8 @@ struct GuessedTimes {
 std::optional<GuessedTimes> guess_times(const std::vector<Cells>& rows, std::int64_t now_us);
 
 // Sets decimal and thousands from the cells that are no times.
-void guess_signs(const std::vector<Cells>& rows, const std::vector<std::size_t>& time_columns, CsvGuess& guess);
+void guess_signs(const std::vector<Cells>& rows, const std::vector<std::size_t>& time_columns,
+                 CsvGuess& guess);
 
 // Fills guess.mapping.columns. `names` and `units` as in the file, `units` may be empty.
 void guess_columns(const std::vector<Cells>& rows, const Cells& names, const Cells& units,

@@ -12,15 +12,17 @@ constexpr std::size_t most_columns = 12;  // a time stands among the first
 constexpr std::int64_t day_us = 86'400'000'000;
 
 const std::vector<std::string>& dates() {
-  static const std::vector<std::string> list{
-      "%Y-%m-%d", "%d.%m.%Y", "%d.%m.%y", "%d/%m/%Y", "%m/%d/%Y", "%d/%m/%y", "%m/%d/%y", "%Y/%m/%d", "%d-%m-%Y",
-      "%m-%d-%Y", "%d-%m-%y", "%m-%d-%y", "%Y.%m.%d", "%Y%m%d",   "%d-%b-%Y", "%d-%b-%y", "%d %b %Y", "%b %d %Y"};
+  static const std::vector<std::string> list{"%Y-%m-%d", "%d.%m.%Y", "%d.%m.%y", "%d/%m/%Y", "%m/%d/%Y",
+                                             "%d/%m/%y", "%m/%d/%y", "%Y/%m/%d", "%d-%m-%Y", "%m-%d-%Y",
+                                             "%d-%m-%y", "%m-%d-%y", "%Y.%m.%d", "%Y%m%d",   "%d-%b-%Y",
+                                             "%d-%b-%y", "%d %b %Y", "%b %d %Y"};
   return list;
 }
 
 const std::vector<std::string>& clocks() {
-  static const std::vector<std::string> list{"%H:%M:%S",    "%H:%M",     "%H:%M:%S.%f", "%H:%M:%S,%f", "%I:%M:%S %p",
-                                             "%I:%M:%S%p", "%I:%M %p", "%H.%M.%S",    "%H%M%S"};
+  static const std::vector<std::string> list{"%H:%M:%S",    "%H:%M",       "%H:%M:%S.%f",
+                                             "%H:%M:%S,%f", "%I:%M:%S %p", "%I:%M:%S%p",
+                                             "%I:%M %p",    "%H.%M.%S",    "%H%M%S"};
   return list;
 }
 
@@ -70,7 +72,8 @@ std::optional<GuessedTimes> best_of(std::vector<Fit> fits, std::int64_t now_us) 
   // Only day and month can be mistaken for each other.
   if (fits.size() > 1) {
     Fit& other = fits[1];
-    const bool told = other.future > 0 || other.backward > best->backward || other.span_us > 4 * best->span_us;
+    const bool told =
+        other.future > 0 || other.backward > best->backward || other.span_us > 4 * best->span_us;
     if (!told) {
       const auto distance = [now_us](const Fit& fit) { return std::abs(now_us - fit.last_us); };
       if (distance(other) < distance(*best)) best = &other;
@@ -120,11 +123,13 @@ const std::vector<std::string>& full_formats() {
   return list;
 }
 
-std::optional<GuessedTimes> one_column(const std::vector<Cells>& rows, std::size_t width, std::int64_t now_us) {
+std::optional<GuessedTimes> one_column(const std::vector<Cells>& rows, std::size_t width,
+                                       std::int64_t now_us) {
   for (const bool plain : {true, false}) {
     for (std::size_t i = 0; i < width; ++i) {
       const auto texts = column_of(rows, i);
-      auto times = best_of(fits_of(texts, plain ? std::vector<std::string>{"iso"} : full_formats(), now_us), now_us);
+      auto times =
+          best_of(fits_of(texts, plain ? std::vector<std::string>{"iso"} : full_formats(), now_us), now_us);
       if (!times) continue;
       times->time_index = i;
       return times;
@@ -133,7 +138,8 @@ std::optional<GuessedTimes> one_column(const std::vector<Cells>& rows, std::size
   return {};
 }
 
-std::optional<GuessedTimes> two_columns(const std::vector<Cells>& rows, std::size_t width, std::int64_t now_us) {
+std::optional<GuessedTimes> two_columns(const std::vector<Cells>& rows, std::size_t width,
+                                        std::int64_t now_us) {
   for (std::size_t d = 0; d < width; ++d) {
     const auto days = column_of(rows, d);
     std::vector<std::string> midnights;
@@ -176,7 +182,8 @@ std::optional<GuessedTimes> counted(const std::vector<Cells>& rows, std::size_t 
       times.time_index = i;
       times.format = format;
       times.has_zone = fit->has_zone;
-      times.unsure = "The times are plain numbers, read as " + times.format + ": compare the first with the logger.";
+      times.unsure =
+          "The times are plain numbers, read as " + times.format + ": compare the first with the logger.";
       return times;
     }
   }

@@ -26,11 +26,11 @@ bool no_blank_line(std::string_view line) {
 void CsvReader::read_header() {
   std::string_view line;
   const auto too_short = [this] {
-    fault_ = FileFault{records_.line(), "The file ends before the header: it has " +
-                                            std::to_string(records_.line()) +
-                                            " lines, the mapping says header_lines = " +
-                                            std::to_string(mapping_.header_lines) +
-                                            (mapping_.units_line ? " and a units line." : ".")};
+    fault_ =
+        FileFault{records_.line(),
+                  "The file ends before the header: it has " + std::to_string(records_.line()) +
+                      " lines, the mapping says header_lines = " + std::to_string(mapping_.header_lines) +
+                      (mapping_.units_line ? " and a units line." : ".")};
   };
   for (int i = 0; i + 1 < mapping_.header_lines; ++i) {
     if (!records_.take_line(line)) return too_short();
@@ -42,7 +42,7 @@ void CsvReader::read_header() {
     if (!records_.take_record(line, header_, split, 0)) return too_short();
     if (split != Split::whole) {
       fault_ = FileFault{records_.line(), "The header (line " + std::to_string(records_.line()) +
-                                              ") has a quote that is not closed."};
+                                              "): " + std::string(fault_text(split)) + "."};
       return;
     }
     header_line = line;
@@ -59,8 +59,8 @@ void CsvReader::read_header() {
   if (fault_) {
     fault_->line = named_line_;
     if (mapping_.header_lines > 0)
-      fault_->text += "The header (line " + std::to_string(named_line_) + ") reads: " + list_header(header_) + "." +
-                      separator_hint(header_line, mapping_.separator);
+      fault_->text += "The header (line " + std::to_string(named_line_) + ") reads: " + list_header(header_) +
+                      "." + separator_hint(header_line, mapping_.separator);
     return;
   }
   find_units();
@@ -115,10 +115,10 @@ void CsvReader::find_units() {
     if (!unit) unit = unit_in_words(above, source.channel->role);
     if (!unit) {
       fault_ = FileFault{named_line_, "Column " + quoted_text(source.column->column) +
-                                              ": unit = \"from header\", but neither " + quoted_text(above) +
-                                              " (line " + std::to_string(named_line_) +
-                                              ") nor a units line names a unit of a " +
-                                              std::string(server::text(source.channel->role)) + "."};
+                                          ": unit = \"from header\", but neither " + quoted_text(above) +
+                                          " (line " + std::to_string(named_line_) +
+                                          ") nor a units line names a unit of a " +
+                                          std::string(server::text(source.channel->role)) + "."};
       return;
     }
     source.unit = *unit;

@@ -96,8 +96,10 @@ CsvColumn read_column(const Json& json, const std::string& path) {
 
 Json column_json(const CsvColumn& column) {
   Json unit = nullptr;
-  if (column.unit_from_header) unit = "from header";
-  else if (column.unit) unit = text(*column.unit);
+  if (column.unit_from_header)
+    unit = "from header";
+  else if (column.unit)
+    unit = text(*column.unit);
   return {{"column", column.column},
           {"channel", column.channel},
           {"unit", std::move(unit)},
@@ -114,16 +116,17 @@ CsvMapping read_csv_mapping_json(std::string_view text, const Furnace& furnace, 
                                  const std::string& path) {
   const Json json = parse_body(text);
   JsonFields fields(json, path, problem_type);
-  for (const char* each : {"name", "encoding", "separator", "decimal", "thousands", "comment", "no_value",
-                           "header_lines", "units_line", "date_column", "time_format", "time_zone",
-                           "utc_offset_min"})
+  for (const char* each :
+       {"name", "encoding", "separator", "decimal", "thousands", "comment", "no_value", "header_lines",
+        "units_line", "date_column", "time_format", "time_zone", "utc_offset_min"})
     fields.ignore_null(each);
   CsvMapping mapping;
   mapping.name = name;
   if (fields.has("name")) mapping.name = fields.word("name", 40);
   if (!mapping.name.empty() && !is_id(mapping.name))
     fields.fail("name", "may hold only a-z, 0-9 and, inside, - _ . (40 at most).");
-  if (!name.empty() && mapping.name != name) fields.fail("name", "is not the one of the address, \"" + name + "\".");
+  if (!name.empty() && mapping.name != name)
+    fields.fail("name", "is not the one of the address, \"" + name + "\".");
   read_signs(fields, mapping);
   read_times(fields, mapping);
   const std::string columns_path = fields.path_of("columns");

@@ -10,9 +10,9 @@
 
 namespace hearthfront::server {
 
-// Strict. Throws Problem: 400 broken-json, or 422 invalid-mapping with `field` as `path` and the member, such as
-// "mapping.columns[0].unit". `name` is what the address calls the mapping: a "name" in the JSON must equal it;
-// empty: the JSON's own, which may be left out.
+// Strict. Throws Problem: 400 broken-json, or 422 invalid-mapping with `field` as `path` and the member, such
+// as "mapping.columns[0].unit". `name` is what the address calls the mapping: a "name" in the JSON must equal
+// it; empty: the JSON's own, which may be left out.
 CsvMapping read_csv_mapping_json(std::string_view json, const Furnace& furnace, const std::string& name,
                                  const std::string& path = "mapping");
 

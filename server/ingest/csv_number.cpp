@@ -22,7 +22,8 @@ std::size_t grouping_length(std::string_view text, char thousands) {
 
 }  // namespace
 
-std::optional<double> parse_decimal(std::string_view cell, char decimal, std::string& reason, char thousands) {
+std::optional<double> parse_decimal(std::string_view cell, char decimal, std::string& reason,
+                                    char thousands) {
   std::string number;  // as std::from_chars wants it
   std::size_t i = 0, digits = 0;
   const auto take_digits = [&] {
@@ -58,7 +59,8 @@ std::optional<double> parse_decimal(std::string_view cell, char decimal, std::st
   if (!has_mantissa || digits == 0 || i != cell.size()) {
     const char other = decimal == '.' ? ',' : '.';
     reason = quoted_text(cell) + " is not a number";
-    if (!grouped_well) reason += " (digits are not in groups of three)";
+    if (!grouped_well)
+      reason += " (digits are not in groups of three)";
     else if (has_mantissa && i < cell.size() && cell[i] == other)
       reason += std::string(" (the mapping's decimal sign is \"") + decimal + "\")";
     return {};

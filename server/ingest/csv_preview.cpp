@@ -12,7 +12,7 @@
 namespace hearthfront::server {
 namespace {
 
-constexpr std::size_t most_rows = 30, most_lines = 30, most_problems = 100;
+constexpr std::size_t most_rows = 30, most_lines = 30, most_problems = 100, most_columns = 200;
 
 std::string offset_text(int minutes) {
   if (minutes == 0) return "UTC";
@@ -40,8 +40,10 @@ class Previewer {
  private:
   void show_text() {
     seen_.encoding = reader_.text().encoding;
-    seen_.header = reader_.header();
-    seen_.units = reader_.units();
+    for (const std::string& name : reader_.header())
+      if (seen_.header.size() < most_columns) seen_.header.push_back(name);
+    for (const std::string& unit : reader_.units())
+      if (seen_.units.size() < most_columns) seen_.units.push_back(unit);
     std::string_view rest = reader_.text().text;
     for (int line = 1; !rest.empty() && seen_.raw_lines.size() < most_lines; ++line) {
       const std::size_t end = std::min(rest.find_first_of("\r\n"), rest.size());
@@ -51,7 +53,8 @@ class Previewer {
   }
 
   void read_rows() {
-    for (const CsvReader::Source& source : reader_.sources()) seen_.channels.push_back({source.channel, 0, 0, 0, {}, {}});
+    for (const CsvReader::Source& source : reader_.sources())
+      seen_.channels.push_back({source.channel, 0, 0, 0, {}, {}});
     CsvRow row;
     while (reader_.next_row(row)) {
       widest_ = std::max(widest_, row.fields.size());
@@ -122,7 +125,8 @@ class Previewer {
   void keep(const CsvRow& row) {
     CsvPreview::Row& kept = seen_.rows.emplace_back();
     kept.line = row.line;
-    for (const std::string& field : row.fields) kept.cells.push_back(clean_text(field));
+    for (const std::string& field : row.fields)
+      if (kept.cells.size() < most_columns) kept.cells.push_back(clean_text(field));
     kept.time_us = row.time_us;
     kept.reason = row.reason;
     kept.values = row.cells;
@@ -140,7 +144,7 @@ class Previewer {
 
   void describe_columns() {
     const std::vector<std::string>& header = reader_.header();
-    for (std::size_t i = 0; i < std::max(header.size(), widest_); ++i) {
+    for (std::size_t i = 0; i < std::min(std::max(header.size(), widest_), most_columns); ++i) {
       CsvPreview::Column& column = seen_.columns.emplace_back();
       column.column = "#" + std::to_string(i + 1);
       if (i < header.size() && !header[i].empty() && header[i].front() != '#' &&
@@ -148,14 +152,15 @@ class Previewer {
         column.column = header[i];
     }
     if (reader_.fault()) return;
-    const auto at = [this](std::size_t index) -> CsvPreview::Column& {
-      if (seen_.columns.size() <= index) seen_.columns.resize(index + 1);
-      return seen_.columns[index];
+    std::vector<CsvPreview::Column>& columns = seen_.columns;
+    const auto use = [&columns](std::size_t index, CsvPreview::Use as) {
+      if (index < columns.size()) columns[index].use = as;
     };
-    at(reader_.time_index()).use = CsvPreview::Use::time;
-    if (reader_.date_index()) at(*reader_.date_index()).use = CsvPreview::Use::date;
+    use(reader_.time_index(), CsvPreview::Use::time);
+    if (reader_.date_index()) use(*reader_.date_index(), CsvPreview::Use::date);
     for (const CsvReader::Source& source : reader_.sources()) {
-      CsvPreview::Column& column = at(source.index);
+      if (source.index >= columns.size()) continue;
+      CsvPreview::Column& column = columns[source.index];
       column.use = CsvPreview::Use::channel;
       column.channel = source.channel->name;
       column.unit_in_file = source.unit;
@@ -169,25 +174,32 @@ class Previewer {
 
   void warn() {
     if (seen_.encoding == Encoding::automatic && !valid_utf8(reader_.text().text))
-      add_warning("encoding", "The file is not UTF-8; its further characters are read as ISO-8859-1. Better say which "
-                              "encoding it has.");
+      add_warning("encoding",
+                  "The file is not UTF-8; its further characters are read as ISO-8859-1. Better say which "
+                  "encoding it has.");
     if (reader_.fault()) return;
     if (backward_ > 0)
-      add_warning("times run backward", "In " + std::to_string(backward_) + " rows the time is before that of the row "
-                                        "above; the first is line " + std::to_string(backward_line_) + ".");
+      add_warning("times run backward", "In " + std::to_string(backward_) +
+                                            " rows the time is before that of the row "
+                                            "above; the first is line " +
+                                            std::to_string(backward_line_) + ".");
     warn_of_clock_changes();
-    if (const auto future = seen_.refused_by_reason.find(Refusal::future_time); future != seen_.refused_by_reason.end())
-      add_warning("future", std::to_string(future->second) + " readings lie ahead of the daemon's clock: are day and "
-                            "month, and the time zone, right?");
-    for (std::size_t i = 0; i < seen_.channels.size(); ++i) warn_of_column(reader_.sources()[i], seen_.channels[i]);
+    if (const auto future = seen_.refused_by_reason.find(Refusal::future_time);
+        future != seen_.refused_by_reason.end())
+      add_warning("future", std::to_string(future->second) +
+                                " readings lie ahead of the daemon's clock: are day and "
+                                "month, and the time zone, right?");
+    for (std::size_t i = 0; i < seen_.channels.size(); ++i)
+      warn_of_column(reader_.sources()[i], seen_.channels[i]);
   }
 
   void warn_of_clock_changes() {
     if (!reader_.times().zone() || !seen_.first_us) return;
     for (const ClockChange& change : reader_.times().zone()->changes(*seen_.first_us, *seen_.last_us)) {
       add_warning("clock change", "The clocks of " + mapping_.time_zone + " change within the file, at " +
-                                      format_time(change.at_us) + ", from " + offset_text(change.before_min) + " to " +
-                                      offset_text(change.after_min) + ": look at the rows around it.");
+                                      format_time(change.at_us) + ", from " + offset_text(change.before_min) +
+                                      " to " + offset_text(change.after_min) +
+                                      ": look at the rows around it.");
     }
   }
 
@@ -195,17 +207,21 @@ class Previewer {
     const std::string column = "Column " + quoted_text(source.column->column);
     const Role role = source.channel->role;
     std::optional<FileUnit> named;
-    if (source.index < seen_.units.size()) named = unit_in_words(seen_.units[source.index], role);
-    if (!named && source.index < seen_.header.size()) named = unit_in_words(seen_.header[source.index], role);
+    if (source.index < reader_.units().size()) named = unit_in_words(reader_.units()[source.index], role);
+    if (!named && source.index < reader_.header().size())
+      named = unit_in_words(reader_.header()[source.index], role);
     if (named && *named != source.unit)
       add_warning("unit", column + " says " + std::string(text(*named)) + " in the header, but is read as " +
                               std::string(text(source.unit)) + ".");
     if (seen_.row_count > 0 && summary.readings == 0)
-      add_warning("no values", column + " gives not one reading for channel \"" + summary.channel->name + "\".");
+      add_warning("no values",
+                  column + " gives not one reading for channel \"" + summary.channel->name + "\".");
     else if (seen_.interval_s && *seen_.interval_s > summary.channel->gap_limit_s)
-      add_warning("interval", "Rows come every " + number_text(*seen_.interval_s) + " s, which is beyond the gap limit of "
-                              "channel \"" + summary.channel->name + "\" (" +
-                                  number_text(summary.channel->gap_limit_s) + " s): each would stand as a gap.");
+      add_warning("interval", "Rows come every " + number_text(*seen_.interval_s) +
+                                  " s, which is beyond the gap limit of "
+                                  "channel \"" +
+                                  summary.channel->name + "\" (" + number_text(summary.channel->gap_limit_s) +
+                                  " s): each would stand as a gap.");
   }
 
   const Furnace& furnace_;

@@ -1,5 +1,5 @@
-// What an upload of a logger file would do: its first rows decoded, totals, warnings. Stores nothing. Pure but
-// for `judge`; any thread.
+// What an upload of a logger file would do: its first rows decoded, totals, warnings. Stores nothing. Pure
+// but for `judge`; any thread.
 #pragma once
 
 #include <cstddef>
@@ -48,8 +48,8 @@ struct CsvPreview {
 
   std::optional<FileFault> fault;  // an upload would be refused as a whole
   Encoding encoding = Encoding::automatic;
-  std::vector<Line> raw_lines;  // the first 30
-  std::vector<std::string> header, units;
+  std::vector<Line> raw_lines;             // the first 30
+  std::vector<std::string> header, units;  // as everything by columns, of the first 200
   std::vector<Column> columns;
   std::vector<Row> rows;  // the first 30
   int row_count = 0, repeated_headers = 0;

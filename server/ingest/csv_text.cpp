@@ -40,7 +40,8 @@ std::size_t end_of_field(std::string_view rest, std::size_t least_blanks) {
   for (std::size_t i = 0; i < rest.size(); ++i) {
     std::size_t run = 0;
     while (i + run < rest.size() && is_blank(rest[i + run])) ++run;
-    if (run >= least_blanks || (run > 0 && rest.substr(i, run).find('\t') != std::string_view::npos)) return i;
+    if (run >= least_blanks || (run > 0 && rest.substr(i, run).find('\t') != std::string_view::npos))
+      return i;
   }
   return rest.size();
 }
@@ -50,6 +51,7 @@ Split split_at_blanks(std::string_view rest, std::size_t least_blanks, std::vect
     while (!rest.empty() && is_blank(rest.front())) rest.remove_prefix(1);
   };
   for (skip(); !rest.empty(); skip()) {
+    if (fields.size() == most_fields) return Split::too_many;
     std::string& field = fields.emplace_back();
     if (rest.front() == '"') {
       if (!take_quoted(rest, field)) return Split::open_quote;
@@ -77,9 +79,8 @@ bool fits(const std::vector<std::string>& fields, std::size_t expected) {
 Split split_record(std::string_view rest, const CsvMapping& mapping, std::vector<std::string>& fields) {
   fields.clear();
   const char separator = mapping.separator;
-  if (separator == ' ')
-    return split_at_blanks(rest, static_cast<std::size_t>(mapping.least_blanks), fields);
-  while (true) {
+  if (separator == ' ') return split_at_blanks(rest, static_cast<std::size_t>(mapping.least_blanks), fields);
+  while (fields.size() < most_fields) {
     while (!rest.empty() && rest.front() == ' ') rest.remove_prefix(1);
     std::string& field = fields.emplace_back();
     if (!rest.empty() && rest.front() == '"') {
@@ -95,6 +96,21 @@ Split split_record(std::string_view rest, const CsvMapping& mapping, std::vector
     if (rest.empty()) return Split::whole;
     rest.remove_prefix(1);
   }
+  return Split::too_many;
+}
+
+std::string_view fault_text(Split split) {
+  switch (split) {
+    case Split::whole:
+      return "";
+    case Split::open_quote:
+      return "a quote is not closed on this line";
+    case Split::text_after_quote:
+      return "text follows a closing quote";
+    case Split::too_many:
+      return "has more than 2000 fields: another separator, or no table at all?";
+  }
+  return "";
 }
 
 bool RecordReader::take_raw(std::string_view& line) {
@@ -123,20 +139,20 @@ bool RecordReader::take_record(std::string_view& record, std::vector<std::string
   const std::size_t start = static_cast<std::size_t>(record.data() - text_.data());
   const std::size_t position = position_;
   const int line = line_;
+  const auto quotes = [](std::string_view text) { return std::count(text.begin(), text.end(), '"'); };
+  auto count = quotes(record);
   std::string_view more;
   for (int i = 1; i < most_lines_of_a_record && take_raw(more); ++i) {
     const std::size_t end = static_cast<std::size_t>(more.data() - text_.data()) + more.size();
     if (end - start > longest_record) break;
-    if (more.find('"') == std::string_view::npos) continue;
+    count += quotes(more);
+    if (count % 2 != 0) continue;  // still within quotes
     const std::string_view longer = text_.substr(start, end - start);
     const Split again = split_record(longer, *mapping_, fields);
-    if (again == Split::open_quote) continue;
-    if (again == Split::whole && fits(fields, expected)) {
-      record = longer;
-      split = again;
-      return true;
-    }
-    break;
+    if (again != Split::whole || !fits(fields, expected)) break;
+    record = longer;
+    split = again;
+    return true;
   }
   position_ = position;
   line_ = line;
@@ -155,8 +171,10 @@ std::string plain_name(std::string_view name) {
   std::string plain;
   for (const char c : name) {
     const bool blank = is_blank(c) || c == '\n' || c == '\r';
-    if (!blank) plain += c;
-    else if (!plain.empty() && plain.back() != ' ') plain += ' ';
+    if (!blank)
+      plain += c;
+    else if (!plain.empty() && plain.back() != ' ')
+      plain += ' ';
   }
   if (!plain.empty() && plain.back() == ' ') plain.pop_back();
   return plain;
@@ -166,13 +184,13 @@ std::string quoted_text(std::string_view text) {
   return "\"" + clean_text(text, 60) + "\"";
 }
 
-
 std::string separator_hint(std::string_view line, char separator) {
   if (separator == ' ' || line.find(separator) != std::string_view::npos) return {};
   const auto word = [](char sign) { return sign == '\t' ? "tab" : quoted_text({&sign, 1}); };
   for (const char other : {';', ',', '\t', '|'}) {
     if (line.find(other) == std::string_view::npos) continue;
-    return " The line seems to be separated by " + word(other) + ", the mapping says " + word(separator) + ".";
+    return " The line seems to be separated by " + word(other) + ", the mapping says " + word(separator) +
+           ".";
   }
   return {};
 }

@@ -1,5 +1,5 @@
-// A logger file as text: bytes to UTF-8, lines, records and fields. RFC 4180 with what loggers do besides: any
-// of LF, CRLF and CR, comment lines, blanks as separator, quoted fields over several lines. One thread.
+// A logger file as text: bytes to UTF-8, lines, records and fields. RFC 4180 with what loggers do besides:
+// any of LF, CRLF and CR, comment lines, blanks as separator, quoted fields over several lines. One thread.
 #pragma once
 
 #include <cstddef>
@@ -25,8 +25,8 @@ struct FileText {
   FileText(const FileText&) = delete;
   FileText& operator=(const FileText&) = delete;
 
-  std::string_view text;       // without byte order mark; with `automatic` it may hold bytes that are not UTF-8
-  Encoding encoding;           // as read: of `automatic` the one that was found
+  std::string_view text;  // without byte order mark; with `automatic` it may hold bytes that are not UTF-8
+  Encoding encoding;      // as read: of `automatic` the one that was found
   std::optional<FileFault> fault;
 
  private:
@@ -34,7 +34,9 @@ struct FileText {
   std::string converted_;
 };
 
-enum class Split { whole, open_quote, text_after_quote };
+enum class Split { whole, open_quote, text_after_quote, too_many };
+inline constexpr std::size_t most_fields = 2000;  // of a record; no logger has as many channels
+std::string_view fault_text(Split split);         // "a quote is not closed on this line"; empty for whole
 
 // The fields of one record, trimmed. Quotes as in RFC 4180, spaces around them allowed.
 Split split_record(std::string_view record, const CsvMapping& mapping, std::vector<std::string>& fields);
@@ -46,9 +48,9 @@ class RecordReader {
 
   // The next line that is no comment. False at the end.
   bool take_line(std::string_view& line);
-  // The next record with its fields. A quoted field may go on over line ends, 50 lines at most; where the text
-  // up to its closing quote then is no record of `expected` fields (0: any number), the first line alone is
-  // the record and `split` tells what is wrong with it.
+  // The next record with its fields. A quoted field may go on over line ends, 50 lines at most; where the
+  // text up to its closing quote then is no record of `expected` fields (0: any number), the first line alone
+  // is the record and `split` tells what is wrong with it.
   bool take_record(std::string_view& record, std::vector<std::string>& fields, Split& split,
                    std::size_t expected);
 
@@ -68,7 +70,8 @@ int count_lines(std::string_view text);
 // Runs of blanks, tabs and line breaks as one blank each, none at the ends: header names that are broken over
 // lines compare equal to how a person writes them.
 std::string plain_name(std::string_view name);
-// " The line seems to be separated by ..." where the separator is not in the line but another one is; else empty.
+// " The line seems to be separated by ..." where the separator is not in the line but another one is; else
+// empty.
 std::string separator_hint(std::string_view line, char separator);
 std::string quoted_text(std::string_view text);  // in quotes, UTF-8, at most 60 bytes
 

@@ -94,7 +94,8 @@ std::optional<std::int64_t> RowTimes::instant(int row, std::string_view text, st
   const auto found = std::lower_bound(settled_.begin(), settled_.end(), std::pair(row, INT64_MIN));
   if (found != settled_.end() && found->first == row) return found->second;
   reason = "this time came twice in " + zone_->name() +
-           " when the clocks went back, and the rows of the file do not run forward through both hours, so which is "
+           " when the clocks went back, and the rows of the file do not run forward through both hours, so "
+           "which is "
            "meant cannot be told; send both hours in one file, or let the logger write UTC";
   return {};
 }

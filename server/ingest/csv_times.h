@@ -1,6 +1,6 @@
-// Instants of rows from what the wall clock showed, changes of the clocks included. A local time that does not
-// exist is refused. One that comes twice is told by the order of the file: where its rows run through the hour,
-// step back once and run through it again, the first pass is before the change and the second after it;
+// Instants of rows from what the wall clock showed, changes of the clocks included. A local time that does
+// not exist is refused. One that comes twice is told by the order of the file: where its rows run through the
+// hour, step back once and run through it again, the first pass is before the change and the second after it;
 // otherwise the rows of that hour are refused, never guessed. One thread.
 #pragma once
 

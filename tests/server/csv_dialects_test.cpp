@@ -1,5 +1,6 @@
-// Habits of loggers on real floors, each imported into a real store with the right instants and values. The habits:
-// common practice, no source. Instants of local times were worked out apart from this program, by Python's zoneinfo:
+// Habits of loggers on real floors, each imported into a real store with the right instants and values. The
+// habits: common practice, no source. Instants of local times were worked out apart from this program, by
+// Python's zoneinfo:
 //   datetime(2026, 10, 25, 2, 30, tzinfo=ZoneInfo("Europe/Berlin"), fold=0 or 1).astimezone(timezone.utc)
 // and for Berlin also by `TZ=Europe/Berlin date -u -d '2026-10-25 02:30:00 CEST'`.
 #include <doctest/doctest.h>
@@ -24,14 +25,16 @@ const std::string two_columns = R"("columns": [{"column": "TC1", "channel": "tem
 const std::string usual =
     "temperature 2026-03-02T06:05:00Z 928.4\ntemperature 2026-03-02T06:06:00Z 929\n"
     "carbon-potential 2026-03-02T06:05:00Z 1.08\ncarbon-potential 2026-03-02T06:06:00Z 1.09\n";
-const std::string temperatures = "temperature 2026-03-02T06:05:00Z 928.4\ntemperature 2026-03-02T06:06:00Z 929\n";
+const std::string temperatures =
+    "temperature 2026-03-02T06:05:00Z 928.4\ntemperature 2026-03-02T06:06:00Z 929\n";
 
 std::vector<Dialect> texts_and_signs() {
   return {
       {"decimal comma and semicolons, local time of Berlin",
        "Zeit;TC1;CP\n02.03.2026 07:05:00;928,4;1,08\n02.03.2026 07:06:00;929,0;1,09\n",
        R"({"separator": ";", "decimal": ",", "time_column": "Zeit", "time_format": "%d.%m.%Y %H:%M:%S",
-           "time_zone": "Europe/Berlin", )" + two_columns + "}",
+           "time_zone": "Europe/Berlin", )" +
+           two_columns + "}",
        usual},
       {"tabs and CRLF",
        "Time\tTC1\tCP\r\n2026-03-02 06:05:00\t928.4\t1.08\r\n2026-03-02 06:06:00\t929\t1.09\r\n",
@@ -47,7 +50,8 @@ std::vector<Dialect> texts_and_signs() {
        utf16(u"Time;TC1 °C\n2026-03-02 06:05;928.4\n2026-03-02 06:06;929\n", false),
        R"({"separator": ";", "time_column": "Time", "columns": [{"column": "TC1 °C", "channel": "temperature"}]})",
        temperatures},
-      {"UTF-16 little-endian without mark", utf16(u"Time;TC1\n2026-03-02 06:05;928.4\n2026-03-02 06:06;929\n", true, false),
+      {"UTF-16 little-endian without mark",
+       utf16(u"Time;TC1\n2026-03-02 06:05;928.4\n2026-03-02 06:06;929\n", true, false),
        R"({"encoding": "utf-16-le", "separator": ";", "time_column": "Time",
            "columns": [{"column": "TC1", "channel": "temperature"}]})",
        temperatures},
@@ -72,8 +76,10 @@ std::vector<Dialect> texts_and_signs() {
            "columns": [{"column": "TC1", "channel": "temperature"}, {"column": "EMF mV", "channel": "probe-emf"}]})",
        temperatures + "probe-emf 2026-03-02T06:05:00Z 1105.5\nprobe-emf 2026-03-02T06:06:00Z 1106\n"},
       {"columns aligned by blanks, date and time parted as well",
-       "Date        Time      TC1     CP\n2026-03-02  06:05:00  928.4  1.08\n2026-03-02  06:06:00    929  1.09\n",
-       R"({"separator": "spaces", "date_column": "Date", "time_column": "Time", "time_format": "%F %T", )" + two_columns + "}",
+       "Date        Time      TC1     CP\n2026-03-02  06:05:00  928.4  1.08\n2026-03-02  06:06:00    929  "
+       "1.09\n",
+       R"({"separator": "spaces", "date_column": "Date", "time_column": "Time", "time_format": "%F %T", )" +
+           two_columns + "}",
        usual},
       {"columns aligned by wide blanks, names with a blank",
        "Log time             Furnace temp   Carbon\n2026-03-02 06:05:00        928.4    1.08\n"
@@ -142,26 +148,31 @@ std::vector<Dialect> times_and_units() {
            {"column": "Carbon x100", "channel": "carbon-potential", "factor": 0.01}]})",
        "temperature 2026-03-02T06:05:00Z 22\ncarbon-potential 2026-03-02T06:05:00Z 1.08\n", 0, 0, false},
       {"words for no value, over-range among them",
-       "Time,TC1,CP\n2026-03-02 06:05,928.4,---\n2026-03-02 06:06,929,NaN\n2026-03-02 06:07,OVER,\n2026-03-02 06:08,----,n.a.\n",
+       "Time,TC1,CP\n2026-03-02 06:05,928.4,---\n2026-03-02 06:06,929,NaN\n2026-03-02 "
+       "06:07,OVER,\n2026-03-02 06:08,----,n.a.\n",
        R"({"time_column": "Time", )" + two_columns + "}", temperatures, 5},
-      {"a word for no value that only this logger has", "Time,TC1\n2026-03-02 06:05,928.4\n2026-03-02 06:06,929\n2026-03-02 06:07,offen\n",
+      {"a word for no value that only this logger has",
+       "Time,TC1\n2026-03-02 06:05,928.4\n2026-03-02 06:06,929\n2026-03-02 06:07,offen\n",
        R"({"time_column": "Time", "no_value": ["OFFEN"], "columns": [{"column": "TC1", "channel": "temperature"}]})",
        temperatures, 1, 0, false},
       {"separators at the end of every row",
        "Time;TC1;CP\n2026-03-02 06:05;928.4;1.08;\n2026-03-02 06:06;929;1.09;\n",
        R"({"separator": ";", "time_column": "Time", )" + two_columns + "}", usual},
       {"title and names again after the logger was started anew",
-       "Logger 4711\nTime;TC1;CP\n2026-03-02 06:05;928.4;1.08\n\nLogger 4711\nTime;TC1;CP\n2026-03-02 06:06;929;1.09\n",
+       "Logger 4711\nTime;TC1;CP\n2026-03-02 06:05;928.4;1.08\n\nLogger 4711\nTime;TC1;CP\n2026-03-02 "
+       "06:06;929;1.09\n",
        R"({"separator": ";", "header_lines": 2, "time_column": "Time", )" + two_columns + "}", usual},
       {"lines of comment above and among the rows",
-       "# Logger 4711\n# zone 1\nTime,TC1,CP\n2026-03-02 06:05,928.4,1.08\n# door open\n2026-03-02 06:06,929,1.09\n",
+       "# Logger 4711\n# zone 1\nTime,TC1,CP\n2026-03-02 06:05,928.4,1.08\n# door open\n2026-03-02 "
+       "06:06,929,1.09\n",
        R"({"comment": "#", "time_column": "Time", )" + two_columns + "}", usual},
       {"no names at all", "2026-03-02 06:05;928.4;1.08\n2026-03-02 06:06;929;1.09\n",
        R"({"separator": ";", "header_lines": 0, "time_column": "#1",
            "columns": [{"column": "#2", "channel": "temperature"}, {"column": "#3", "channel": "carbon-potential"}]})",
        usual, 0, 0, false},
       {"names broken over two lines", "Time,\"TC1\n[°C]\"\n2026-03-02 06:05,928.4\n2026-03-02 06:06,929\n",
-       R"({"time_column": "Time", "columns": [{"column": "TC1 [°C]", "channel": "temperature"}]})", temperatures},
+       R"({"time_column": "Time", "columns": [{"column": "TC1 [°C]", "channel": "temperature"}]})",
+       temperatures},
   };
 }
 
@@ -186,27 +197,30 @@ std::string instants(const std::vector<std::string>& times) {
 std::vector<Dialect> nights() {
   return {
       {"Berlin, clocks go back on 25 October 2026",
-       local_file({"2026-10-25 01:30", "2026-10-25 02:00", "2026-10-25 02:30", "2026-10-25 02:00", "2026-10-25 02:30",
-                   "2026-10-25 03:00"}),
+       local_file({"2026-10-25 01:30", "2026-10-25 02:00", "2026-10-25 02:30", "2026-10-25 02:00",
+                   "2026-10-25 02:30", "2026-10-25 03:00"}),
        zoned("Europe/Berlin"),
-       instants({"2026-10-24T23:30:00Z", "2026-10-25T00:00:00Z", "2026-10-25T00:30:00Z", "2026-10-25T01:00:00Z",
-                 "2026-10-25T01:30:00Z", "2026-10-25T02:00:00Z"})},
+       instants({"2026-10-24T23:30:00Z", "2026-10-25T00:00:00Z", "2026-10-25T00:30:00Z",
+                 "2026-10-25T01:00:00Z", "2026-10-25T01:30:00Z", "2026-10-25T02:00:00Z"})},
       {"Berlin, the same night by a logger with one row an hour",
        local_file({"2026-10-25 01:00", "2026-10-25 02:00", "2026-10-25 02:00", "2026-10-25 03:00"}),
        zoned("Europe/Berlin"),
-       instants({"2026-10-24T23:00:00Z", "2026-10-25T00:00:00Z", "2026-10-25T01:00:00Z", "2026-10-25T02:00:00Z"})},
+       instants(
+           {"2026-10-24T23:00:00Z", "2026-10-25T00:00:00Z", "2026-10-25T01:00:00Z", "2026-10-25T02:00:00Z"})},
       {"Berlin, the same night by a file that ends within the second pass",
-       local_file({"2026-10-25 02:20", "2026-10-25 02:40", "2026-10-25 02:00", "2026-10-25 02:20"}), zoned("Europe/Berlin"),
-       instants({"2026-10-25T00:20:00Z", "2026-10-25T00:40:00Z", "2026-10-25T01:00:00Z", "2026-10-25T01:20:00Z"})},
+       local_file({"2026-10-25 02:20", "2026-10-25 02:40", "2026-10-25 02:00", "2026-10-25 02:20"}),
+       zoned("Europe/Berlin"),
+       instants(
+           {"2026-10-25T00:20:00Z", "2026-10-25T00:40:00Z", "2026-10-25T01:00:00Z", "2026-10-25T01:20:00Z"})},
       {"Berlin, clocks go forward on 29 March 2026, one row in the hour that was not",
        local_file({"2026-03-29 01:59", "2026-03-29 02:30", "2026-03-29 03:00"}), zoned("Europe/Berlin"),
        instants({"2026-03-29T00:59:00Z", "", "2026-03-29T01:00:00Z"}), 0, 1},
       {"Chicago, clocks go back on 1 November 2026",
-       local_file({"2026-11-01 00:30", "2026-11-01 01:00", "2026-11-01 01:30", "2026-11-01 01:00", "2026-11-01 01:30",
-                   "2026-11-01 02:00"}),
+       local_file({"2026-11-01 00:30", "2026-11-01 01:00", "2026-11-01 01:30", "2026-11-01 01:00",
+                   "2026-11-01 01:30", "2026-11-01 02:00"}),
        zoned("America/Chicago"),
-       instants({"2026-11-01T05:30:00Z", "2026-11-01T06:00:00Z", "2026-11-01T06:30:00Z", "2026-11-01T07:00:00Z",
-                 "2026-11-01T07:30:00Z", "2026-11-01T08:00:00Z"})},
+       instants({"2026-11-01T05:30:00Z", "2026-11-01T06:00:00Z", "2026-11-01T06:30:00Z",
+                 "2026-11-01T07:00:00Z", "2026-11-01T07:30:00Z", "2026-11-01T08:00:00Z"})},
       {"Chicago, clocks go forward on 8 March 2026", local_file({"2026-03-08 01:59", "2026-03-08 03:00"}),
        zoned("America/Chicago"), instants({"2026-03-08T07:59:00Z", "2026-03-08T08:00:00Z"})},
       {"times that carry their offset need no zone",
@@ -237,22 +251,28 @@ void check_all(const std::vector<Dialect>& dialects) {
 
 }  // namespace
 
-TEST_CASE("dialects: texts, separators and signs") { check_all(texts_and_signs()); }
+TEST_CASE("dialects: texts, separators and signs") {
+  check_all(texts_and_signs());
+}
 
-TEST_CASE("dialects: times, units, words and lines between") { check_all(times_and_units()); }
+TEST_CASE("dialects: times, units, words and lines between") {
+  check_all(times_and_units());
+}
 
-TEST_CASE("dialects: nights in which the clocks change") { check_all(nights()); }
+TEST_CASE("dialects: nights in which the clocks change") {
+  check_all(nights());
+}
 
 TEST_CASE("the doubled hour is refused where the file does not run forward through it") {
-  for (const auto& times : std::vector<std::vector<std::string>>{
-           // one pass only: which of the two?
-           {"2026-10-25 01:59", "2026-10-25 02:30", "2026-10-25 03:00"},
-           // two rows in the wrong order are no change of the clocks
-           {"2026-10-25 01:59", "2026-10-25 02:10", "2026-10-25 02:12", "2026-10-25 02:11", "2026-10-25 02:13",
-            "2026-10-25 03:00"},
-           // newest first
-           {"2026-10-25 03:00", "2026-10-25 02:40", "2026-10-25 02:20", "2026-10-25 02:40", "2026-10-25 02:20",
-            "2026-10-25 01:59"}}) {
+  for (const auto& times :
+       std::vector<std::vector<std::string>>{// one pass only: which of the two?
+                                             {"2026-10-25 01:59", "2026-10-25 02:30", "2026-10-25 03:00"},
+                                             // two rows in the wrong order are no change of the clocks
+                                             {"2026-10-25 01:59", "2026-10-25 02:10", "2026-10-25 02:12",
+                                              "2026-10-25 02:11", "2026-10-25 02:13", "2026-10-25 03:00"},
+                                             // newest first
+                                             {"2026-10-25 03:00", "2026-10-25 02:40", "2026-10-25 02:20",
+                                              "2026-10-25 02:40", "2026-10-25 02:20", "2026-10-25 01:59"}}) {
     CAPTURE(times.size());
     const LogStore log;
     const CsvReport report = log.upload(local_file(times), log.mapping(zoned("Europe/Berlin")));

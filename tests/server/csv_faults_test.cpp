@@ -21,10 +21,12 @@ TEST_CASE("a file that does not fit its mapping is refused as a whole") {
       {"", "422 bad-csv: The file is empty."},
       {"\r\n \r\n", "422 bad-csv: The file is empty."},
       {std::string("\xff\xfeT\0i", 5),
-       "422 bad-csv: Line 1: the byte 0x69 has no meaning in UTF-16LE here: the file is cut, damaged, or in another "
+       "422 bad-csv: Line 1: the byte 0x69 has no meaning in UTF-16LE here: the file is cut, damaged, or in "
+       "another "
        "encoding."},
       {std::string("Time,\0TC1", 9),
-       "422 bad-csv: Line 1: a zero byte: the file is UTF-16 without byte order mark (say utf-16-le or utf-16-be), or "
+       "422 bad-csv: Line 1: a zero byte: the file is UTF-16 without byte order mark (say utf-16-le or "
+       "utf-16-be), or "
        "not a text at all."},
       {"Time,TC2,CP\n",
        "422 bad-csv: There is no column \"TC1\" (did you mean \"TC2\"?). The header (line 1) reads: "
@@ -46,7 +48,7 @@ TEST_CASE("a file that does not fit its mapping is refused as a whole") {
        "422 bad-csv: Column \"TC1\" stands twice; name it by number, \"#1\" is the first. The header (line "
        "1) reads: "
        "\"Time\", \"TC1\", \"TC1\", \"CP\"."},
-      {"Time,\"TC1,CP\n", "422 bad-csv: The header (line 1) has a quote that is not closed."},
+      {"Time,\"TC1,CP\n", "422 bad-csv: The header (line 1): a quote is not closed on this line."},
       {"2026-03-02T06:05:00Z,928.4,1.08\n",
        "422 bad-csv: There is no column \"Time\". There is no column \"TC1\". There is no column \"CP\". The "
        "header "

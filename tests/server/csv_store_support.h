@@ -53,7 +53,8 @@ struct LogStore {
     for (const server::Channel& channel : furnace().channels) {
       const auto id = acceptor->channel_id(furnace().id, channel.name).value();
       for (const auto& each : reader.accepted(id, server::earliest_time_us, server::latest_time_us))
-        all += channel.name + " " + server::format_time(each.time_us) + " " + server::number_text(each.value) + "\n";
+        all += channel.name + " " + server::format_time(each.time_us) + " " +
+               server::number_text(each.value) + "\n";
     }
     return all;
   }
