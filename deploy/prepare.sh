@@ -7,7 +7,7 @@ BUILD=${HEARTHFRONT_BUILD:-$ROOT/build}
 
 BUILD_PACKAGES=(g++ cmake ninja-build ccache pkg-config libcpp-httplib-dev nlohmann-json3-dev libsqlitecpp-dev
   libsqlite3-dev libspdlog-dev libeigen3-dev doctest-dev libtomlplusplus-dev libcli11-dev prometheus-cpp-dev
-  libssl-dev zlib1g-dev libbrotli-dev curl)
+  libssl-dev zlib1g-dev libbrotli-dev libhowardhinnant-date-dev tzdata curl)
 # libsundials-dev brings a large numerics stack along: only the tests that compare with it want it.
 TEST_PACKAGES=(libsundials-dev sqlite3 chromium fonts-dejavu-core)
 

@@ -14,6 +14,7 @@ Api::Api(ApiParts parts) : parts_(std::move(parts)), readers_(parts_.store.path(
 void Api::add_routes() {
   add_system_routes();
   add_reading_routes();
+  add_csv_routes();
   add_load_routes();
   add_view_routes();
   add_furnace_routes();

@@ -51,6 +51,7 @@ class Api {
  private:
   void add_system_routes();
   void add_reading_routes();
+  void add_csv_routes();
   void add_load_routes();
   void add_view_routes();
   void add_furnace_routes();
@@ -61,6 +62,10 @@ class Api {
   Response ready(const Request& request) const;
   Response take_readings(const Request& request);
   Response take_log(const Request& request);
+  Response guess_log(const Request& request);
+  Response preview_log(const Request& request);
+  Response list_mappings(const Request& request);
+  Response save_mapping(const Request& request);
   Response create_load(const Request& request);
   Response list_loads(const Request& request);
   Response show_load(const Request& request);
@@ -107,6 +112,8 @@ class Api {
   // Stores `load` as the next revision and answers with it.
   Response changed(const FoundLoad& found, const LoadDefinition& load, storage::AuditRow audit,
                    bool cancelled = false);
+  // The one that ?mapping= names, or the only one that the furnace knows.
+  CsvMapping mapping_of(const Request& request, const Furnace& furnace);
   FurnaceState state_of(const Furnace& furnace);
   ChannelHealth health_of(const Furnace& furnace, const Channel& channel, storage::Reader& reader) const;
   // The view of an open load as published; of an ended load derived again from its readings.

@@ -1,8 +1,7 @@
-// The ways in over HTTP: JSON readings and logger files.
+// Readings as JSON over HTTP.
 #include "server/api/api.h"
 #include "server/api/route_guard.h"
 #include "server/base/json_fields.h"
-#include "server/ingest/csv.h"
 #include "server/ingest/readings_json.h"
 
 namespace hearthfront::server {
@@ -10,8 +9,6 @@ namespace hearthfront::server {
 void Api::add_reading_routes() {
   parts_.http.route("POST", "/api/v1/readings",
                     guarded([this](const Request& r) { return take_readings(r); }));
-  parts_.http.route("POST", "/api/v1/furnaces/{}/log",
-                    guarded([this](const Request& r) { return take_log(r); }));
 }
 
 Response Api::take_readings(const Request& request) {
@@ -37,35 +34,6 @@ Response Api::take_readings(const Request& request) {
   body.pop_back();
   body.append(",\"results\":").append(results).append("}");
   return {200, "application/json", std::move(body), {}};
-}
-
-Response Api::take_log(const Request& request) {
-  const Furnace& furnace = find_furnace(request);
-  const auto named = request.query.find("mapping");
-  const CsvMapping* mapping = nullptr;
-  if (named != request.query.end())
-    mapping = furnace.csv_mapping(named->second);
-  else if (furnace.csv_mappings.size() == 1)
-    mapping = &furnace.csv_mappings.front();
-  if (!mapping) {
-    std::string known;
-    for (const CsvMapping& m : furnace.csv_mappings) known += (known.empty() ? "" : ", ") + m.name;
-    throw Problem{422, "unknown-mapping", "Which columns are which?",
-                  known.empty()
-                      ? "The plant file describes no logger file for this furnace ([[furnace.csv]])."
-                      : "Add ?mapping=NAME; this furnace knows: " + known + ".",
-                  "mapping"};
-  }
-  const CsvReport report = accept_csv(parts_.acceptor, request.body, furnace, *mapping);
-  for (const auto& [refusal, count] : report.refused_by_reason)
-    parts_.metrics.add_refused(text(refusal), static_cast<double>(count));
-  Json problems = Json::array();
-  for (const auto& problem : report.problems)
-    problems.push_back({{"line", problem.line}, {"reason", problem.reason}});
-  const Json json{{"rows", report.rows},           {"stored", report.stored},
-                  {"duplicate", report.duplicate}, {"conflict", report.conflict},
-                  {"refused", report.refused},     {"problems", std::move(problems)}};
-  return {200, "application/json", dumped(json), {}};
 }
 
 }  // namespace hearthfront::server

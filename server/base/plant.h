@@ -9,6 +9,7 @@
 #include <string_view>
 #include <vector>
 
+#include "server/base/csv_mapping.h"
 #include "solver/material/steel.h"
 
 namespace hearthfront::server {
@@ -45,23 +46,6 @@ struct Channel {
   double expected_interval_s = 60;
   double gap_limit_s = 300;   // a reading speaks for the time after it for so long ...
   double hold_limit_s = 600;  // ... then its value is `held` until so long after it, then `planned`
-};
-
-struct CsvColumn {
-  std::string column;  // header text, or "#3" for the third column
-  std::string channel;
-  std::optional<Unit> unit;  // of the file, where it differs from the channel's
-};
-
-struct CsvMapping {
-  std::string name;
-  char separator = ',';
-  char decimal = '.';
-  std::string time_column;
-  std::string time_format = "iso";  // or strptime words: %d.%m.%Y %H:%M:%S
-  int utc_offset_min = 0;           // of times that carry no zone
-  int header_lines = 1;             // the last of them names the columns
-  std::vector<CsvColumn> columns;
 };
 
 // A chamber, or a zone of a pusher line.

@@ -1,5 +1,4 @@
 #include <algorithm>
-#include <charconv>
 
 #include "server/base/nearest.h"
 #include "server/base/number_text.h"
@@ -107,38 +106,6 @@ void check_roles(ConfigTable& table, const Channel& channel, const std::vector<C
   }
 }
 
-bool read_column(ConfigTable& table, const Furnace& furnace, int header_lines, CsvColumn& column) {
-  table.require("column", "it is the header text of the column, or \"#3\" for the third");
-  table.require("channel", "it says where the values go");
-  const bool named = table.text("column", column.column, 1, 100);
-  std::vector<std::string> names;
-  for (const Channel& each : furnace.channels) names.push_back(each.name);
-  const Channel* channel = nullptr;
-  if (table.text("channel", column.channel)) {
-    channel = furnace.channel(column.channel);
-    if (channel == nullptr) {
-      table.fault("channel", "the furnace has no channel \"" + column.channel + "\"" +
-                                 suggestion(column.channel, names));
-    }
-  }
-  column.unit = read_unit(table, channel != nullptr ? std::optional(channel->role) : std::nullopt);
-  if (named && header_lines == 0 && column.column.front() != '#') {
-    table.fault("column", "header_lines = 0, so columns have no names; use \"#3\" for the third");
-  }
-  table.finish();
-  return named && channel != nullptr;
-}
-
-void check_ordinal(ConfigTable& table, std::string_view key, const std::string& column) {
-  if (column.empty() || column.front() != '#') return;
-  int number = 0;
-  const char* last = column.data() + column.size();
-  const auto [end, fault] = std::from_chars(column.data() + 1, last, number);
-  if (fault != std::errc{} || end != last || number < 1 || number > 1000) {
-    table.fault(key, "\"" + column + "\": expected # and a number from 1 to 1000");
-  }
-}
-
 }  // namespace
 
 Channel read_channel(ConfigTable& table, const Furnace& furnace) {
@@ -178,50 +145,6 @@ Channel read_channel(ConfigTable& table, const Furnace& furnace) {
                                     "): a value is held only after the gap began");
   }
   return channel;
-}
-
-CsvMapping read_csv_mapping(ConfigTable& table, const Furnace& furnace) {
-  CsvMapping mapping;
-  table.require("name", "an upload names the mapping by it");
-  table.require("time_column", "without it readings have no time");
-  table.require("columns", "it says which column feeds which channel");
-  read_id(table, "name", mapping.name);
-  if (table.character("separator", mapping.separator) &&
-      std::string_view(",;\t|").find(mapping.separator) == std::string_view::npos) {
-    table.fault("separator", "expected \",\", \";\", \"|\" or \"\\t\"");
-  }
-  if (table.character("decimal", mapping.decimal) && mapping.decimal != '.' && mapping.decimal != ',') {
-    table.fault("decimal", "expected \".\" or \",\"");
-  }
-  if (mapping.separator == mapping.decimal) {
-    table.fault("decimal",
-                "separator and decimal sign are the same, so a number cannot be told from two columns");
-  }
-  std::int64_t number = mapping.header_lines;
-  if (table.integer("header_lines", number, 0, 100)) mapping.header_lines = static_cast<int>(number);
-  number = mapping.utc_offset_min;
-  if (table.integer("utc_offset_min", number, -720, 840)) mapping.utc_offset_min = static_cast<int>(number);
-  if (table.text("time_column", mapping.time_column, 1, 100)) {
-    check_ordinal(table, "time_column", mapping.time_column);
-    if (mapping.header_lines == 0 && mapping.time_column.front() != '#') {
-      table.fault("time_column", "header_lines = 0, so columns have no names; use \"#1\" for the first");
-    }
-  }
-  if (table.text("time_format", mapping.time_format, 1, 100)) {
-    if (const std::string fault = time_format_fault(mapping.time_format); !fault.empty())
-      table.fault("time_format", fault);
-  }
-  std::vector<std::string> channels;
-  std::vector<ConfigTable> columns = table.tables("columns");
-  if (table.has_empty_array("columns")) table.fault("columns", "expected at least one {column, channel}");
-  for (ConfigTable& each : columns) {
-    CsvColumn column;
-    if (!read_column(each, furnace, mapping.header_lines, column)) continue;
-    check_ordinal(each, "column", column.column);
-    claim(each, "channel", column.channel, channels);
-    mapping.columns.push_back(std::move(column));
-  }
-  return mapping;
 }
 
 }  // namespace hearthfront::server

@@ -77,6 +77,10 @@ std::optional<std::string> content_of(const std::string& path, ConfigErrors& err
   return text;
 }
 
+bool has_control(std::string_view text) {
+  return std::any_of(text.begin(), text.end(), [](char c) { return (c >= 0 && c < 0x20) || c == 0x7f; });
+}
+
 std::string_view name_of(Kind kind) {
   switch (kind) {
     case Kind::boolean:
@@ -149,7 +153,7 @@ bool ConfigTable::text(std::string_view key, std::string& into, std::size_t min_
     report(member->value.place, std::string(key) + ": " + wanted);
     return false;
   }
-  if (std::any_of(text.begin(), text.end(), [](char c) { return (c >= 0 && c < 0x20) || c == 0x7f; })) {
+  if (has_control(text)) {
     report(member->value.place,
            std::string(key) + ": must not contain line breaks or other control characters");
     return false;
@@ -200,15 +204,31 @@ bool ConfigTable::number(std::string_view key, std::optional<double>& into, doub
   return true;
 }
 
-bool ConfigTable::character(std::string_view key, char& into) {
-  const ConfigMember* member = find_of(key, Kind::text, "a string of one character");
+bool ConfigTable::raw_text(std::string_view key, std::string& into) {
+  const ConfigMember* member = find_of(key, Kind::text, "a string");
   if (member == nullptr) return false;
-  const std::string& text = member->value.text;
-  if (text.size() != 1 || text[0] < 0) {
-    report(member->value.place, std::string(key) + ": expected exactly one ASCII character");
+  into = member->value.text;
+  return true;
+}
+
+bool ConfigTable::texts(std::string_view key, std::vector<std::string>& into, std::size_t most,
+                        std::size_t max_length) {
+  const ConfigMember* member = find_of(key, Kind::array, "an array of strings");
+  if (member == nullptr) return false;
+  std::vector<std::string> found;
+  for (const ConfigValue& element : member->value.array) {
+    if (element.kind != Kind::text || element.text.size() > max_length || has_control(element.text)) {
+      report(element.place, std::string(key) + ": expected strings of at most " + std::to_string(max_length) +
+                                " bytes without control characters");
+      return false;
+    }
+    found.push_back(element.text);
+  }
+  if (found.size() > most) {
+    report(member->value.place, std::string(key) + ": expected at most " + std::to_string(most) + " strings");
     return false;
   }
-  into = text[0];
+  into = std::move(found);
   return true;
 }
 
@@ -244,21 +264,6 @@ std::optional<ConfigTable> ConfigTable::table(std::string_view key) {
   const ConfigMember* member = find_of(key, Kind::table, "a table");
   if (member == nullptr) return {};
   return ConfigTable(file_, member->value, "[" + std::string(key) + "]", errors_);
-}
-
-bool ConfigTable::texts(std::string_view key, std::vector<std::string>& into) {
-  const ConfigMember* member = find_of(key, Kind::array, "an array of words, [\"...\"]");
-  if (member == nullptr) return false;
-  std::vector<std::string> words;
-  for (const ConfigValue& element : member->value.array) {
-    if (element.kind != Kind::text) {
-      report(element.place, std::string(key) + ": expected words, got " + std::string(name_of(element.kind)));
-      return false;
-    }
-    words.push_back(element.text);
-  }
-  into = std::move(words);
-  return true;
 }
 
 std::vector<ConfigTable> ConfigTable::tables(std::string_view key) {

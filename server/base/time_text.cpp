@@ -118,6 +118,14 @@ std::optional<std::int64_t> time_us_from(const CivilTime& civil, int utc_offset_
   return time_us;
 }
 
+std::optional<std::int64_t> instant_of(const WrittenTime& written, int utc_offset_min, std::string& reason) {
+  if (written.has_zone) return written.us;
+  const std::int64_t us = written.us - std::int64_t{utc_offset_min} * 60'000'000;
+  if (us >= earliest_time_us && us <= latest_time_us) return us;
+  reason = "the offset carries the time beyond the years 0000 to 9999";
+  return {};
+}
+
 std::optional<std::int64_t> parse_time(std::string_view text, std::string& reason) {
   Scanner scan(text);
   CivilTime civil;
@@ -145,7 +153,7 @@ std::optional<std::int64_t> parse_time(std::string_view text, std::string& reaso
   return time_us_from(civil, offset_min, reason);
 }
 
-std::optional<std::int64_t> parse_loose_time(std::string_view text, int utc_offset_min, std::string& reason) {
+std::optional<WrittenTime> parse_loose_time(std::string_view text, std::string& reason) {
   Scanner scan(text);
   CivilTime civil;
   if (text.empty()) {
@@ -169,13 +177,22 @@ std::optional<std::int64_t> parse_loose_time(std::string_view text, int utc_offs
     // Loggers that write a decimal comma use it here as well (ISO 8601 allows both signs).
     if ((scan.take('.') || scan.take(',')) && !scan_fraction(scan, civil, reason)) return {};
   }
-  int offset_min = utc_offset_min;
-  if (!scan.at_end() && !scan_zone(scan, offset_min, reason)) return {};
+  const bool has_zone = !scan.at_end();
+  int offset_min = 0;
+  if (has_zone && !scan_zone(scan, offset_min, reason)) return {};
   if (!scan.at_end()) {
     reason = "something follows the zone";
     return {};
   }
-  return time_us_from(civil, offset_min, reason);
+  const std::optional<std::int64_t> us = time_us_from(civil, offset_min, reason);
+  if (!us) return {};
+  return WrittenTime{*us, has_zone};
+}
+
+std::optional<std::int64_t> parse_loose_time(std::string_view text, int utc_offset_min, std::string& reason) {
+  const std::optional<WrittenTime> written = parse_loose_time(text, reason);
+  if (!written) return {};
+  return instant_of(*written, utc_offset_min, reason);
 }
 
 std::string format_time(std::int64_t time_us) {

@@ -21,12 +21,22 @@ struct CivilTime {
 // scale); `reason` then says which.
 std::optional<std::int64_t> time_us_from(const CivilTime& civil, int utc_offset_min, std::string& reason);
 
+// A time as a file writes it: an instant where it carries its zone, else what a clock on the wall showed.
+struct WrittenTime {
+  std::int64_t us = 0;  // UTC with a zone; else the wall clock counted as though it were UTC
+  bool has_zone = false;
+};
+// The instant, without zone at `utc_offset_min` minutes east of Greenwich. Empty with `reason` where that
+// leaves the years 0000 to 9999.
+std::optional<std::int64_t> instant_of(const WrittenTime& written, int utc_offset_min, std::string& reason);
+
 // Full RFC 3339: date, T, time, optional fraction of 1 to 9 digits (cut to microseconds), Z or an offset.
 // Empty with `reason` otherwise.
 std::optional<std::int64_t> parse_time(std::string_view text, std::string& reason);
 
-// The same, but tolerant as logger files are: a space instead of T, seconds may be missing, and a time
-// without zone is taken at `utc_offset_min` minutes east of Greenwich.
+// The same, but tolerant as logger files are: a space instead of T, seconds and zone may be missing.
+std::optional<WrittenTime> parse_loose_time(std::string_view text, std::string& reason);
+// A time without zone is taken at `utc_offset_min` minutes east of Greenwich.
 std::optional<std::int64_t> parse_loose_time(std::string_view text, int utc_offset_min, std::string& reason);
 
 // "2026-03-02T06:05:00Z"; a fraction only where it is not zero, without trailing zeros.

@@ -117,7 +117,6 @@ class Feed {
  public:
   Feed(const FeedOptions& options, const Furnace& furnace, const CsvMapping& mapping)
       : options_(options),
-        mapping_(mapping),
         tail_(options.file, furnace, mapping),
         client_(options.address, options.port),
         stop_(client_) {
@@ -127,7 +126,7 @@ class Feed {
     client_.set_keep_alive(true);
     client_.set_tcp_nodelay(true);
     log_path_ = "/api/v1/furnaces/" + furnace.id +
-                "/log?mapping=" + httplib::detail::encode_query_param(mapping.name);
+                "/log?part=true&mapping=" + httplib::detail::encode_query_param(mapping.name);
   }
 
   int run() {
@@ -302,7 +301,7 @@ class Feed {
       }
       // The daemon counts the lines of what it was sent; people look into the file.
       const auto row =
-          static_cast<std::size_t>(std::max(problem.value("line", 0) - mapping_.header_lines - 1, 0));
+          static_cast<std::size_t>(std::max(problem.value("line", 0) - tail_.header_count() - 1, 0));
       const int line = row < count ? rows_[row].line : 0;
       complain(options_.file + ", line " + std::to_string(line) + ": " +
                problem.value("reason", "no reason given"));
@@ -311,7 +310,6 @@ class Feed {
   }
 
   const FeedOptions& options_;
-  const CsvMapping& mapping_;
   LogTail tail_;
   httplib::Client client_;
   StopSignal stop_;

@@ -35,6 +35,8 @@ bool LogTail::open() {
   position_ = consumed_ = 0;
   line_ = 0;
   header_.clear();
+  header_count_ = 0;
+  header_missing_ = mapping_.lines_above_rows();
   header_checked_ = false;
   return true;
 }
@@ -85,6 +87,14 @@ bool LogTail::take_line(std::string& line, bool growing) {
 // Lets the daemon's own decoder look at the header, so that a wrong mapping is told at once.
 bool LogTail::check_header() {
   header_checked_ = true;
+  const Encoding encoding = mapping_.encoding;
+  if (header_.starts_with("\xff\xfe") || header_.starts_with("\xfe\xff") || encoding == Encoding::utf16 ||
+      encoding == Encoding::utf16_le || encoding == Encoding::utf16_be) {
+    problem_ = path_ +
+               " is UTF-16, which cannot be followed line by line; let the logger write UTF-8 or "
+               "Windows-1252, or upload the file.";
+    return false;
+  }
   if (mapping_.header_lines == 0) return true;
   const CsvReader reader(header_, furnace_, mapping_);
   if (reader.problem()) problem_ = path_ + ": " + reader.problem()->title + ". " + reader.problem()->detail;
@@ -112,8 +122,10 @@ bool LogTail::fill(std::deque<LogRow>& rows, std::size_t wanted, bool growing) {
   }
   std::string line;
   while (rows.size() < wanted && take_line(line, growing)) {
-    if (line_ <= mapping_.header_lines) {
+    if (header_missing_ > 0) {
       header_ += line + "\n";
+      ++header_count_;
+      if (mapping_.comment.empty() || !line.starts_with(mapping_.comment)) --header_missing_;
       continue;
     }
     if (!header_checked_ && !check_header()) return false;

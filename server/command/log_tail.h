@@ -29,6 +29,7 @@ class LogTail {
   bool fill(std::deque<LogRow>& rows, std::size_t wanted, bool growing);
 
   const std::string& header() const { return header_; }  // the mapping's header lines, each with a line end
+  int header_count() const { return header_count_; }     // lines in it, comments included
   const std::string& problem() const { return problem_; }
   bool started_over() const {
     return started_over_;
@@ -50,6 +51,7 @@ class LogTail {
   std::uintmax_t consumed_ = 0;
   int line_ = 0;
   std::string header_;
+  int header_count_ = 0, header_missing_ = 0;
   bool header_checked_ = false;
   bool started_over_ = false;
   std::int64_t last_time_us_ = INT64_MIN;

@@ -100,6 +100,7 @@ int replay(const ReplayOptions& options) {
   const std::string log = read_file(options.log_path);
   const DecodedCsv decoded = decode_csv(log, furnace, *mapping);
   if (decoded.problem) throw Problem(*decoded.problem);
+  if (decoded.misfit) throw Problem(*decoded.misfit);
   const FileReadings readings(decoded, furnace);
   if (readings.refused() + readings.conflicts() > 0)
     std::fprintf(stderr,

@@ -154,6 +154,11 @@ ReadingOutcome Acceptor::check(const RawReading& item, std::int64_t now_us, cons
   return {};
 }
 
+ReadingOutcome Acceptor::would_be(const RawReading& item) const {
+  const Known* known = nullptr;
+  return check(item, clock_.now_us(), known);
+}
+
 void Acceptor::append(const std::vector<RawReading>& items, std::size_t from, std::size_t to,
                       Accepted& accepted) const {
   const std::int64_t now_us = clock_.now_us();

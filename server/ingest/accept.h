@@ -48,6 +48,9 @@ class Acceptor {
   // Any number of items; appended in groups of max_batch.
   Accepted accept(const std::vector<RawReading>& items) const;
 
+  // What accept() would refuse the item for, without storing anything; `stored` where it would not.
+  ReadingOutcome would_be(const RawReading& item) const;
+
   std::size_t batch_size() const { return limits_.max_batch; }
 
   // The store's id of a channel; empty where the plant has no such channel.
@@ -78,13 +81,20 @@ struct CsvReport {
   };
   int rows = 0;
   std::size_t stored = 0, duplicate = 0, conflict = 0, refused = 0;
+  std::size_t no_value = 0;  // cells with a word that means so; neither stored nor refused
   std::map<Refusal, std::size_t> refused_by_reason;
   std::vector<RowProblem> problems;  // the first `max_problems`, one for each line and reason
 };
 
-// Decodes and accepts a logger file in groups, so that memory stays bounded. Throws Problem for a file
-// that cannot be read at all, and where the store fails part of the way (the text then says how far it got).
+// whole: rows that show that the mapping is not this file's refuse all of it, before anything is stored.
+// part: a stretch of a growing file, of which only the header must fit; its rows stand for themselves.
+enum class CsvExtent { whole, part };
+
+// Decodes and accepts a logger file in groups, so that memory stays bounded. Throws Problem for a file that
+// is refused as a whole (nothing is stored then), and where the store fails part of the way (the text then
+// says how far it got).
 CsvReport accept_csv(const Acceptor& acceptor, std::string_view text, const Furnace& furnace,
-                     const CsvMapping& mapping, std::size_t max_problems = 100);
+                     const CsvMapping& mapping, CsvExtent extent = CsvExtent::whole,
+                     std::size_t max_problems = 100);
 
 }  // namespace hearthfront::server

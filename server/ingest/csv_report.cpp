@@ -28,10 +28,17 @@ void add_problems(const std::vector<RawReading>& items, const Accepted& accepted
 }  // namespace
 
 CsvReport accept_csv(const Acceptor& acceptor, std::string_view text, const Furnace& furnace,
-                     const CsvMapping& mapping, std::size_t max_problems) {
+                     const CsvMapping& mapping, CsvExtent extent, std::size_t max_problems) {
   CsvReport report;
+  if (extent == CsvExtent::whole) {
+    CsvReader rehearsal(text, furnace, mapping);
+    CsvRow row;
+    while (rehearsal.next_row(row)) {
+    }
+    if (const auto misfit = rehearsal.misfit()) throw bad_csv(mapping, *misfit);
+  }
   CsvReader reader(text, furnace, mapping);
-  if (reader.problem()) throw Problem(*reader.problem());
+  if (const auto problem = reader.problem()) throw Problem(*problem);
   std::vector<RawReading> items;
   int last_line = 0;
   while (items.clear(), reader.next(items, acceptor.batch_size())) {
@@ -56,6 +63,7 @@ CsvReport accept_csv(const Acceptor& acceptor, std::string_view text, const Furn
     last_line = items.back().line;
   }
   report.rows = reader.rows();
+  report.no_value = reader.tally().no_value;
   return report;
 }
 

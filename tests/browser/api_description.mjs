@@ -59,6 +59,29 @@ await check('readings and logs', async () => {
   expect(sent.status === 200 && sent.body.stored === 3 && sent.body.problems.length > 0, JSON.stringify(sent.body));
 });
 
+await check('how logger files are read', async () => {
+  const octets = (...parts) => ({ headers: { 'content-type': 'application/octet-stream' }, body: parts.join('') });
+  const file = `Date;Time;Furnace °F;CO %;EMF V\n` + Array.from({ length: 20 }, (_, m) => {
+    const [date, clock] = iso(start_ms + (60 + m) * MINUTE_MS).slice(0, 19).split('T');
+    return `${date};${clock};1706,5;20,1;${m === 7 ? '---' : '1,105'}\n`;
+  }).join('');
+  const base = '/api/v1/furnaces/{furnace}', url = '/api/v1/furnaces/pit-2';
+  const guess = await call(daemon, `${base}/log/guess`, 'post', `${url}/log/guess`, octets(file));
+  expect(guess.status === 200 && guess.body.preview.fits, JSON.stringify(guess.body).slice(0, 400));
+  expect(guess.body.preview.totals.readings === 59 && guess.body.preview.totals.no_value === 1, JSON.stringify(guess.body.preview.totals));
+  const preview = await call(daemon, `${base}/log/preview`, 'post', `${url}/log/preview`, octets(JSON.stringify(guess.body.mapping), '\n', file));
+  expect(JSON.stringify(preview.body) === JSON.stringify(guess.body.preview), 'guess and preview differ');
+  const unfit = await call(daemon, `${base}/log/preview`, 'post', `${url}/log/preview?mapping=logger`, octets(file));
+  expect(unfit.status === 200 && !unfit.body.fits && unfit.body.problem.line === 1, JSON.stringify(unfit.body.problem));
+  const save = { person: 'Test', mapping: guess.body.mapping, expected_version: 0 };
+  const saved = await call(daemon, `${base}/mappings/{mapping}`, 'put', `${url}/mappings/invented`, json(save));
+  expect(saved.status === 200 && saved.body.version === 1, JSON.stringify(saved.body));
+  const again = await call(daemon, `${base}/mappings/{mapping}`, 'put', `${url}/mappings/invented`, json(save));
+  expect(again.status === 409, JSON.stringify(again.body));
+  const list = await call(daemon, `${base}/mappings`, 'get', `${url}/mappings`);
+  expect(list.body.mappings.map((m) => `${m.name} ${m.source}`).join() === 'invented library,logger plant file', JSON.stringify(list.body).slice(0, 300));
+});
+
 await check('a load from its start to its end', async () => {
   const made = await call(daemon, '/api/v1/loads', 'post', '/api/v1/loads', json(body));
   expect(made.status === 201, JSON.stringify(made.body));

@@ -34,6 +34,7 @@ Routes described() {
       path = with_plain_places(line.substr(2, line.size() - 3));
     if (line == "    get:") routes.insert("GET " + path);
     if (line == "    post:") routes.insert("POST " + path);
+    if (line == "    put:") routes.insert("PUT " + path);
   }
   return routes;
 }

@@ -88,7 +88,7 @@ TEST_CASE("columns by number, with and without a header") {
 
 TEST_CASE("a column in degF is converted into the channel's degC") {
   CsvMapping fahrenheit = mapping();
-  fahrenheit.columns[0].unit = Unit::degf;
+  fahrenheit.columns[0].unit = FileUnit::degf;
   // 1706 degF = 930 degC by the definition of the scales.
   CHECK(decoded("Time,TC1,CP\n2026-03-02T06:05:00Z,1706,\n", fahrenheit) ==
         "2 temperature 2026-03-02T06:05:00Z 930\n");

@@ -74,5 +74,6 @@ TEST_CASE("a pattern must fix day and time of day, once each") {
   CHECK(time_format_fault("%F %T %d") == "%d stands twice");
   CHECK(time_format_fault("%F %T %") == "a single % stands at the end");
   CHECK(time_format_fault("%F %T %Q") ==
-        "%Q is not known; use %Y %y %m %d %H %I %p %M %S %f %z %F %T, or \"iso\"");
+        "%Q is not known; use %Y %y %m %b %d %H %I %p %M %S %f %z %F %T, or \"iso\", \"epoch_s\", "
+        "\"epoch_ms\", \"serial_day\"");
 }

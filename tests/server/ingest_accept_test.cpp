@@ -225,7 +225,8 @@ TEST_CASE("a logger file goes in and reports by line") {
   CHECK(report.problems[3].line == 8);
   CHECK(report.problems[3].reason == "broken row: has 2 fields, the mapping needs 3.");
 
-  const CsvReport again = accept_csv(*bench.acceptor, file, bench.plant.furnaces[0], mapping(), 1);
+  const CsvReport again =
+      accept_csv(*bench.acceptor, file, bench.plant.furnaces[0], mapping(), CsvExtent::whole, 1);
   CHECK(again.stored == 0);
   CHECK(again.duplicate == 4);  // both values of the conflict are stored, so both are known already
   CHECK(again.conflict == 0);

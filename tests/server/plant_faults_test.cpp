@@ -142,8 +142,25 @@ TEST_CASE("mistakes in a logger mapping") {
   check_all(
       csv,
       {
-          {"separator = \"::\"\n", "p.toml:12:13: separator: expected exactly one ASCII character"},
-          {"separator = \" \"\n", "p.toml:12:13: separator: expected \",\", \";\", \"|\" or \"\\t\""},
+          {"separator = \"::\"\n",
+           "p.toml:12:13: separator: expected \",\", \";\", \"|\", \"\\t\", \"spaces\" or \"wide_spaces\""},
+          {"encoding = \"latin1\"\n",
+           "p.toml:12:12: encoding: expected auto, utf-8, utf-16, utf-16-le, utf-16-be, windows-1252 or "
+           "iso-8859-1"},
+          {"thousands = \"_\"\n", "p.toml:12:13: thousands: expected \".\", \",\", \"'\" or \" \""},
+          {"thousands = \".\"\n", "p.toml:12:13: thousands: is the decimal sign as well"},
+          {"thousands = \",\"\n", "p.toml:12:13: thousands: is the separator as well"},
+          {"time_zone = \"Europe/Berln\"\n",
+           "p.toml:12:13: time_zone: no time zone is called \"Europe/Berln\" (did you mean "
+           "\"Europe/Berlin\"?); expected a name such as \"Europe/Berlin\" or \"America/Chicago\""},
+          {"time_zone = \"Europe/Berlin\"\nutc_offset_min = 60\n",
+           "p.toml:13:18: utc_offset_min: give either time_zone or utc_offset_min, not both"},
+          {"date_column = \"Time\"\n",
+           "p.toml:12:15: date_column: is the time column as well; leave it out where one column holds both"},
+          {"date_column = \"Date\"\ntime_format = \"epoch_s\"\n",
+           "p.toml:12:15: date_column: time_format = \"epoch_s\" holds the day already"},
+          {"no_value = [\"---\", 5]\n",
+           "p.toml:12:20: no_value: expected strings of at most 40 bytes without control characters"},
           {"decimal = \"'\"\n", "p.toml:12:11: decimal: expected \".\" or \",\""},
           {"decimal = \",\"\n",
            "p.toml:12:11: decimal: separator and decimal sign are the same, so a number cannot be told from "
@@ -155,9 +172,9 @@ TEST_CASE("mistakes in a logger mapping") {
            "p.toml:11:15: time_column: header_lines = 0, so columns have no names; use \"#1\" for the first\n"
            "p.toml:13:22: column: header_lines = 0, so columns have no names; use \"#3\" for the third"},
           {"time_format = \"%d.%m.%Y\"\n", "p.toml:12:15: time_format: needs either %H or %I for the hour"},
-          {"time_format = \"%d.%b.%Y %H:%M\"\n",
-           "p.toml:12:15: time_format: %b is not known; use %Y %y %m %d %H %I %p %M %S %f %z %F %T, or "
-           "\"iso\""},
+          {"time_format = \"%d.%B.%Y %H:%M\"\n",
+           "p.toml:12:15: time_format: %B is not known; use %Y %y %m %b %d %H %I %p %M %S %f %z %F %T, or "
+           "\"iso\", \"epoch_s\", \"epoch_ms\", \"serial_day\""},
           {"time_formt = \"iso\"\n",
            "p.toml:12:1: [[csv]]: unknown key \"time_formt\" (did you mean \"time_format\"?)"},
       },
@@ -171,7 +188,9 @@ TEST_CASE("mistakes in a logger mapping") {
                 {"columns = [{column = \"T\", channel = \"t\"}, {column = \"U\", channel = \"t\"}]\n",
                  "p.toml:12:68: channel: \"t\" is taken already"},
                 {"columns = [{column = \"T\", channel = \"t\", unit = \"mV\"}]\n",
-                 "p.toml:12:49: unit: temperature is given in \"degC\" or \"degF\", not in \"mV\""},
+                 "p.toml:12:49: unit: temperature is given in \"degC\", \"degF\" or \"K\", not in \"mV\""},
+                {"columns = [{column = \"T\", channel = \"t\", factor = 0}]\n",
+                 "p.toml:12:51: factor: must be a number other than 0"},
                 {"columns = [{column = \"#0\", channel = \"t\"}]\n",
                  "p.toml:12:22: column: \"#0\": expected # and a number from 1 to 1000"},
                 {"columns = [{channel = \"t\"}]\n",

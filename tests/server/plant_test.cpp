@@ -141,7 +141,7 @@ columns = [{column = "TC1", channel = "temperature", unit = "degF"}, {column = "
   CHECK(mapping->header_lines == 2);
   CHECK(mapping->utc_offset_min == 60);
   REQUIRE(mapping->columns.size() == 2);
-  CHECK(mapping->columns[0].unit == Unit::degf);
+  CHECK(mapping->columns[0].unit == FileUnit::degf);
   CHECK(mapping->columns[1].column == "#4");
   CHECK(!mapping->columns[1].unit);
 }
