@@ -9,7 +9,7 @@ namespace hearthfront::solver {
 inline namespace HF_KERNEL_BUILD {
 
 template <std::size_t W>
-Pack<W> fast_exp(const Pack<W>& x) {
+HF_INLINE Pack<W> fast_exp(const Pack<W>& x) {
   using P = Pack<W>;
   // x = n ln2 + r with |r| <= ln2/2; exp(r) by its Taylor polynomial of degree 12, remainder 1.7e-16.
   constexpr double log2_e = 1.4426950408889634;
@@ -24,10 +24,13 @@ Pack<W> fast_exp(const Pack<W>& x) {
   const P r = fused(-ln2_low, n, fused(-ln2_high, n, x));
   P p = P::all(1.0 / 479001600.0);
   for (const double term : inverse_factorial) p = fused(p, r, P::all(term));
-  for (std::size_t i = 0; i < P::parts; ++i) {
-    const auto exponent = (__builtin_bit_cast(typename P::Bits, shifted.part[i]) + 1023u) << 52u;
-    p.part[i] *= __builtin_bit_cast(typename P::Unit, exponent);
-  }
+  each_unit<W>(
+      [](auto& unit, const auto& rounded) {
+        using Bits = typename UnitOf<sizeof(unit) / sizeof(double)>::Bits;
+        const Bits power = (__builtin_bit_cast(Bits, rounded) + 1023u) << 52u;
+        unit *= __builtin_bit_cast(typename UnitOf<sizeof(unit) / sizeof(double)>::Double, power);
+      },
+      p, shifted);
   return p;
 }
 

@@ -31,7 +31,7 @@ struct Width {
 // Calls f(at, width) for all nodes, in packs of `width` doubles that begin at index `at`: one node of W
 // lanes, or several nodes of one lane.
 template <std::size_t W, class F>
-void in_packs(std::size_t nodes, F f) {
+HF_INLINE void in_packs(std::size_t nodes, F f) {
   if constexpr (W > 1) {
     for (std::size_t at = 0; at < nodes * W; at += W) f(at, Width<W>{});
   } else {
@@ -52,7 +52,7 @@ struct Sweep {
   P ahead{P::all(0.0)}, inverse{P::all(0.0)};  // of the last row
 
   // Makes the row of M + gamma dt K diag(D), eliminates what is behind, and takes the right side along.
-  void factor(std::size_t i, const BlockStep& b, double gamma_dt, const Scratch& s) {
+  HF_INLINE void factor(std::size_t i, const BlockStep& b, double gamma_dt, const Scratch& s) {
     const std::size_t at = i * W, next = towards > 0 ? at + W : at - W;
     const double g = b.conductance_per_m[towards > 0 ? i + 1 : i];
     const P out = g * (P::load(s.phi + at) - P::load(s.phi + next));
@@ -75,7 +75,7 @@ struct Sweep {
   }
 
   // The right side alone, through rows that are factored.
-  void forward(std::size_t i, const BlockStep& b, const Scratch& s, double* __restrict to) {
+  HF_INLINE void forward(std::size_t i, const BlockStep& b, const Scratch& s, double* __restrict to) {
     const std::size_t at = i * W, next = towards > 0 ? at + W : at - W;
     const double g = b.conductance_per_m[towards > 0 ? i + 1 : i];
     const P out = g * (P::load(s.phi + at) - P::load(s.phi + next));
@@ -88,8 +88,8 @@ struct Sweep {
 // (M + gamma dt K diag(D)) k1 = divergence of phi + flux at the surface, as far as the middle, which is
 // solved.
 template <std::size_t W>
-void factor_and_sweep(const BlockStep& b, double gamma_dt, const Pack<W>& film, const Pack<W>& surface_flux,
-                      const Scratch& s) {
+HF_INLINE void factor_and_sweep(const BlockStep& b, double gamma_dt, const Pack<W>& film,
+                                const Pack<W>& surface_flux, const Scratch& s) {
   using P = Pack<W>;
   const std::size_t n = b.nodes, middle = n / 2;  // one more row on the left of it than on the right
   Sweep<W, +1> left{.flux = surface_flux, .own = film};
@@ -114,7 +114,8 @@ void factor_and_sweep(const BlockStep& b, double gamma_dt, const Pack<W>& film, 
 
 // The same for another phi and the factors that factor_and_sweep left.
 template <std::size_t W>
-void sweep(const BlockStep& b, const Pack<W>& surface_flux, const Scratch& s, double* __restrict to) {
+HF_INLINE void sweep(const BlockStep& b, const Pack<W>& surface_flux, const Scratch& s,
+                     double* __restrict to) {
   using P = Pack<W>;
   const std::size_t n = b.nodes, middle = n / 2;
   Sweep<W, +1> left{.flux = surface_flux, .own = P::all(0.0)};
@@ -131,7 +132,7 @@ void sweep(const BlockStep& b, const Pack<W>& surface_flux, const Scratch& s, do
 
 // From the middle outwards. f(at, value) is told every value beside its being stored.
 template <std::size_t W, class F>
-void back(std::size_t n, const Scratch& s, double* __restrict x, F f) {
+HF_INLINE void back(std::size_t n, const Scratch& s, double* __restrict x, F f) {
   using P = Pack<W>;
   const std::size_t middle = n / 2;
   P left = P::load(x + middle * W), right = left;

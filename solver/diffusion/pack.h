@@ -22,118 +22,159 @@
 namespace hearthfront::solver {
 inline namespace HF_KERNEL_BUILD {
 
-// What a pack is made of: the widest of these that it fills.
-struct Scalar {
+// Small functions in the inner loops; called, they would pass packs through memory.
+#define HF_INLINE [[gnu::always_inline]] inline
+
+// The units that packs are made of. InMemory is a unit wherever a double may stand.
+template <std::size_t W>
+struct UnitOf {
+  using Double [[gnu::vector_size(W * sizeof(double))]] = double;
+  using Bits [[gnu::vector_size(W * sizeof(double))]] = std::uint64_t;
+  using InMemory [[gnu::vector_size(W * sizeof(double)), gnu::aligned(8), gnu::may_alias]] = double;
+};
+template <>
+struct UnitOf<1> {
   using Double = double;
   using Bits = std::uint64_t;
+  using InMemory = double;
 };
-struct TwoWide {
-  using Double [[gnu::vector_size(16)]] = double;
-  using Bits [[gnu::vector_size(16)]] = std::uint64_t;
-};
-template <std::size_t W>
-struct UnitOf : TwoWide {};
-template <>
-struct UnitOf<1> : Scalar {};
 
 // a b + c: one rounding where the build has the instruction, two where it has not.
 #if defined(HF_KERNEL_AVX2)
-struct FourWide {
-  using Double [[gnu::vector_size(32)]] = double;
-  using Bits [[gnu::vector_size(32)]] = std::uint64_t;
-};
-template <>
-struct UnitOf<4> : FourWide {};
-template <>
-struct UnitOf<8> : FourWide {};
 inline constexpr std::size_t widest = 4;
 
-inline double fused_unit(double a, double b, double c) {
+HF_INLINE double fused_unit(double a, double b, double c) {
   return __builtin_fma(a, b, c);
 }
-inline TwoWide::Double fused_unit(TwoWide::Double a, TwoWide::Double b, TwoWide::Double c) {
+HF_INLINE __m128d fused_unit(__m128d a, __m128d b, __m128d c) {
   return _mm_fmadd_pd(a, b, c);
 }
-inline FourWide::Double fused_unit(FourWide::Double a, FourWide::Double b, FourWide::Double c) {
+HF_INLINE __m256d fused_unit(__m256d a, __m256d b, __m256d c) {
   return _mm256_fmadd_pd(a, b, c);
 }
 #else
 inline constexpr std::size_t widest = 2;
 
 template <class Unit>
-Unit fused_unit(Unit a, Unit b, Unit c) {
+HF_INLINE Unit fused_unit(Unit a, Unit b, Unit c) {
   return a * b + c;
 }
 #endif
 
+// One unit, or two halves. (An array of units would live in memory: the compiler takes only named members
+// apart early enough.)
+template <std::size_t W, bool one = (W <= widest)>
+struct Parts {
+  typename UnitOf<W>::Double unit;
+};
 template <std::size_t W>
-struct Pack {
-  using Unit = typename UnitOf<W>::Double;
-  using Bits = typename UnitOf<W>::Bits;
+struct Parts<W, false> {
+  Parts<W / 2> low, high;
+};
+
+// Calls f(unit of a, units of b...) for each unit.
+template <std::size_t W, class F, class... More>
+HF_INLINE void each_unit(F f, Parts<W>& a, const More&... b) {
+  if constexpr (W <= widest) {
+    f(a.unit, b.unit...);
+  } else {
+    each_unit<W / 2>(f, a.low, b.low...);
+    each_unit<W / 2>(f, a.high, b.high...);
+  }
+}
+
+template <std::size_t W>
+HF_INLINE void fill_parts(Parts<W>& p, double x) {
+  using Double = typename UnitOf<W>::Double;
+  if constexpr (W > widest) {
+    fill_parts<W / 2>(p.low, x);
+    p.high = p.low;
+  } else if constexpr (W == 1) {
+    p.unit = x;
+  } else if constexpr (W == 2) {
+    p.unit = Double{x, x};
+  } else {
+    p.unit = Double{x, x, x, x};
+  }
+}
+template <std::size_t W>
+HF_INLINE void load_parts(Parts<W>& p, const double* from) {
+  if constexpr (W <= widest) {
+    p.unit = *reinterpret_cast<const typename UnitOf<W>::InMemory*>(from);
+  } else {
+    load_parts<W / 2>(p.low, from);
+    load_parts<W / 2>(p.high, from + W / 2);
+  }
+}
+template <std::size_t W>
+HF_INLINE void store_parts(const Parts<W>& p, double* to) {
+  if constexpr (W <= widest) {
+    *reinterpret_cast<typename UnitOf<W>::InMemory*>(to) = p.unit;
+  } else {
+    store_parts<W / 2>(p.low, to);
+    store_parts<W / 2>(p.high, to + W / 2);
+  }
+}
+
+template <std::size_t W>
+struct Pack : Parts<W> {
   static constexpr std::size_t size = W;
-  static constexpr std::size_t parts = W * sizeof(double) / sizeof(Unit);
 
-  Unit part[parts];
-
-  static Pack all(double x) {
+  HF_INLINE static Pack all(double x) {
     Pack p;
-    for (Unit& u : p.part) u = Unit{} + x;
+    fill_parts<W>(p, x);
     return p;
   }
   // No alignment asked for.
-  static Pack load(const double* from) {
+  HF_INLINE static Pack load(const double* from) {
     Pack p;
-    for (std::size_t i = 0; i < parts; ++i)
-      __builtin_memcpy(&p.part[i], from + i * (W / parts), sizeof(Unit));
+    load_parts<W>(p, from);
     return p;
   }
-  void store(double* to) const {
-    for (std::size_t i = 0; i < parts; ++i) __builtin_memcpy(to + i * (W / parts), &part[i], sizeof(Unit));
-  }
+  HF_INLINE void store(double* to) const { store_parts<W>(*this, to); }
   // One by one, for what is not in the inner loops.
   template <class F>
-  static Pack from(F value_of) {
+  HF_INLINE static Pack from(F value_of) {
     double each[W];
     for (std::size_t l = 0; l < W; ++l) each[l] = value_of(l);
     return load(each);
   }
 
-  friend Pack operator+(Pack a, const Pack& b) { return a += b; }
-  friend Pack operator-(Pack a, const Pack& b) { return a -= b; }
-  friend Pack operator*(Pack a, const Pack& b) { return a *= b; }
-  friend Pack operator*(double a, const Pack& b) { return all(a) * b; }
-  friend Pack operator/(double a, const Pack& b) { return all(a) /= b; }
-  friend Pack operator/(Pack a, const Pack& b) { return a /= b; }
-  friend Pack operator-(Pack a) {
-    for (Unit& u : a.part) u = -u;
+  HF_INLINE Pack& operator+=(const Pack& b) {
+    each_unit<W>([](auto& x, const auto& y) { x += y; }, *this, b);
+    return *this;
+  }
+  HF_INLINE Pack& operator-=(const Pack& b) {
+    each_unit<W>([](auto& x, const auto& y) { x -= y; }, *this, b);
+    return *this;
+  }
+  HF_INLINE Pack& operator*=(const Pack& b) {
+    each_unit<W>([](auto& x, const auto& y) { x *= y; }, *this, b);
+    return *this;
+  }
+  HF_INLINE Pack& operator/=(const Pack& b) {
+    each_unit<W>([](auto& x, const auto& y) { x /= y; }, *this, b);
+    return *this;
+  }
+  HF_INLINE friend Pack operator+(Pack a, const Pack& b) { return a += b; }
+  HF_INLINE friend Pack operator-(Pack a, const Pack& b) { return a -= b; }
+  HF_INLINE friend Pack operator*(Pack a, const Pack& b) { return a *= b; }
+  HF_INLINE friend Pack operator*(double a, const Pack& b) { return all(a) *= b; }
+  HF_INLINE friend Pack operator/(Pack a, const Pack& b) { return a /= b; }
+  HF_INLINE friend Pack operator/(double a, const Pack& b) { return all(a) /= b; }
+  HF_INLINE friend Pack operator-(Pack a) {
+    each_unit<W>([](auto& x) { x = -x; }, a);
     return a;
-  }
-  Pack& operator+=(const Pack& b) {
-    for (std::size_t i = 0; i < parts; ++i) part[i] += b.part[i];
-    return *this;
-  }
-  Pack& operator-=(const Pack& b) {
-    for (std::size_t i = 0; i < parts; ++i) part[i] -= b.part[i];
-    return *this;
-  }
-  Pack& operator*=(const Pack& b) {
-    for (std::size_t i = 0; i < parts; ++i) part[i] *= b.part[i];
-    return *this;
-  }
-  Pack& operator/=(const Pack& b) {
-    for (std::size_t i = 0; i < parts; ++i) part[i] /= b.part[i];
-    return *this;
   }
 };
 
 template <std::size_t W>
-Pack<W> fused(const Pack<W>& a, const Pack<W>& b, const Pack<W>& c) {
-  Pack<W> p;
-  for (std::size_t i = 0; i < Pack<W>::parts; ++i) p.part[i] = fused_unit(a.part[i], b.part[i], c.part[i]);
-  return p;
+HF_INLINE Pack<W> fused(Pack<W> a, const Pack<W>& b, const Pack<W>& c) {
+  each_unit<W>([](auto& x, const auto& y, const auto& z) { x = fused_unit(x, y, z); }, a, b, c);
+  return a;
 }
 template <std::size_t W>
-Pack<W> fused(double a, const Pack<W>& b, const Pack<W>& c) {
+HF_INLINE Pack<W> fused(double a, const Pack<W>& b, const Pack<W>& c) {
   return fused(Pack<W>::all(a), b, c);
 }
 

@@ -68,7 +68,7 @@ struct LawOfLanes {
         exponent(P::from([&](std::size_t l) { return form(l).exponent; })),
         slope(P::from([&](std::size_t l) { return form(l).slope; })) {}
 
-  P at(const P& carbon) const {
+  HF_INLINE P at(const P& carbon) const {
     const P z = (rise * carbon) / fused(-fold, carbon, P::all(1.0));
     const P bulge = z * (P::all(1.0) - z);
     return scale * fused(hump, bulge, P::all(1.0)) * fast_exp(fused(slope, z, exponent));
@@ -113,7 +113,7 @@ class Potential {
   }
 
   template <std::size_t V>
-  Pack<V> value(const Pack<V>& carbon) const {
+  HF_INLINE Pack<V> value(const Pack<V>& carbon) const {
     const Pack<V> s = carbon - Pack<V>::all(potential_centre_wt_pct);
     Pack<V> p = coefficient<V>(terms - 1);
     for (std::size_t k = terms - 1; k-- > 0;) p = fused(p, s, coefficient<V>(k));
@@ -122,7 +122,7 @@ class Potential {
 
   // Phi, and D beside it.
   template <std::size_t V>
-  Pack<V> value(const Pack<V>& carbon, Pack<V>& diffusivity) const {
+  HF_INLINE Pack<V> value(const Pack<V>& carbon, Pack<V>& diffusivity) const {
     const Pack<V> s = carbon - Pack<V>::all(potential_centre_wt_pct);
     Pack<V> p = coefficient<V>(terms - 1), d = p;
     for (std::size_t k = terms - 1; k-- > 1;) {
@@ -135,12 +135,12 @@ class Potential {
 
  private:
   template <std::size_t V>
-  Pack<V> coefficient(std::size_t k) const {
+  HF_INLINE Pack<V> coefficient(std::size_t k) const {
     static_assert(V == W || W == 1);
     if constexpr (V == W)
       return c_[k];
     else
-      return Pack<V>::all(c_[k].part[0]);
+      return Pack<V>::all(c_[k].unit);
   }
 
   static constexpr std::size_t terms = 11;
