@@ -23,24 +23,6 @@ struct Scratch {
   double *behind, *ahead, *inverse, *diffusivity, *phi, *k1, *k2;
 };
 
-template <std::size_t V>
-struct Width {
-  static constexpr std::size_t value = V;
-};
-
-// Calls f(at, width) for all nodes, in packs of `width` doubles that begin at index `at`: one node of W
-// lanes, or several nodes of one lane.
-template <std::size_t W, class F>
-HF_INLINE void in_packs(std::size_t nodes, F f) {
-  if constexpr (W > 1) {
-    for (std::size_t at = 0; at < nodes * W; at += W) f(at, Width<W>{});
-  } else {
-    std::size_t at = 0;
-    for (; at + widest <= nodes; at += widest) f(at, Width<widest>{});
-    if (at < nodes) f(at, Width<2>{});
-  }
-}
-
 // One end's way towards the middle. Forward: `towards` is +1 from the surface, -1 from the centre.
 template <std::size_t W, int towards>
 struct Sweep {
@@ -174,7 +156,8 @@ void step(const BlockStep& b) {
   const P equilibrium = P::from([&](std::size_t l) { return lane(l).surface.equilibrium_wt_pct; });
   const P forced = P::from([&](std::size_t l) { return lane(l).surface.forced_wt_pct_m_per_s; });
   const P resistance = P::from([&](std::size_t l) { return lane(l).surface.resistance_s_per_m; });
-  const P transfer = 1.0 / (resistance + P::all(least_film * b.first_spacing_m) / law.at(equilibrium));
+  const P transfer =
+      1.0 / (resistance + P::all(least_film * b.first_spacing_m) / law.template at<W>(equilibrium));
   const P film = gamma_dt * transfer;
 
   in_packs<W>(n, [&](std::size_t at, auto width) {

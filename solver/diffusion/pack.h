@@ -178,5 +178,23 @@ HF_INLINE Pack<W> fused(double a, const Pack<W>& b, const Pack<W>& c) {
   return fused(Pack<W>::all(a), b, c);
 }
 
+template <std::size_t V>
+struct Width {
+  static constexpr std::size_t value = V;
+};
+
+// Calls f(at, width) for all points, in packs of `width` doubles that begin at index `at`: one point of W
+// lanes, or several points of one lane.
+template <std::size_t W, class F>
+HF_INLINE void in_packs(std::size_t points, F f) {
+  if constexpr (W > 1) {
+    for (std::size_t at = 0; at < points * W; at += W) f(at, Width<W>{});
+  } else {
+    std::size_t at = 0;
+    for (; at + widest <= points; at += widest) f(at, Width<widest>{});
+    if (at < points) f(at, Width<2>{});
+  }
+}
+
 }  // namespace HF_KERNEL_BUILD
 }  // namespace hearthfront::solver

@@ -24,6 +24,22 @@ namespace potential_detail {
 inline constexpr double point[5]{0.15643446504023087, 0.45399049973954680, 0.70710678118654752,
                                  0.89100652418836787, 0.98768834059513773};  // cos((2k+1) pi/20)
 
+// The carbons at which the law is asked, those above the centre first, and 1 / (high - low) of each pair.
+struct Points {
+  double carbon_wt_pct[10], inverse_distance[5];
+};
+constexpr Points points_of_law() {
+  Points result{};
+  for (std::size_t k = 0; k < 5; ++k) {
+    const double step = potential_half_range_wt_pct * point[k];
+    result.carbon_wt_pct[k] = potential_centre_wt_pct + step;
+    result.carbon_wt_pct[k + 5] = potential_centre_wt_pct - step;
+    result.inverse_distance[k] = 0.5 / step;
+  }
+  return result;
+}
+inline constexpr Points points = points_of_law();
+
 struct Matrix {
   double row[5][5];
 };
@@ -60,7 +76,7 @@ struct LawOfLanes {
 
   // `form(l)` gives the diffusivity form of lane l.
   template <class FormOfLane>
-  explicit LawOfLanes(FormOfLane form)
+  HF_INLINE explicit LawOfLanes(FormOfLane form)
       : rise(form(0).rise),
         fold(form(0).fold),
         hump(P::from([&](std::size_t l) { return form(l).hump; })),
@@ -68,10 +84,23 @@ struct LawOfLanes {
         exponent(P::from([&](std::size_t l) { return form(l).exponent; })),
         slope(P::from([&](std::size_t l) { return form(l).slope; })) {}
 
-  HF_INLINE P at(const P& carbon) const {
-    const P z = (rise * carbon) / fused(-fold, carbon, P::all(1.0));
-    const P bulge = z * (P::all(1.0) - z);
-    return scale * fused(hump, bulge, P::all(1.0)) * fast_exp(fused(slope, z, exponent));
+  template <std::size_t V>
+  HF_INLINE Pack<V> at(const Pack<V>& carbon) const {
+    const Pack<V> one = Pack<V>::all(1.0);
+    const Pack<V> z = (rise * carbon) / fused(-fold, carbon, one);
+    const Pack<V> bulge = z * (one - z);
+    return spread<V>(scale) * fused(spread<V>(hump), bulge, one) *
+           fast_exp(fused(spread<V>(slope), z, spread<V>(exponent)));
+  }
+
+  // One lane may be asked at several carbons at once.
+  template <std::size_t V>
+  HF_INLINE static Pack<V> spread(const P& quantity) {
+    static_assert(V == W || W == 1);
+    if constexpr (V == W)
+      return quantity;
+    else
+      return Pack<V>::all(quantity.unit);
   }
 
   double rise, fold;
@@ -86,19 +115,23 @@ class Potential {
 
  public:
   template <class FormOfLane>
-  explicit Potential(FormOfLane form) : Potential(LawOfLanes<W>(form)) {}
+  HF_INLINE explicit Potential(FormOfLane form) : Potential(LawOfLanes<W>(form)) {}
 
-  explicit Potential(const LawOfLanes<W>& law) {
+  HF_INLINE explicit Potential(const LawOfLanes<W>& law) {
     using namespace potential_detail;
+    alignas(W * sizeof(double)) double d[10 * W];
+    in_packs<W>(10, [&](std::size_t at, auto width) {
+      using C = Pack<decltype(width)::value>;
+      const C carbon = W == 1 ? C::load(points.carbon_wt_pct + at) : C::all(points.carbon_wt_pct[at / W]);
+      law.template at<C::size>(carbon).store(d + at);
+    });
     P even[5], odd[5];
     for (std::size_t k = 0; k < 5; ++k) {
-      const double step = potential_half_range_wt_pct * point[k];
-      const P high = law.at(P::all(potential_centre_wt_pct + step));
-      const P low = law.at(P::all(potential_centre_wt_pct - step));
+      const P high = P::load(d + k * W), low = P::load(d + (k + 5) * W);
       even[k] = 0.5 * (high + low);
-      odd[k] = (0.5 / step) * (high - low);
+      odd[k] = points.inverse_distance[k] * (high - low);
     }
-    c_[0] = P::all(0.0);
+    set(0, P::all(0.0));
     double unit = 1.0;  // half range to the power -2m
     for (std::size_t m = 0; m < 5; ++m) {
       P e = lagrange.row[m][0] * even[0], o = lagrange.row[m][0] * odd[0];
@@ -106,8 +139,8 @@ class Potential {
         e = fused(lagrange.row[m][k], even[k], e);
         o = fused(lagrange.row[m][k], odd[k], o);
       }
-      c_[2 * m + 1] = (unit / static_cast<double>(2 * m + 1)) * e;
-      c_[2 * m + 2] = (unit / static_cast<double>(2 * m + 2)) * o;
+      set(2 * m + 1, (unit / static_cast<double>(2 * m + 1)) * e);
+      set(2 * m + 2, (unit / static_cast<double>(2 * m + 2)) * o);
       unit /= potential_half_range_wt_pct * potential_half_range_wt_pct;
     }
   }
@@ -134,17 +167,20 @@ class Potential {
   }
 
  private:
+  static constexpr std::size_t terms = 11;
+  // The coefficient of one lane is kept as often as the widest unit has doubles.
+  static constexpr std::size_t kept = W == 1 ? widest : W;
+
+  HF_INLINE void set(std::size_t k, const P& coefficient) {
+    LawOfLanes<W>::template spread<kept>(coefficient).store(c_[k]);
+  }
   template <std::size_t V>
   HF_INLINE Pack<V> coefficient(std::size_t k) const {
-    static_assert(V == W || W == 1);
-    if constexpr (V == W)
-      return c_[k];
-    else
-      return Pack<V>::all(c_[k].unit);
+    static_assert(V == W || (W == 1 && V <= kept));
+    return Pack<V>::load(c_[k]);
   }
 
-  static constexpr std::size_t terms = 11;
-  P c_[terms];
+  alignas(kept * sizeof(double)) double c_[terms][kept];
 };
 
 }  // namespace HF_KERNEL_BUILD
