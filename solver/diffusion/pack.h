@@ -14,9 +14,13 @@
 #error "compile this file with -mavx2 -mfma"
 #endif
 #include <immintrin.h>
+#endif
+#if !defined(HF_KERNEL_BUILD)  // a program that compiles this with other options names its own
+#if defined(HF_KERNEL_AVX2)
 #define HF_KERNEL_BUILD avx2_fma
 #else
 #define HF_KERNEL_BUILD baseline
+#endif
 #endif
 
 namespace hearthfront::solver {
