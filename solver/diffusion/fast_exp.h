@@ -1,5 +1,5 @@
 // exp(x) of a pack as plain arithmetic: a value is the same bits whether it was computed alone or beside
-// others. Relative error below 1e-15 for -700 <= x <= 700 in every build of the kernel (tests/solver);
+// others. Relative error below 5e-16 for -700 <= x <= 700 in every build of the kernel (tests/solver);
 // outside that range the result is meaningless, callers stay inside by the validity ranges of the laws.
 #pragma once
 

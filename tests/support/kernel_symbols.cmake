@@ -1,24 +1,30 @@
-# Every symbol that the AVX2 build of the step kernel defines must be its table or lie in its own namespace: an inline
-# function that other code defines too could be linked from here and fail on a processor without AVX2.
+# Every function that the AVX2 build of the step kernel defines must lie in its own namespace: an inline function that
+# other code defines too could be linked from here and fail on a processor without AVX2. Wants -DNM= -DOBJECTS=.
 execute_process(COMMAND ${NM} --defined-only --extern-only --demangle ${OBJECTS}
   OUTPUT_VARIABLE listing RESULT_VARIABLE failed)
 if(failed)
   message(FATAL_ERROR "${NM} ${OBJECTS}: ${failed}")
 endif()
+string(REPLACE ";" "," listing "${listing}")
 string(REPLACE "\n" ";" lines "${listing}")
 set(own 0)
+set(strangers "")
 foreach(line IN LISTS lines)
-  # "address type name"; a return type may stand before the name
-  if(line MATCHES "^[0-9a-f]+ [A-Za-z] ([a-z]+ )?hearthfront::solver::(avx2_fma_kernel$|avx2_fma::)")
+  # "address type name"; T, W and i are code. A return type may stand before the name.
+  if(NOT line MATCHES "^[0-9a-f]+ [TWi] (.*)$")
+    continue()
+  endif()
+  set(name "${CMAKE_MATCH_1}")
+  if(name MATCHES "^([a-z ]+ )?hearthfront::solver::avx2_fma::")
     math(EXPR own "${own} + 1")
-  elseif(line MATCHES "^[0-9a-f]+ [A-Za-z] (.*)$" AND NOT CMAKE_MATCH_1 MATCHES "^hearthfront::solver::avx2_fma::")
-    set(strangers "${strangers}\n  ${CMAKE_MATCH_1}")
+  else()
+    string(APPEND strangers "\n  ${name}")
   endif()
 endforeach()
-if(strangers)
-  message(FATAL_ERROR "defined outside hearthfront::solver::avx2_fma by the AVX2 build of the kernel:${strangers}")
+if(NOT strangers STREQUAL "")
+  message(FATAL_ERROR "the AVX2 build of the kernel defines functions outside its namespace:${strangers}")
 endif()
 if(own EQUAL 0)
-  message(FATAL_ERROR "no symbol of the kernel found in ${OBJECTS}")
+  message(FATAL_ERROR "no function of the kernel found in ${OBJECTS}")
 endif()
-message(STATUS "${own} symbols, all of the kernel's own")
+message(STATUS "${own} functions, all of the kernel's own")
