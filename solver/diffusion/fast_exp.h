@@ -24,11 +24,11 @@ HF_INLINE Pack<W> fast_exp(const Pack<W>& x) {
   const P r = fused(-ln2_low, n, fused(-ln2_high, n, x));
   P p = P::all(1.0 / 479001600.0);
   for (const double term : inverse_factorial) p = fused(p, r, P::all(term));
+  using Unit = UnitOf<(W < widest ? W : widest)>;
   each_unit<W>(
       [](auto& unit, const auto& rounded) {
-        using Bits = typename UnitOf<sizeof(unit) / sizeof(double)>::Bits;
-        const Bits power = (__builtin_bit_cast(Bits, rounded) + 1023u) << 52u;
-        unit *= __builtin_bit_cast(typename UnitOf<sizeof(unit) / sizeof(double)>::Double, power);
+        const auto power = (__builtin_bit_cast(typename Unit::Bits, rounded) + 1023u) << 52u;
+        unit *= __builtin_bit_cast(typename Unit::Double, power);
       },
       p, shifted);
   return p;

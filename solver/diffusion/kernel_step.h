@@ -112,17 +112,15 @@ HF_INLINE void sweep(const BlockStep& b, const Pack<W>& surface_flux, const Scra
   fused(-P::load(s.ahead + m), right.x, fused(-P::load(s.behind + m), left.x, net)).store(to + m);
 }
 
-// From the middle outwards. f(at, value) is told every value beside its being stored.
-template <std::size_t W, class F>
-HF_INLINE void back(std::size_t n, const Scratch& s, double* __restrict x, F f) {
+// From the middle outwards.
+template <std::size_t W>
+HF_INLINE void back(std::size_t n, const Scratch& s, double* __restrict x) {
   using P = Pack<W>;
   const std::size_t middle = n / 2;
   P left = P::load(x + middle * W), right = left;
-  f(middle * W, left);
   const auto outward = [&](std::size_t i, P& inner) {
     inner = fused(-P::load(s.ahead + i), inner, P::load(x + i));
     inner.store(x + i);
-    f(i, inner);
   };
   for (std::size_t i = 1; i < middle; ++i) {
     outward((middle - i) * W, left);
@@ -168,7 +166,7 @@ void step(const BlockStep& b) {
   });
   const P flux_1 = fused(equilibrium - P::load(u), transfer, forced);
   factor_and_sweep<W>(b, gamma_dt, film, flux_1, s);
-  back<W>(n, s, s.k1, [](std::size_t, const P&) {});
+  back<W>(n, s, s.k1);
 
   const P rate_0 = P::load(s.k1);
   if (b.damped) {
@@ -189,7 +187,7 @@ void step(const BlockStep& b) {
   const P u_0 = fused(dt, rate_0, P::load(u));
   const P flux_2 = fused(2.0 * film, rate_0, fused(equilibrium - u_0, transfer, forced));
   sweep<W>(b, flux_2, s, s.k2);
-  back<W>(n, s, s.k2, [](std::size_t, const P&) {});
+  back<W>(n, s, s.k2);
 
   // What crossed is read at the surface alone, so that the balance residual compares two independent numbers.
   const double half_dt = 0.5 * dt;

@@ -16,19 +16,19 @@ namespace {
 
 using P = solver::Pack<floor_lanes>;
 
-void exponentials_of_library(std::size_t values, const double* __restrict from, double* __restrict to,
-                             double offset) {
+inline void exponentials_of_library(std::size_t values, const double* __restrict from, double* __restrict to,
+                                    double offset) {
   for (std::size_t i = 0; i < values; ++i) to[i] = offset + std::exp(from[i]);
 }
 
-void exponentials_of_kernel(std::size_t values, const double* __restrict from, double* __restrict to,
-                            double offset) {
+inline void exponentials_of_kernel(std::size_t values, const double* __restrict from, double* __restrict to,
+                                   double offset) {
   for (std::size_t i = 0; i < values; i += floor_lanes)
     (P::all(offset) + solver::fast_exp(P::load(from + i))).store(to + i);
 }
 
 // Leaves reciprocal pivots in the diagonal.
-void factor(const FloorArrays& a) {
+inline void factor(const FloorArrays& a) {
   const std::size_t n = a.nodes, middle = n / 2;
   P left = P::all(0.0), right = P::all(0.0);  // off-diagonal towards the middle over pivot, of the last row
   const auto row = [&](std::size_t i, const double* behind, const double* ahead, P& last) {
@@ -52,7 +52,7 @@ void factor(const FloorArrays& a) {
   (up * inverse).store(a.outward + m);
 }
 
-void solve(const FloorArrays& a) {
+inline void solve(const FloorArrays& a) {
   const std::size_t n = a.nodes, middle = n / 2;
   P left = P::all(0.0), right = P::all(0.0);
   const auto inward = [&](std::size_t i, P& last) {
@@ -80,7 +80,7 @@ void solve(const FloorArrays& a) {
   }
 }
 
-void floor_step(const FloorArrays& a, bool library_exp) {
+inline void floor_step(const FloorArrays& a, bool library_exp) {
   const std::size_t values = a.nodes * floor_lanes;
   const auto exponentials = library_exp ? exponentials_of_library : exponentials_of_kernel;
   exponentials(values, a.argument, a.diagonal, 3.0);

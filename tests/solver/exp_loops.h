@@ -12,7 +12,7 @@ void exp_in_packs(const double* x, double* result) {
   for (std::size_t i = 0; i < 8; i += W) solver::fast_exp(solver::Pack<W>::load(x + i)).store(result + i);
 }
 
-void exp_of_width(std::size_t width, const double* x, double* result) {
+inline void exp_of_width(std::size_t width, const double* x, double* result) {
   switch (width) {
     case 1:
       return exp_in_packs<1>(x, result);
