@@ -1,8 +1,8 @@
 // Which build of the step kernel computes. The kernel is built for every processor of the architecture
 // ("baseline") and, on x86-64, once more for processors with AVX2 and FMA ("avx2+fma"); the best one that the
-// processor can run is taken at start. Results of one kernel are the same bits on every machine that runs the
-// program; between the two they agree within 1e-9 relative (tests/solver/lanes_test.cpp). So the kernel's
-// name belongs wherever the build is named.
+// processor can run is taken at start. For the same mesh and conditions one kernel gives
+// the same bits on every processor; between the two, results agree within 1e-9 relative
+// (tests/solver/lanes_test.cpp). So the kernel's name belongs wherever the build is named.
 #pragma once
 
 namespace hearthfront::solver {
