@@ -78,7 +78,6 @@ void read_times(JsonFields& fields, CsvMapping& mapping) {
 
 CsvColumn read_column(const Json& json, const std::string& path) {
   JsonFields fields(json, path, problem_type);
-  for (const char* name : {"unit", "factor"}) fields.ignore_null(name);
   CsvColumn column;
   column.column = plain_name(fields.word("column", 100));
   column.channel = fields.word("channel", 40);
@@ -116,10 +115,6 @@ CsvMapping read_csv_mapping_json(std::string_view text, const Furnace& furnace, 
                                  const std::string& path) {
   const Json json = parse_body(text);
   JsonFields fields(json, path, problem_type);
-  for (const char* each :
-       {"name", "encoding", "separator", "decimal", "thousands", "comment", "no_value", "header_lines",
-        "units_line", "date_column", "time_format", "time_zone", "utc_offset_min"})
-    fields.ignore_null(each);
   CsvMapping mapping;
   mapping.name = name;
   if (fields.has("name")) mapping.name = fields.word("name", 40);
