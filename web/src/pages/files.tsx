@@ -1,0 +1,1 @@
+export function Files({ id }: { id: string }) { return <p>{id}</p>; }
