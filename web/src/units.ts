@@ -54,6 +54,11 @@ export function channelText(value: number, unit: string, shown: TemperatureUnit)
 }
 export const unitName = (unit: string): string => ({ degC: '°C', degF: '°F', wt_pct: '% C', vol_pct: '%', uV: 'µV' } as Record<string, string>)[unit] ?? unit;
 
+// A sentence of the daemon's with its temperatures as this screen shows them: "60 degC" becomes "60 °C" or "140 °F".
+export const withTemperatures = (text: string, shown: TemperatureUnit): string =>
+  text.replace(/(-?\d+(?:\.\d+)?) degC\b/g, (_, value: string) => temperatureText(Number(value), shown));
+export const capital = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
+
 // What a person types: decimal comma or point, blanks around. null when it is no number.
 export function numberFrom(text: string): number | null {
   const plain = text.trim().replace(',', '.').replace('−', '-');

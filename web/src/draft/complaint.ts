@@ -1,8 +1,10 @@
 // Where on a form the daemon's complaint belongs, and how it reads there. Pure.
+import { capital } from '../units.ts';
+
 // A problem's sentence for a person: without the path in front, which the form shows by its place.
 export function plainDetail(detail: string, field: string | undefined): string {
   const bare = field && detail.startsWith(`${field}: `) ? detail.slice(field.length + 2) : detail;
-  return bare.charAt(0).toUpperCase() + bare.slice(1);
+  return capital(bare);
 }
 
 // "item 2", "segment 1" or nothing: which of several the path means.

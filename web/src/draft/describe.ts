@@ -2,7 +2,7 @@
 import type { Change, ItemDefinition, RecipeSegment } from '../contract.ts';
 import { type LengthUnit, type TemperatureUnit, depthText, differenceName, fromKelvins, plainNumber, temperatureText } from '../units.ts';
 import { minutesText } from '../words.ts';
-import type { Draft, DraftSegment } from './draft.ts';
+import { type Draft, type DraftSegment, usualToleranceMin } from './draft.ts';
 
 export interface Units { temperature: TemperatureUnit; length: LengthUnit }
 
@@ -20,7 +20,7 @@ export function segmentExtras(segment: DraftSegment, { temperature, length }: Un
   if (segment.until === 'surface_carbon') words.push(`until the surface of item ${segment.untilItem} has ${plainNumber(value, 3)} % C`);
   if (segment.until === 'part_temperature') words.push(`until the parts are within ${plainNumber(fromKelvins(value, temperature), 1)} ${differenceName(temperature)}`);
   if (segment.until !== '' && segment.longest_min !== null) words.push(`at the latest after ${minutesText(sure(segment.longest_min))}`);
-  if (segment.tolerance_min !== null) words.push(`called long after ${minutesText(sure(segment.tolerance_min))} more`);
+  if (segment.tolerance_min !== null && segment.tolerance_min !== usualToleranceMin) words.push(`called long after ${minutesText(sure(segment.tolerance_min))} more`);
   return words.join(', ');
 }
 

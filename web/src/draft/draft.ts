@@ -84,6 +84,7 @@ export const sizesOf: Record<Shape, (keyof DraftItem['size'])[]> = {
 };
 export const usualLimit: Record<Criterion['kind'], number> = { hardness_hv: 550, hardness_hrc: 50, carbon: 0.35 };
 export const usualQuenchDegc = 60;
+export const usualToleranceMin = 10;
 export const elements = ['C', 'Mn', 'Cr', 'Ni', 'Mo', 'Si'] as const;
 
 // Whether anything that matters has been entered: decides if the long form is opened at once.

@@ -16,7 +16,7 @@ export function merged<T>(base: T, mine: T, theirs: T): T {
   }
   if (isObject(base) && isObject(mine) && isObject(theirs)) {
     const names = [...new Set([...Object.keys(mine), ...Object.keys(theirs)])];
-    return Object.fromEntries(names.map((name) => [name, merged(base[name], (mine as Plain)[name], (theirs as Plain)[name])])) as T;
+    return Object.fromEntries(names.map((name) => [name, name === 'key' ? (mine as Plain)[name] : merged(base[name], (mine as Plain)[name], (theirs as Plain)[name])])) as T;
   }
   return mine;
 }

@@ -73,7 +73,7 @@ export function RareFields({ item, at, put }: PartProps) {
   return <div class="grid">
     <NumberField path={`${at}.surface_carbon_window_wt_pct`} label="surface carbon from" unit="% C" value={item.surface_low} set={(surface_low) => put({ surface_low })} step={0.05} base={0.7} digits={3} />
     <NumberField path={`${at}.surface_carbon_window_wt_pct[1]`} label="to" unit="% C" value={item.surface_high} set={(surface_high) => put({ surface_high })} step={0.05} base={0.85} digits={3} />
-    <NumberField path={`${at}.grinding_stock_mm`} label="ground off after hardening" value={item.grinding_stock_mm} set={(grinding_stock_mm) => put({ grinding_stock_mm })} base={inMm ? 0.15 : 0.006} {...depth} />
+    <NumberField path={`${at}.grinding_stock_mm`} label="grinding stock" value={item.grinding_stock_mm} set={(grinding_stock_mm) => put({ grinding_stock_mm })} base={inMm ? 0.15 : 0.006} {...depth} />
     <NumberField path={`${at}.core_carbon_wt_pct`} label="core carbon" unit="% C" value={item.core_carbon_wt_pct} set={(core_carbon_wt_pct) => put({ core_carbon_wt_pct })} step={0.01} base={0.2} digits={3} />
     <NumberField path={`${at}.lag_min`} label="lag behind furnace" unit="min" value={item.lag_min} set={(lag_min) => put({ lag_min })} step={5} base={20} digits={1} />
   </div>;

@@ -21,7 +21,7 @@ export function Channels({ furnace, again }: { furnace: Furnace; again: () => vo
     <h2 class="section-title">Channels</h2>
     {sorted.length === 0 && <p class="nothing">The plant file names no channel of this furnace.</p>}
     <div class="channels">{sorted.map((channel) => <article class={`panel channel ${rank(channel) === 0 ? 'guess' : ''}`} key={channel.name} data-testid="channel" data-channel={channel.name}>
-      <ChannelFacts channel={channel} chambers={furnace.chambers.length > 1} />
+      <ChannelFacts channel={channel} chamber={furnace.chambers.length > 1 ? furnace.chambers.find((each) => each.id === channel.chamber)?.name ?? '' : ''} />
       <div class="channel-buttons">
         {channel.conflicts > 0 && <button type="button" class="button plain" data-testid="conflicts-open" aria-expanded={open === channel.name} onClick={() => setOpen(open === channel.name ? null : channel.name)}>
           Conflicting values: {channel.undecided === undefined ? channel.conflicts : channel.undecided > 0 ? `${channel.undecided} to decide` : 'all decided'}</button>}
@@ -32,7 +32,7 @@ export function Channels({ furnace, again }: { furnace: Furnace; again: () => vo
   </section>;
 }
 
-function ChannelFacts({ channel, chambers }: { channel: Channel; chambers: boolean }) {
+function ChannelFacts({ channel, chamber }: { channel: Channel; chamber: string }) {
   const { temperature } = useStore(prefs);
   const feed = useStore(live);
   useStore(pulse);
@@ -42,7 +42,7 @@ function ChannelFacts({ channel, chambers }: { channel: Channel; chambers: boole
   const refused = Object.entries(channel.refused).filter(([, many]) => many > 0);
   const good = health?.state === 'good';
   return <>
-    <h3>{channel.name.replaceAll('_', ' ')} <small>{channel.role.replaceAll('_', ' ')}{chambers && channel.chamber ? ` · ${channel.chamber}` : ''}</small></h3>
+    <h3>{channel.name.replaceAll('_', ' ')} <small>{channel.role.replaceAll('_', ' ')}{chamber && ` · ${chamber}`}</small></h3>
     <p class="last"><b>{last ? channelText(last.value, channel.unit, temperature) : '–'}</b> <span>{lastAt ? `${ageText((nowMs - lastAt) / 1000)} ago` : 'no reading yet'}</span></p>
     {health && <p class={`mark ${good ? 'quiet' : 'guess'}`} data-health={health.state}><Shape name={health.state} /><span><b>{health.state}</b> <span class="mark-sentence">{health.sentence}</span>
       {!good && health.since && <small class="under">since {momentText(Date.parse(health.since), nowMs)}</small>}</span></p>}

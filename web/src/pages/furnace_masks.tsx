@@ -55,7 +55,6 @@ export function Refused({ refused, problem }: { refused: RefusedReading[] | null
     <h2>Refused readings <small>the latest {refused?.length || ''}</small></h2>
     {problem && <p class="said">{problem}</p>}
     {refused?.length === 0 && <p class="nothing">None.</p>}
-    {refused && refused.length > 0 && <div class="scroll-x"><table class="rows"><thead><tr><th scope="col">came</th><th scope="col">channel</th><th scope="col">time in it</th><th scope="col">value</th><th scope="col">why</th></tr></thead>
-      <tbody>{refused.map((each, i) => <tr key={i}><td>{clockText(Date.parse(each.received_at), true)}</td><td>{each.channel ?? '–'}</td><td>{each.time_text}</td><td>{each.value_text}</td><td class="wrap">{each.reason}</td></tr>)}</tbody></table></div>}
+    <ul class="list">{refused?.map((each, i) => <li key={i}><p class="grow"><b>{each.reason}</b><br /><small>{(each.channel ?? 'no channel').replaceAll('_', ' ')}: value “{each.value_text}”, time “{each.time_text}”, came {dayClockText(Date.parse(each.received_at))}</small></p></li>)}</ul>
   </section>;
 }

@@ -45,7 +45,7 @@ export function Load({ id }: { id: number }) {
     {items.length > 1 && item && <Items items={items} chosen={item.name} controlling={snapshot.controlling_item} unit={length} ended={snapshot.load.state !== 'open'} guessed={guessedNow(snapshot)} choose={setChosen} />}
     <div class="plots">
       {item && <ProfilePlot item={item} unit={length} />}
-      {item?.hardness && <HardnessPlot item={item} hardness={item.hardness} unit={length} />}
+      {item?.hardness && <HardnessPlot item={item} hardness={item.hardness} unit={length} temperature={temperature} />}
       {item && history && history.time_s.length > 1 && <HistoryPlots snapshot={snapshot} history={history} item={item} length={length} temperature={temperature} />}
     </div>
     <div class="columns">
@@ -102,7 +102,7 @@ function Present({ view, snapshot, item, old, speed }: PresentProps) {
         <p class="reach">{reachText(item, length, !open)}</p>
         {!!item.grinding_stock_mm && <p class="band">finished: {depthText(item.grinding_stock_mm, length)} ground off {depthText(item.case_depth_mm, length)}</p>}
         {open && snapshot.segment && <p class="asked-line now-line"><b>{snapshot.segment.name}</b>: {snapshot.segment.minutes_left >= 0 ? `${minutesText(snapshot.segment.minutes_left)} left` : `${minutesText(-snapshot.segment.minutes_left)} over`}</p>}
-        <p class="age" data-testid="data-age">{open ? (ageS === null ? 'no reading yet' : `data ${ageText(ageS)} old`) : 'final'}</p>
+        <p class="age" data-testid="data-age">{open ? (ageS === null ? 'no reading yet' : `data ${ageText(ageS)} old`) : snapshot.load.state === 'cancelled' ? 'cancelled: not a result' : 'final'}</p>
         <p class="band">{snapshot.band}</p>
       </div>
       <div class="picture">

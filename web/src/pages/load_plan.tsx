@@ -15,7 +15,7 @@ const told = { readings: 'as the readings show', 'recipe time': 'by recipe time'
 export function Plan({ recipe, segment, minutesLeft, open, now }: Props) {
   const units = useStore(prefs);
   const { temperature } = units;
-  const extras = (each: Recipe['segments'][number]) => segmentExtras(segmentFrom({ ...each, tolerance_min: undefined }), units);
+  const extras = (each: Recipe['segments'][number]) => segmentExtras(segmentFrom(each), units);
   const present = open ? segment?.index ?? -1 : -1;
   return <section class="panel">
     <h2>Plan <small>{recipe.name}{open && minutesLeft !== null && (minutesLeft >= 0 ? ` · ends in ${minutesText(minutesLeft)}` : ` · ended ${minutesText(-minutesLeft)} ago`)}</small></h2>

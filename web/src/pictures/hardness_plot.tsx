@@ -3,16 +3,16 @@
 import { useMemo, useRef } from 'preact/hooks';
 import type uPlot from 'uplot';
 import type { Hardness, Item } from '../contract.ts';
-import { type LengthUnit, depthNumber, fromMm, lengthName } from '../units.ts';
+import { type LengthUnit, type TemperatureUnit, capital, depthNumber, fromMm, lengthName, withTemperatures } from '../units.ts';
 import { type Palette, Plot, axes, inside } from './plot.tsx';
 import { itemEndMm } from './strip_geometry.ts';
 
-interface Props { item: Item; hardness: Hardness; unit: LengthUnit }
+interface Props { item: Item; hardness: Hardness; unit: LengthUnit; temperature: TemperatureUnit }
 const whole = (value: number | null | undefined): string => (value === null || value === undefined ? '–' : value.toFixed(0));
 
-export function HardnessPlot({ item, hardness, unit }: Props) {
-  const seen = useRef({ item, hardness, unit });
-  seen.current = { item, hardness, unit };
+export function HardnessPlot({ item, hardness, unit, temperature }: Props) {
+  const seen = useRef({ item, unit });
+  seen.current = { item, unit };
   const end = fromMm(itemEndMm(item), unit);
   const data = useMemo<uPlot.AlignedData>(() => [hardness.depth_mm.map((mm) => fromMm(mm, unit)), hardness.hv, hardness.retained_austenite_pct], [hardness, unit]);
   const top = Math.max(800, Math.ceil(Math.max(...hardness.hv, 0) / 100) * 100);
@@ -28,7 +28,7 @@ export function HardnessPlot({ item, hardness, unit }: Props) {
   };
   const limit = item.criterion.kind === 'hardness_hv' ? item.criterion.limit_hv : undefined;
   const text = `${hardness.as}. Surface ${whole(hardness.surface_hv)} HV with ${whole(hardness.surface_retained_austenite_pct)} % retained austenite.`;
-  return <Plot title="Hardness below the surface" text={text} data={data} make={make} makeKey={`${item.name} ${unit} ${end} ${top} ${most}`} height={250} note={hardness.as}
+  return <Plot title="Hardness below the surface" text={text} data={data} make={make} makeKey={`${item.name} ${unit} ${end} ${top} ${most}`} height={250} note={withTemperatures(capital(hardness.as), temperature)}
     readout={(i) => `${depthNumber(hardness.depth_mm[i] ?? null, unit)} ${lengthName(unit)}: ${whole(hardness.hv[i])} HV, ${whole(hardness.retained_austenite_pct[i])} % retained austenite`}
     legend={<ul class="legend">
       <li><svg viewBox="0 0 34 16"><path class="k-line" d="M1 8h32" /></svg>hardness</li>
@@ -38,7 +38,7 @@ export function HardnessPlot({ item, hardness, unit }: Props) {
     </ul>} />;
 }
 
-function asked(plot: uPlot, { item, unit }: Props, colours: Palette): void {
+function asked(plot: uPlot, { item, unit }: Pick<Props, 'item' | 'unit'>, colours: Palette): void {
   inside(plot, (ctx) => {
     const stock = item.grinding_stock_mm ?? 0;
     const [low, high] = item.case_depth_window_mm.map((mm) => plot.valToPos(fromMm(mm + stock, unit), 'x', true)) as [number, number];
@@ -47,7 +47,7 @@ function asked(plot: uPlot, { item, unit }: Props, colours: Palette): void {
   });
 }
 
-function limits(plot: uPlot, { item, unit }: Props, colours: Palette): void {
+function limits(plot: uPlot, { item, unit }: Pick<Props, 'item' | 'unit'>, colours: Palette): void {
   inside(plot, (ctx, ratio) => {
     const { left, top, width, height } = plot.bbox;
     if (item.criterion.kind === 'hardness_hv' && item.criterion.limit_hv !== undefined) {

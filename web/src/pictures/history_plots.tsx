@@ -24,14 +24,14 @@ export function HistoryPlots({ snapshot, history, item, length, temperature }: P
   const depth = series?.case_depth_mm.map((mm) => (mm === null ? null : fromMm(mm, length))) ?? [];
   const heat = history.temperature_degc.map((degc) => (degc === null ? null : fromDegc(degc, temperature)));
   const part = series?.part_temperature_degc.map((degc) => (degc === null ? null : fromDegc(degc, temperature))) ?? [];
-  const band = item.case_depth_window_mm.map((mm) => fromMm(mm, length)) as [number, number];
+  const band = item.case_depth_window_mm.map((mm) => fromMm(mm + (item.grinding_stock_mm ?? 0), length)) as [number, number];
   const at = (i: number) => clockText((times[i] ?? 0) * 1000);
   const stepsOf = (pick: (step: RecipeStep) => number) => steps.map((step) => ({ from_s: step.from_s, to_s: step.to_s, ramp_s: step.ramp_s, value: pick(step) }));
   const heatSteps = stepsOf((step) => fromDegc(step.temperature_degc, temperature));
   const carbonSteps = stepsOf((step) => step.carbon_potential_wt_pct);
   return <div class="histories">
     <Timeline {...shared} title="Case depth over the cycle" text={`Case depth of ${item.part} over time, now ${depthText(item.case_depth_mm, length)}.`} unitName={lengthName(length)} lines={[depth]} range={[0, Math.max(extent([...depth, band[1]], band[1])[1], band[1] * 1.15)]}
-      behind={{ stretches: [], steps: [], band, now_s }} readout={(i) => `${at(i)}: ${depthText(series?.case_depth_mm[i] ?? null, length)}`} legend={<ul class="legend"><Key kind="line">computed depth</Key><Key kind="asked">asked</Key>{now_s !== null && <Key kind="now">now</Key>}</ul>} />
+      behind={{ stretches: [], steps: [], band, now_s }} readout={(i) => `${at(i)}: ${depthText(series?.case_depth_mm[i] ?? null, length)}`} legend={<ul class="legend"><Key kind="line">computed depth</Key><Key kind="asked">{item.grinding_stock_mm ? 'asked, before grinding' : 'asked'}</Key>{now_s !== null && <Key kind="now">now</Key>}</ul>} />
     <Timeline {...shared} title="Temperature" text="Measured temperature against the recipe." unitName={temperatureName(temperature)} lines={[heat, part]} range={nearRecipe(heat, heatSteps, temperature === 'degc' ? 100 : 180)}
       behind={{ stretches: stretchesOf(times, history.temperature_basis), steps: heatSteps, band: null, now_s }}
       readout={(i) => `${at(i)}: ${temperatureText(history.temperature_degc[i] ?? null, temperature)}, ${history.temperature_basis[i] ?? ''}`} legend={<InputLegend thin="part" masked={history.temperature_basis.includes('masked')} />} />

@@ -18,7 +18,7 @@ const lines: Record<MarkShape, string> = {
   disagree: 'M2 14h6l16-9M8 14l16 9',                           // one trace that becomes two
   cancelled: 'M4 9v14h20V9M8 5l12 12M20 5L8 17',               // a tray struck out
   good: 'M2 16l6-4 6 3 6-4 6 2',                               // a trace
-  silent: 'M2 16l5-4 4 3M15 14h.01M20 14h.01M25 14h.01',       // a trace that ends in dots
+  silent: 'M2 16l5-4 4 3M14 14h2.5M19 14h2.5M24 14h2.5',        // a trace that ends in dots
   gap: 'M2 16l6-4M20 14l6-3M11 8v12M17 8v12',                  // a trace with a piece taken out
   stuck: 'M2 9l5 5h19M26 9v10',                                // a trace gone flat
   noisy: 'M2 14l3-8 3 16 4-18 4 19 4-15 3 9 3-6',              // a trace all over the place
