@@ -76,6 +76,15 @@ export async function answerPlant({ path, url, request, response, send, problem,
     into.versions.push({ version: into.versions.length + 1, at: stamp(nowMs()), person: body.person, name: body.name, body: body.body, retired: into.retired });
     return done(latest(into));
   }
+  if (path === '/api/v1/readings') {
+    const seen = {}, { readings } = await bodyOf(request);
+    for (const each of readings) {
+      const values = (seen[`${each.furnace} ${each.channel} ${each.time}`] ??= { each, values: new Set() }).values;
+      values.add(each.value);
+    }
+    for (const { each, values } of Object.values(seen)) if (values.size > 1) conflictsOf(each.furnace, each.channel, nowMs, stamp).conflicts.unshift({ at: each.time, values: [...values], chosen: null });
+    return done({ stored: readings.length, duplicate: 0, conflict: 0, refused: 0 });
+  }
   if (path === '/api/v1/furnaces') return done({ furnaces: furnaces.map((each) => ({ ...each, channels: channelsOf(each.id, nowMs, stamp) })) });
   const [, id, rest = ''] = /^\/api\/v1\/furnaces\/([^/]+)(?:\/(.+))?$/.exec(path) ?? [];
   if (!id) return false;

@@ -44,11 +44,11 @@ export const carbonText = (wtPct: number | null): string => (wtPct === null ? 'â
 export const carbonWindowText = (window: readonly [number, number]): string =>
   `${fixed(window[0], 2)} â€“ ${fixed(window[1], 2)} % C`;
 
-// A channel's value in the channel's own unit, temperatures as this screen shows them.
+// A channel's value in the channel's own unit, temperatures as this screen shows them; fine enough to tell two
+// readings apart.
 export function channelText(value: number, unit: string, shown: TemperatureUnit): string {
-  if (unit === 'degC') return temperatureText(value, shown);
-  if (unit === 'degF') return temperatureText(toDegc(value, 'degf'), shown);
-  if (unit === 'K') return temperatureText(value - 273.15, shown);
+  const degc = unit === 'degC' ? value : unit === 'degF' ? toDegc(value, 'degf') : unit === 'K' ? value - 273.15 : null;
+  if (degc !== null) return `${fixed(fromDegc(degc, shown), 1)} ${temperatureName(shown)}`;
   if (unit === 'wt_pct') return `${fixed(value, 3)} % C`;
   return `${plainNumber(value, 3)} ${unitName(unit)}`;
 }

@@ -110,7 +110,7 @@ test('a name becomes a key', () => {
 });
 
 test('values and sentences follow the screen’s unit of temperature', () => {
-  assert.equal(channelText(1700, 'degF', 'degc'), '927 °C');
+  assert.equal(channelText(1700, 'degF', 'degc'), '926.7 °C');
   assert.equal(channelText(1200.5, 'mV', 'degc'), '1200.5 mV');
   assert.equal(withTemperatures('after quench to 60 degC and tempering 180 degC, 2 h', 'degf'), 'after quench to 140 °F and tempering 356 °F, 2 h');
 });

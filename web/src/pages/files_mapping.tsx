@@ -60,7 +60,7 @@ function Columns({ mapping, set, preview, channels }: Pick<Props, 'mapping' | 's
     return <li key={column}><span class="column-name"><b>{column}</b><small>{inFile.includes(column) ? sample && `first: ${sample}` : 'not in this file'}</small></span>
       <SelectField path={at >= 0 ? `mapping.columns[${at}].channel` : `column ${column}`} label="gives" value={valueOf(use)} options={withValue(uses, valueOf(use))} set={(value) => set(withUse(mapping, column, useFrom(value)))} />
       {fed && <SelectField path={`mapping.columns[${at}].unit`} label="in" value={fed.unit ?? ''} options={withValue(units, fed.unit ?? '')} set={(unit) => set(withColumn(mapping, column, { unit: unit || null }))} />}
-      {fed && <NumberField path={`mapping.columns[${at}].factor`} label="times" unit="" value={fed.factor} set={(factor) => { if (!Number.isNaN(factor)) set(withColumn(mapping, column, { factor })); }} step={1} base={1} digits={6} />}
+      {fed && <NumberField path={`mapping.columns[${at}].factor`} label="multiplied by" unit="" value={fed.factor} set={(factor) => { if (!Number.isNaN(factor)) set(withColumn(mapping, column, { factor })); }} step={1} base={1} digits={6} />}
     </li>;
   })}</ol>;
 }

@@ -54,7 +54,7 @@ interface RowProps { conflict: Conflict; pick: Choice['value'] | undefined; text
 function Row({ conflict, pick, text, set }: RowProps) {
   const at = Date.parse(conflict.at);
   const now = pick === undefined ? conflict.chosen?.value : pick;
-  const button = (value: number | null, label: string) => <button type="button" class="button plain" key={label} data-testid="conflict-value" aria-pressed={now !== undefined && now === value} onClick={() => set(value)}>{label}</button>;
+  const button = (value: number | null, label: string) => <button type="button" class="button plain" key={String(value)} data-testid="conflict-value" aria-pressed={now !== undefined && now === value} onClick={() => set(value)}>{label}</button>;
   return <li><span class="conflict-at"><b>{clockText(at, true)}</b><small>{dayText(at)}</small></span>
     <span class="pick" role="group" aria-label={`Value at ${clockText(at, true)}`}>{[...conflict.values].sort((a, b) => a - b).map((value) => button(value, text(value)))}{button(null, 'none')}</span>
     {pick === undefined && conflict.chosen && <small>chosen by {conflict.chosen.person}</small>}</li>;

@@ -90,7 +90,7 @@ function Head({ draft, change, lists, offer }: HeadProps) {
     <legend><h2>Load</h2></legend>
     <div class="grid">
       <TextField path="name" label="load number" value={draft.name} maxLength={60} set={(name) => change({ name })}
-        extra={offer !== null && draft.name === '' && <button type="button" class="button plain" data-testid="offer" aria-label={`Load number ${offer}`} onClick={() => change({ name: offer })}>{offer}</button>} />
+        extra={offer !== null && draft.name === '' && <button type="button" class="button plain" data-testid="offer" aria-label={`Load number ${offer}`} onClick={() => change({ name: offer })}>take {offer}</button>} />
       <TextField path="person" label="your name" value={draft.person} set={(person) => change({ person })} />
       <SelectField path="furnace" label="furnace" value={draft.furnace} set={(next) => change({ furnace: next, chamber: '' })} options={[{ value: '', text: 'choose' }, ...lists.furnaces.map((each) => ({ value: each.id, text: each.name }))]} />
       {chambers.length > 1 ? <SelectField path="chamber" label="chamber" value={draft.chamber} set={(chamber) => change({ chamber })} options={[{ value: '', text: 'choose' }, ...chambers.map((each) => ({ value: each.id, text: each.name }))]} /> : <SaidAt path="chamber" />}
