@@ -101,8 +101,8 @@ async function preferences() {
   await page.locator('[data-testid="unit-length"]').tap();
   await page.locator('[data-testid="unit-temperature"]').tap();
   await page.reload();
-  await page.locator('.rows').waitFor();
-  check('units: inches and Fahrenheit are kept over a reload', (await page.locator('.big small').textContent()) === 'in' && (await page.locator('.rows').textContent()).includes('°F'));
+  await page.locator('.rows').first().waitFor();
+  check('units: inches and Fahrenheit are kept over a reload', (await page.locator('.big small').textContent()) === 'in' && (await page.locator('.rows').first().textContent()).includes('°F'));
   await page.locator('[data-testid="theme"]').tap();
   await page.locator('[data-testid="theme"]').tap();
   check('theme: the second press is dark', await page.evaluate(() => document.documentElement.dataset.theme) === 'dark');

@@ -40,7 +40,7 @@ export function PartFields({ item, at, put, steels }: PartProps) {
   };
   return <>
     <SelectField path={`${at}.steel`} label="steel" value={item.ownSteel ? ownMark : item.steel} set={pick}
-      options={[{ value: '', text: 'choose' }, { value: ownMark, text: item.ownSteel?.name.trim() ? `${item.ownSteel.name} (own analysis)` : 'the heat’s own analysis' }, ...steels.map((steel) => ({ value: steel.id, text: `${steel.id} · ${steel.standard}` }))]} />
+      options={[{ value: '', text: 'choose' }, ...steels.map((steel) => ({ value: steel.id, text: `${steel.id} · ${steel.standard}` })), { value: ownMark, text: item.ownSteel?.name.trim() ? `${item.ownSteel.name} (own analysis)` : 'the heat’s own analysis' }]} />
     <SelectField path={`${at}.section`} label="section" value={item.shape} options={shapes} set={(shape) => put({ shape: shape as Shape })} />
     {sizesOf[item.shape].map((name) => <NumberField key={name} path={`${at}.section.${name}`} label={name.replace('_mm', '').replace('_', ' ')} value={item.size[name]} set={(value) => put({ size: { ...item.size, [name]: value } })} {...size} />)}
   </>;
