@@ -30,6 +30,11 @@ test('the path begins where and when the corrected load was started, later stays
   assert.deepEqual(built.definition.path, [{ from: '2026-03-02T06:00:00Z', furnace: 'twin-6', chamber: 'second' }, ...full.path!.slice(1)]);
 });
 
+test('a load that was moved is corrected at its first place, wherever it stands now', () => {
+  const draft = correctionOf({ ...full, chamber: 'second' });
+  assert.equal(draft.chamber, 'heating');
+});
+
 test('a load started again takes no path, no stretches and no earlier profile along', () => {
   const built = definitionOf({ ...sameAs(full as LoadBody, full.name, newDraft('twin-6', 'Late shift')), name: '2298' }, '2026-03-03T06:00:00Z');
   assert.ok('definition' in built);

@@ -52,8 +52,10 @@ export function sameAs(earlier: LoadBody, name: string, draft: Draft): Draft {
 // A load as it stands, to be put right. Nothing of its definition is dropped.
 export function correctionOf(load: LoadDefinition): Draft {
   const { name, furnace, chamber, person, started_at, recipe, items, film_min, quench, path, ...kept } = load;
+  const first = path?.[0];
+  const begun = first && !first.outside ? first : { furnace, chamber: chamber ?? '' };
   return {
-    name, furnace, chamber: chamber ?? '', person, startedAt: localInput(Date.parse(started_at)),
+    name, furnace: begun.furnace, chamber: begun.chamber, person, startedAt: localInput(Date.parse(started_at)),
     recipeName: recipe.name, recipeLibrary: recipe.library ?? null, segments: recipe.segments.map(segmentFrom),
     items: items.map((item, i) => ({ ...itemFrom(item, i), rework: item.rework_of ?? null, initialProfile: item.initial_profile })),
     film_min: film_min ?? null, quench: quenchFrom(quench), again: null, path: path ?? null, kept,
