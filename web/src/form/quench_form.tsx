@@ -22,7 +22,8 @@ export function QuenchForm({ at, quench, set, film }: Props) {
       <NumberField path={`${at}.temperature_degc`} label="coldest in the quench" value={quench.temperature_degc} set={(temperature_degc) => set({ ...quench, temperature_degc })} base={round(usualQuenchDegc)} {...heat} />
       <NumberField path={`${at}.tempering.temperature_degc`} label="tempering at" value={quench.temper_degc} set={(temper_degc) => set({ ...quench, temper_degc })} base={round(180)} {...heat} />
       <NumberField path={`${at}.tempering.hours`} label="tempering for" unit="h" value={quench.temper_h} set={(temper_h) => set({ ...quench, temper_h })} step={0.5} base={2} digits={2} />
-      {film && <NumberField path="film_min" label="slow start (oxide, wash residue)" unit="min" value={film.value} set={film.set} step={5} base={15} digits={1} />}
+      {film && <NumberField path="film_min" label="slow start" unit="min" value={film.value} set={film.set} step={5} base={15} digits={1} />}
     </div>
+    {film && <p class="hint">Slow start: for so long oxide or wash residue on the parts holds the carbon back.</p>}
   </details>;
 }

@@ -75,7 +75,7 @@ function SegmentRare({ at, segment, put, itemNames }: SegmentProps & { itemNames
   const extras = segmentExtras(segment, units);
   return <details class="rare"><summary><span>{extras || 'Ramp, tolerance, what ends it'}</span></summary>
     <div class="grid">
-      <NumberField path={`${at}.ramp_min`} label="ramp from the segment before" unit="min" value={segment.ramp_min} set={(ramp_min) => put({ ramp_min })} step={5} base={20} digits={1} />
+      <NumberField path={`${at}.ramp_min`} label="ramp over" unit="min" value={segment.ramp_min} set={(ramp_min) => put({ ramp_min })} step={5} base={20} digits={1} />
       <NumberField path={`${at}.tolerance_min`} label="called long after" unit="min more" value={segment.tolerance_min} set={(tolerance_min) => put({ tolerance_min })} step={5} base={10} digits={1} />
       <SelectField path={`${until}.kind`} label="it ends" value={segment.until} options={ends} set={(kind) => put({ until: kind as DraftSegment['until'], untilValue: null })} />
       {segment.until !== '' && <NumberField path={until} value={segment.untilValue} set={(untilValue) => put({ untilValue })} {...target} />}
@@ -84,5 +84,6 @@ function SegmentRare({ at, segment, put, itemNames }: SegmentProps & { itemNames
         : <TextField path={`${until}.item`} label="of item" value={segment.untilItem} maxLength={60} set={(untilItem) => put({ untilItem })} />)}
       {segment.until !== '' && <NumberField path={`${at}.longest_min`} label="at the latest after" unit="min" value={segment.longest_min} set={(longest_min) => put({ longest_min })} step={10} base={180} digits={1} />}
     </div>
+    <p class="hint">A ramp runs straight from the segment before to these set points. A segment is called long when it runs on so much over its time.</p>
   </details>;
 }

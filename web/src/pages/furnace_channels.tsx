@@ -46,6 +46,6 @@ function ChannelFacts({ channel, chamber }: { channel: Channel; chamber: string 
     <p class="last"><b>{last ? channelText(last.value, channel.unit, temperature) : '–'}</b> <span>{lastAt ? `${ageText((nowMs - lastAt) / 1000)} ago` : 'no reading yet'}</span></p>
     {health && <p class={`mark ${good ? 'quiet' : 'guess'}`} data-health={health.state}><Shape name={health.state} /><span><b>{health.state}</b> <span class="mark-sentence">{health.sentence}</span>
       {!good && health.since && <small class="under">since {momentText(Date.parse(health.since), nowMs)}</small>}</span></p>}
-    <p class="hint">{channel.stored} stored{channel.typical_interval_s ? `, one each ${ageText(channel.typical_interval_s)}` : ''}{refused.length > 0 && `; refused: ${refused.map(([reason, many]) => `${many} ${reason}`).join(', ')}`}</p>
+    <p class="hint">{channel.stored} stored{channel.typical_interval_s ? `, one each ${ageText(channel.typical_interval_s)}` : ''}{channel.conflicts > 0 && `; times with two values: ${channel.conflicts}`}{refused.length > 0 && `; refused: ${refused.map(([reason, many]) => `${many} ${reason}`).join(', ')}`}</p>
   </>;
 }

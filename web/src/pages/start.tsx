@@ -33,6 +33,9 @@ export function Start({ furnace }: { furnace: string }) {
   const units = useStore(prefs);
   const turn = useRefusal(form, () => groupsOf(draft));
   useEffect(() => { keep(keptAs, draft); }, [draft]);
+  useEffect(() => { if (lists.steels.length > 0) setDraft((before) => withLibrarySteels(before, lists.steels)); }, [lists.steels]);
+  const line = lists.furnaces.find((each) => each.id === draft.furnace && each.line);
+  useEffect(() => { if (line && draft.chamber === '') change({ chamber: line.chambers[0]?.id ?? '' }); }, [line, draft.chamber]);  // trays enter a line at its first zone
   const change = (part: Partial<Draft>) => setDraft((before) => ({ ...before, ...part }));
   const furnaceName = lists.furnaces.find((each) => each.id === draft.furnace)?.name ?? draft.furnace;
 
