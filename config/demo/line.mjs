@@ -53,7 +53,7 @@ const body = (name, started_ms) => ({
 // A tray for each push from a full line before `start_ms` on, as long as it is through within `hours`.
 export function lineEntries(start_ms, hours) {
   const entries = [];
-  for (let push = -PLACES; (push + PLACES) * PUSH_MIN <= hours * 60; push++) {
+  for (let push = -PLACES; (push + PLACES) * PUSH_MIN < hours * 60; push++) {
     const start_min = push * PUSH_MIN;
     const end_min = start_min + THROUGH_MIN;
     entries.push({

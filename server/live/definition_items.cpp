@@ -198,7 +198,10 @@ Item read_item(const Json& entry, const std::string& path, const Plant& plant, d
   if (fields.has("initial_profile")) {
     item.initial = read_initial(fields);
     const double reach = item.section.reach_mm();
-    if (std::fabs(item.initial->depth_mm.back() - reach) > 0.05 * reach)
+    // As the model asks: the last depth of a profile is the middle of its innermost piece.
+    const auto& depth = item.initial->depth_mm;
+    const double inner = 0.5 * (depth.back() - depth[depth.size() - 2]);
+    if (depth.back() > reach * (1 + 1e-9) || depth.back() + inner < 0.95 * reach)
       fields.fail("initial_profile", "reaches " + rounded(item.initial->depth_mm.back()) +
                                          " mm deep, but this section " + rounded(reach) +
                                          " mm: rework needs the section of the earlier load.");

@@ -202,7 +202,7 @@ void Engine::follow_pushes(storage::Reader& reader) {
         if (tracked.row.furnace == id) from_us = std::min(from_us, tracked.row.started_us + 1);
     const auto before = reader.newest(signal, from_us - 1);
     const auto samples = reader.accepted(signal, from_us, latest_time_us);
-    for (const std::int64_t at_us : rises(samples, before ? std::optional(before->value) : std::nullopt)) {
+    for (const std::int64_t at_us : rises(samples, before)) {
       try {
         push_line(line, parts_.store, reader, {id, at_us, "Push signal", "signal"}, parts_.clock.now_us());
         loads_dirty_ = true;

@@ -1,5 +1,7 @@
 #include "server/live/push_line.h"
 
+#include <cmath>
+
 #include "server/base/time_text.h"
 #include "server/live/definition_json.h"
 
@@ -114,11 +116,19 @@ std::vector<MovedLoad> push_line(const Furnace& line, storage::Store& store, sto
   return moved;
 }
 
-std::vector<std::int64_t> rises(const std::vector<storage::Reading>& samples, std::optional<double> before) {
+std::vector<std::int64_t> rises(const std::vector<storage::Reading>& samples,
+                                std::optional<storage::Reading> before) {
+  constexpr double most_at_once = 50;
   std::vector<std::int64_t> times;
   for (const storage::Reading& sample : samples) {
-    if (before && sample.value > *before) times.push_back(sample.time_us);
-    before = sample.value;
+    if (before && sample.value > before->value) {
+      const double step = sample.value - before->value;
+      const bool counter = step == std::floor(step) && step <= most_at_once;
+      const auto pushes = counter ? static_cast<std::int64_t>(step) : 1;
+      for (std::int64_t i = 1; i <= pushes; ++i)
+        times.push_back(before->time_us + (sample.time_us - before->time_us) * i / pushes);
+    }
+    before = sample;
   }
   return times;
 }

