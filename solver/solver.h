@@ -10,15 +10,21 @@
 #include "solver/diffusion/mesh.h"
 #include "solver/material/activity.h"
 #include "solver/material/alloy.h"
+#include "solver/material/case_hardness.h"
 #include "solver/material/diffusivity.h"
+#include "solver/material/hardenability.h"
 #include "solver/material/hardness.h"
+#include "solver/material/martensite.h"
+#include "solver/material/sources.h"
 #include "solver/material/steel.h"
+#include "solver/material/tempering.h"
 #include "solver/process/gas_carburizing.h"
+#include "solver/section/hardness_profile.h"
 #include "solver/section/measures.h"
 
 namespace hearthfront::solver {
 
 // Part of every stored result. Raised whenever a change can alter a bit of a result.
-inline constexpr const char* model_version = "gas-carburizing 1";
+inline constexpr const char* model_version = "gas-carburizing 2";
 
 }  // namespace hearthfront::solver

@@ -118,7 +118,7 @@ std::int64_t insert_load(Connection& connection, const LoadRow& row, std::vector
 
 void revise_loads(Connection& connection, const std::vector<LoadChange>& changes,
                   const std::vector<AuditRow>& audits, const std::optional<PushRow>& push) {
-  if (changes.empty() || changes.size() != audits.size())
+  if ((changes.empty() && !push) || changes.size() != audits.size())
     throw StorageError(StorageFault::misuse, "A change of loads needs one audit row for each load.");
   std::vector<LoadRow> before, after;
   for (const LoadChange& change : changes) {

@@ -12,6 +12,7 @@ import { mkdirSync, readFileSync, readdirSync, writeFileSync } from 'node:fs';
 import { dirname, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { probeEmf_mV } from './gas.mjs';
+import { LINE, lineEntries, lineLog, linePath } from './line.mjs';
 import { randomSource, simulateFurnace } from './simulate.mjs';
 
 const here = dirname(fileURLToPath(import.meta.url));
@@ -30,6 +31,13 @@ export function readLoads() {
     .sort((a, b) => Date.parse(a.started_at) - Date.parse(b.started_at) || a.name.localeCompare(b.name));
 }
 
+// The stays of a load as its file tells them: where it began and where it moved.
+function pathOf(entry, start_ms) {
+  if (entry.body.furnace === LINE) return linePath(entry, start_ms);
+  const begin = { from: entry.body.started_at, furnace: entry.body.furnace, chamber: entry.body.chamber ?? 'main' };
+  return [begin, ...entry.moves.map((move) => ({ from: move.at, furnace: entry.body.furnace, chamber: move.chamber }))];
+}
+
 // Every load that ends within `hours`, moved to `start_ms`, with a number of its own.
 export function schedule(start_ms, hours) {
   const day = readLoads();
@@ -39,12 +47,23 @@ export function schedule(start_ms, hours) {
       const begin_min = index * DAY_MIN + (Date.parse(load.started_at) - FIRST_DAY_MS) / 60000;
       const end_min = begin_min + loadMinutes(load);
       if (end_min > hours * 60) continue;
-      const body = { ...load, name: String(Number(load.name) + index * day.length) };
+      const { moves = [], ...rest } = load;
+      const body = { ...rest, name: String(Number(load.name) + index * day.length) };
       body.started_at = iso(start_ms + begin_min * 60000);
-      entries.push({ body, start_min: begin_min, end_min, ended_at: iso(start_ms + end_min * 60000) });
+      entries.push({
+        body,
+        start_min: begin_min,
+        end_min,
+        ended_at: iso(start_ms + end_min * 60000),
+        moves: moves.map((move) => ({
+          at: iso(start_ms + (begin_min + move.after_min) * 60000),
+          after_min: move.after_min,
+          chamber: move.chamber,
+        })),
+      });
     }
   }
-  return entries;
+  return [...entries, ...lineEntries(start_ms, hours)];
 }
 
 const decimalComma = (value, digits) => value.toFixed(digits).replace('.', ',');
@@ -86,19 +105,70 @@ const LOGGERS = {
       return `${iso(time_ms)},${sample.temperature_degc.toFixed(1)},${inLoad},${carbon},1450`;
     },
   },
+  'twin-6': {
+    second: 44,
+    header: ['time;heat C;heat CP;second C;second CP'],
+    chambers: {
+      heating: { load_lag_min: 17, load_mass_ratio: 0.26 },
+      second: { load_lag_min: 17, load_mass_ratio: 0.2, arrives_degc: 900, gas_kept: 0.9 },
+    },
+    row(time_ms, heating, second) {
+      const cells = [heating, second].flatMap((s) => [s.temperature_degc.toFixed(1), s.carbon_potential_wt_pct.toFixed(3)]);
+      return [iso(time_ms), ...cells].join(';');
+    },
+  },
 };
+
+// The stretches of loads that one chamber sees, with the segments run there.
+function chamberStays(entries, chamber) {
+  const stays = [];
+  for (const entry of entries) {
+    const cuts = [{ after_min: 0, chamber: entry.body.chamber }, ...entry.moves, { after_min: Infinity }];
+    let at_min = 0;
+    const segments = entry.body.recipe.segments.map((segment) => {
+      const begin_min = at_min;
+      at_min += segment.duration_min;
+      return { ...segment, begin_min };
+    });
+    for (let i = 0; i + 1 < cuts.length; i++) {
+      if (cuts[i].chamber !== chamber) continue;
+      const here = segments.filter((s) => s.begin_min >= cuts[i].after_min && s.begin_min < cuts[i + 1].after_min);
+      stays.push({
+        start_min: entry.start_min + cuts[i].after_min,
+        end_min: Math.min(entry.end_min, entry.start_min + cuts[i + 1].after_min),
+        segments: here,
+      });
+    }
+  }
+  return stays;
+}
+
+function twoChamberLog(logger, entries, start_ms, hours, seed) {
+  const each = Object.entries(logger.chambers).map(([chamber, simulation], i) =>
+    simulateFurnace({ ...simulation, loads: chamberStays(entries, chamber), minutes: hours * 60, seed: seed + 17 * i }));
+  const lines = [...logger.header];
+  for (let minute = 0; minute < hours * 60; minute++) {
+    const samples = each.map((simulation) => simulation.next().value);
+    lines.push(logger.row(start_ms + minute * 60000 + logger.second * 1000, ...samples));
+  }
+  return lines.join('\n') + '\n';
+}
+
+export const FURNACES = [...Object.keys(LOGGERS), LINE];
 
 export const GAP = { furnace: 'batch-4', from_min: 370, to_min: 395 };
 export const LATE = { furnace: 'pit-2', from_min: 630, to_min: 651, delivered_min: 658 };
 
 // The text of one furnace's log.
 export function furnaceLog(id, entries, start_ms, hours, seed) {
+  if (id === LINE) return lineLog(start_ms, hours, seed);
   const logger = LOGGERS[id];
   const order = Object.keys(LOGGERS).indexOf(id);
   const random = randomSource(seed + 7919 * (order + 1));
   const loads = entries
     .filter((entry) => entry.body.furnace === id)
     .map((entry) => ({ ...entry, segments: entry.body.recipe.segments }));
+  if (logger.chambers) return twoChamberLog(logger, entries.filter((e) => e.body.furnace === id), start_ms, hours, seed + order);
   const lines = [...logger.header];
   const held = [];
   const samples = simulateFurnace({ ...logger.simulation, loads, minutes: hours * 60, seed: seed + order });
@@ -139,21 +209,22 @@ function main() {
   const { out, start_ms, hours, seed } = options(process.argv.slice(2));
   mkdirSync(join(out, 'loads'), { recursive: true });
   const entries = schedule(start_ms, hours);
-  for (const id of Object.keys(LOGGERS)) {
+  for (const id of FURNACES) {
     writeFileSync(join(out, `${id}.csv`), furnaceLog(id, entries, start_ms, hours, seed));
   }
-  for (const { body, ended_at } of entries) {
+  for (const entry of entries) {
+    const { body, ended_at } = entry;
     const file = join(out, 'loads', `${body.furnace}-${body.name}.json`);
-    writeFileSync(file, JSON.stringify({ ...body, ended_at }, null, 2) + '\n');
+    writeFileSync(file, JSON.stringify({ ...body, ended_at, path: pathOf(entry, start_ms) }, null, 2) + '\n');
   }
   const plan = {
     note: 'Invented demo plant.',
     start: iso(start_ms),
     end: iso(start_ms + hours * 3600000),
-    loads: entries.map(({ body, ended_at }) => ({ body, ended_at })),
+    loads: entries.map(({ body, ended_at, moves = [], pushed = false }) => ({ body, ended_at, moves, pushed })),
   };
   writeFileSync(join(out, 'schedule.json'), JSON.stringify(plan, null, 1) + '\n');
-  console.log(`Wrote ${hours} h of invented logs for ${Object.keys(LOGGERS).length} furnaces and ` +
+  console.log(`Wrote ${hours} h of invented logs for ${FURNACES.length} furnaces and ` +
     `${entries.length} loads to ${out}.`);
 }
 

@@ -98,11 +98,25 @@ async function actOn(api, entry, known, now_ms) {
   const state = known.get(key);
   if (state.state !== 'open') return;
   await writeNotes(api, entry, state, now_ms);
+  await move(api, entry, state, now_ms);
+  // The push signal takes trays out; nobody ends them by hand.
+  if (entry.pushed) return;
   if (now_ms >= Date.parse(entry.ended_at)) {
     const end = { person: entry.body.person, ended_at: entry.ended_at };
     await api('POST', `/api/v1/loads/${state.id}/end`, end);
     state.state = 'ended';
     console.log(`Load ${entry.body.name} is out of ${entry.body.furnace}.`);
+  }
+}
+
+async function move(api, entry, state, now_ms) {
+  const due = (entry.moves ?? []).filter((each) => now_ms >= Date.parse(each.at));
+  if (!due.length || state.moved >= due.length) return;
+  if (state.moved === undefined) state.moved = (await api('GET', `/api/v1/loads/${state.id}`)).definition.path.length - 1;
+  for (; state.moved < due.length; state.moved++) {
+    const { at, chamber } = due[state.moved];
+    await api('POST', `/api/v1/loads/${state.id}/move`, { person: entry.body.person, at, chamber });
+    console.log(`Load ${entry.body.name} moved to ${chamber}.`);
   }
 }
 
@@ -115,6 +129,8 @@ async function act(api, plan, known, now_ms) {
       await actOn(api, entry, known, now_ms);
     } catch (error) {
       if (!(error instanceof Refused) || error.status >= 500) throw error;
+      // The push that makes room has not been followed yet.
+      if (entry.pushed && error.status === 409) return;
       console.error(`play: load ${entry.body.name} is left alone, the daemon says ${error.message}`);
       known.set(keyOf(entry.body), { state: 'left alone' });
     }

@@ -38,7 +38,8 @@ function setPoint(loads, minute) {
 
 // Yields one sample a minute: {minute, temperature_degc, load_temperature_degc | null,
 // carbon_potential_wt_pct, co_fraction}, as the instruments show them (noise included).
-export function* simulateFurnace({ loads, minutes, seed, load_lag_min, load_mass_ratio }) {
+// `arrives_degc`: how hot a load comes in; `gas_kept`: what of the gas is left after the door was open.
+export function* simulateFurnace({ loads, minutes, seed, load_lag_min, load_mass_ratio, arrives_degc = 20, gas_kept = 0.45 }) {
   const random = randomSource(seed);
   let furnace = IDLE.temperature_degc;
   let part = 20;
@@ -54,8 +55,8 @@ export function* simulateFurnace({ loads, minutes, seed, load_lag_min, load_mass
       const wanted = setPoint(loads, minute + step * STEP_MIN);
       if (wanted.load !== current) {
         if (wanted.load) {
-          part = 20; // a cold load goes in ...
-          carbon *= 0.45; // ... and air comes in with it
+          part = arrives_degc; // a load goes in ...
+          carbon *= gas_kept; // ... and air comes in with it
           co *= 0.8;
         }
         current = wanted.load;
@@ -80,6 +81,20 @@ export function* simulateFurnace({ loads, minutes, seed, load_lag_min, load_mass
       load_temperature_degc: current ? part + 0.4 * random.normal() : null,
       carbon_potential_wt_pct: Math.max(0.05, carbon + 0.012 * Math.sin(gasWave) + 0.004 * random.normal()),
       co_fraction: co + 0.0012 * Math.sin(0.37 * gasWave) + 0.0004 * random.normal(),
+    };
+  }
+}
+
+// One zone of a continuous line: constant set points, the controller's waves, noise. The same form of samples.
+export function* simulateZone({ temperature_degc, carbon_potential_wt_pct, minutes, seed }) {
+  const random = randomSource(seed);
+  let wave = random.uniform() * 2 * Math.PI;
+  for (let minute = 0; minute < minutes; minute++) {
+    wave += ((2 * Math.PI) / 13) * (1 + 0.4 * random.normal());
+    yield {
+      minute,
+      temperature_degc: temperature_degc + 1.2 * Math.sin(wave) + 0.4 * random.normal(),
+      carbon_potential_wt_pct: carbon_potential_wt_pct + 0.01 * Math.sin(0.6 * wave) + 0.004 * random.normal(),
     };
   }
 }

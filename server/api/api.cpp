@@ -18,6 +18,8 @@ void Api::add_routes() {
   add_load_routes();
   add_view_routes();
   add_furnace_routes();
+  add_channel_routes();
+  add_library_routes();
 }
 
 std::string Api::floor() const {

@@ -55,6 +55,8 @@ class Api {
   void add_load_routes();
   void add_view_routes();
   void add_furnace_routes();
+  void add_channel_routes();
+  void add_library_routes();
 
   Response status(const Request& request) const;
   Response ready(const Request& request) const;
@@ -69,22 +71,51 @@ class Api {
   Response show_load(const Request& request);
   Response add_note(const Request& request);
   Response end_load(const Request& request);
+  Response correct_load(const Request& request);
+  Response move_load(const Request& request);
+  Response cancel_load(const Request& request);
+  Response revisions(const Request& request);
+  Response recent_loads(const Request& request);
+  Response push(const Request& request);
   Response snapshot(const Request& request);
   Response result(const Request& request);
   Response history(const Request& request);
   Response furnaces(const Request& request);
   Response furnace(const Request& request);
   Response readings(const Request& request);
+  Response conflicts(const Request& request);
+  Response choose(const Request& request);
+  Response masks(const Request& request);
+  Response add_mask(const Request& request);
+  Response withdraw_mask(const Request& request);
+  Response refused(const Request& request);
+  Response library(const Request& request);
+  Response library_item(const Request& request);
+  Response save_library(const Request& request);
 
   struct FoundLoad {
     storage::LoadRow row;
     std::shared_ptr<const LoadDefinition> definition;
   };
+  struct FoundChannel {
+    const Furnace& furnace;
+    const Channel& channel;
+    std::int64_t id;
+  };
   FoundLoad find_load(const Request& request);
   const Furnace& find_furnace(const Request& request) const;
   // The one that ?mapping= names, or the only one that the furnace knows.
   CsvMapping mapping_of(const Request& request, const Furnace& furnace);
+  FoundChannel find_channel(const Furnace& furnace, const std::string& name) const;
+  void check_times(const LoadDefinition& load) const;
+  // The body with each "rework_of" replaced by the final profile of the item it names.
+  std::string with_rework(const std::string& body);
+  void refuse_ended(const FoundLoad& found) const;
+  // Stores `load` as the next revision and answers with it.
+  Response changed(const FoundLoad& found, const LoadDefinition& load, storage::AuditRow audit,
+                   bool cancelled = false);
   FurnaceState state_of(const Furnace& furnace);
+  ChannelHealth health_of(const Furnace& furnace, const Channel& channel, storage::Reader& reader) const;
   // The view of an open load as published; of an ended load derived again from its readings.
   std::shared_ptr<const LoadView> view_of(const FoundLoad& found);
   std::shared_ptr<LoadView> derive_view(const FoundLoad& found, storage::Reader& reader);

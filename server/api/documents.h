@@ -8,6 +8,7 @@
 #include <vector>
 
 #include "server/base/plant.h"
+#include "server/live/channel_health.h"
 #include "server/live/view.h"
 #include "storage/store.h"
 
@@ -31,6 +32,7 @@ std::string steels_json(const Plant& plant);
 struct ChannelState {
   const Channel* channel = nullptr;
   storage::ChannelCounts counts;
+  ChannelHealth health;
 };
 struct FurnaceState {
   const Furnace* furnace = nullptr;

@@ -2,6 +2,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "server/api/document_parts.h"
 #include "server/api/documents.h"
 #include "server/base/time_text.h"
 #include "server/live/result_fields.h"
@@ -11,6 +12,8 @@ namespace {
 
 // The floor's strip is drawn a few hundred pixels wide: more digits or points would not be seen.
 constexpr std::size_t strip_points = 40;
+// A line has dozens of loads; only the first few are drawn.
+constexpr std::size_t strips_a_furnace = 4;
 
 double rounded(double value) {
   return std::round(value * 1e4) / 1e4;
@@ -24,6 +27,16 @@ Json age_or_null(std::optional<std::int64_t> time_us, std::int64_t now_us) {
   return time_us ? Json(static_cast<double>(now_us - *time_us) * 1e-6) : Json(nullptr);
 }
 
+Json sources_json(const LoadView& view) {
+  Json sources = Json::array();
+  for (const SourceValue& each : view.result.sources)
+    sources.push_back({{"source", text(each.source)},
+                       {"value_wt_pct", each.carbon_potential_wt_pct},
+                       {"basis", text(each.basis)},
+                       {"leads", each.leads}});
+  return sources;
+}
+
 Json inputs_json(const LoadView& view) {
   const auto input = [](const char* value_name, const InputNow& now) {
     return Json{{value_name, now.value}, {"basis", text(now.basis)}, {"age_s", number_or_null(now.age_s)}};
@@ -31,6 +44,9 @@ Json inputs_json(const LoadView& view) {
   Json json{{"temperature", input("value_degc", view.temperature)},
             {"carbon_potential", input("value_wt_pct", view.carbon_potential)}};
   json["carbon_potential"]["source"] = carbon_source(view.result);
+  json["carbon_potential"]["sources"] = sources_json(view);
+  json["carbon_potential"]["disagreement_wt_pct"] = number_or_null(view.result.disagreement_wt_pct);
+  json["carbon_potential"]["disagree"] = sources_disagree(view.result);
   return json;
 }
 
@@ -38,9 +54,50 @@ Json segment_json(const LoadView& view) {
   const auto& segments = view.result.definition->recipe.segments;
   return {{"index", view.segment.index},
           {"name", segments[view.segment.index].name},
+          {"started_at", format_time(view.segment.started_us)},
+          {"by", text(view.segment.by)},
           {"elapsed_min", view.segment.elapsed_min},
           {"minutes_left", view.segment.minutes_left},
-          {"overdue", view.segment.overdue}};
+          {"long_by_min", view.segment.long_by_min},
+          {"overdue", view.segment.long_by_min > 0 || view.minutes_left < 0},
+          {"doubt", view.segment.doubt.empty() ? Json(nullptr) : Json(view.segment.doubt)}};
+}
+
+Json position_json(const LoadView& view, const Furnace& furnace) {
+  if (!view.line_position) return nullptr;
+  return {{"place", *view.line_position}, {"places", furnace.places()}};
+}
+
+Json place_json(const LoadView& view) {
+  const LoadDefinition& load = *view.result.definition;
+  const PathStep& place = load.place_at(view.result.state_us);
+  if (place.outside()) return nullptr;
+  const Furnace& furnace = *load.furnace(place.furnace);
+  return {{"furnace", furnace.id},
+          {"furnace_name", furnace.name},
+          {"chamber", place.chamber},
+          {"chamber_name", furnace.chamber(place.chamber)->name},
+          {"since", format_time(place.from_us)},
+          {"position", position_json(view, furnace)}};
+}
+
+Json path_json(const LoadDefinition& load) {
+  Json path = Json::array();
+  for (std::size_t i = 0; i < load.path.size(); ++i) {
+    const PathStep& step = load.path[i];
+    Json json{{"from", format_time(step.from_us)}, {"to", time_or_null(load.until_us(i))}};
+    if (step.outside()) {
+      json["outside"] = true;
+    } else {
+      const Furnace& furnace = *load.furnace(step.furnace);
+      json.update({{"furnace", furnace.id},
+                   {"furnace_name", furnace.name},
+                   {"chamber", step.chamber},
+                   {"chamber_name", furnace.chamber(step.chamber)->name}});
+    }
+    path.push_back(std::move(json));
+  }
+  return path;
 }
 
 // The profile thinned to the strip: every point near the surface side of the case, none beyond 3 windows.
@@ -59,7 +116,7 @@ Json strip_json(const ItemResult& item, const Item& definition) {
   return {{"depth_mm", depth}, {"carbon_wt_pct", carbon}};
 }
 
-Json floor_item_json(const LoadView& view) {
+Json floor_item_json(const LoadView& view, bool with_strip) {
   const std::size_t i = controlling_item(view.result);
   const ItemResult& item = view.result.items[i];
   const Item& definition = view.result.definition->items[i];
@@ -70,36 +127,56 @@ Json floor_item_json(const LoadView& view) {
           {"shape", text(definition.section.shape)},
           {"criterion", criterion_result_json(definition.criterion)},
           {"case_depth_mm", number_or_null(item.case_depth_mm)},
+          {"finished_case_depth_mm", number_or_null(item.finished_case_depth_mm)},
+          {"grinding_stock_mm", definition.grinding_stock_mm},
           {"case_depth_window_mm", window_json(definition.case_depth_window_mm)},
           {"surface_carbon_wt_pct", item.surface_carbon_wt_pct},
           {"surface_carbon_window_wt_pct", surface_window ? window_json(*surface_window) : Json(nullptr)},
           {"outcome", outcome_word(item.outcome)},
-          {"strip", strip_json(item, definition)}};
+          {"strip", with_strip ? strip_json(item, definition) : Json(nullptr)}};
 }
 
-Json floor_load_json(const LoadView& view) {
+Json floor_load_json(const LoadView& view, const Furnace& furnace, bool with_strip) {
   return {{"id", view.row.id},
           {"name", view.row.name},
           {"chamber", view.row.chamber},
+          {"position", position_json(view, furnace)},
           {"person", view.row.person},
           {"started_at", format_time(view.row.started_us)},
           {"condition", text(view.condition)},
+          {"data_age_s", age_or_null(view.data_us, view.now_us)},
           {"message", view.message.empty() ? Json(nullptr) : Json(view.message)},
           {"inputs", inputs_json(view)},
           {"segment", segment_json(view)},
           {"minutes_left", view.minutes_left},
           {"item_count", view.result.items.size()},
-          {"item", floor_item_json(view)}};
+          {"item", floor_item_json(view, with_strip)}};
+}
+
+std::string furnace_name(const LoadDefinition& load, const std::string& id) {
+  const Furnace* furnace = load.furnace(id);
+  return furnace ? furnace->name : id;
 }
 
 // Lower is more urgent.
 int urgency(const LoadView& view) {
   if (view.condition == Condition::stale || view.condition == Condition::no_data_yet) return 0;
   if (!view.message.empty()) return 1;
-  return view.segment.overdue ? 2 : 3;
+  return view.minutes_left < 0 ? 2 : 3;
 }
 
 }  // namespace
+
+const char* state_of(const storage::LoadRow& row) {
+  return row.cancelled ? "cancelled" : row.ended_us ? "ended" : "open";
+}
+
+Json chambers_json(const Furnace& furnace) {
+  Json chambers = Json::array();
+  for (const Chamber& chamber : furnace.chambers)
+    chambers.push_back({{"id", chamber.id}, {"name", chamber.name}, {"places", chamber.places}});
+  return chambers;
+}
 
 std::string floor_json(const Plant& plant, const Board& board, const FloorFrame& frame) {
   const auto views = board.loads();
@@ -119,6 +196,9 @@ std::string floor_json(const Plant& plant, const Board& board, const FloorFrame&
       row.urgency = std::min(row.urgency, urgency(*view));
       row.loads.push_back(view.get());
     }
+    std::stable_sort(row.loads.begin(), row.loads.end(), [](const LoadView* a, const LoadView* b) {
+      return std::pair(urgency(*a), a->minutes_left) < std::pair(urgency(*b), b->minutes_left);
+    });
     rows.push_back(std::move(row));
   }
   std::stable_sort(rows.begin(), rows.end(), [](const Row& a, const Row& b) {
@@ -130,13 +210,15 @@ std::string floor_json(const Plant& plant, const Board& board, const FloorFrame&
     Json loads = Json::array();
     Condition condition = Condition::no_load;
     for (const LoadView* view : row.loads) {
-      loads.push_back(floor_load_json(*view));
+      loads.push_back(floor_load_json(*view, *row.furnace, loads.size() < strips_a_furnace));
       if (condition == Condition::no_load || view->condition < condition) condition = view->condition;
     }
     const auto newest = board.newest_reading(row.furnace->id);
     furnaces.push_back({{"id", row.furnace->id},
                         {"name", row.furnace->name},
                         {"process", row.furnace->process},
+                        {"line", row.furnace->line},
+                        {"chambers", chambers_json(*row.furnace)},
                         {"condition", text(condition)},
                         {"data_time", time_or_null(newest)},
                         {"data_age_s", age_or_null(newest, frame.now_us)},
@@ -161,12 +243,13 @@ std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadN
                    {{"id", view.row.id},
                     {"name", view.row.name},
                     {"furnace", view.row.furnace},
-                    {"furnace_name", load.furnace.name},
+                    {"furnace_name", furnace_name(load, view.row.furnace)},
                     {"chamber", view.row.chamber},
+                    {"path", path_json(load)},
                     {"person", view.row.person},
                     {"started_at", format_time(view.row.started_us)},
                     {"ended_at", time_or_null(view.row.ended_us)},
-                    {"state", view.row.ended_us ? "ended" : "open"},
+                    {"state", state_of(view.row)},
                     {"model_version", load.model_version},
                     {"recipe", recipe_json(load.recipe)},
                     {"revision", view.row.revision}}},
@@ -178,6 +261,7 @@ std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadN
                   {"condition", text(view.condition)},
                   {"message", view.message.empty() ? Json(nullptr) : Json(view.message)},
                   {"band", band_not_computed},
+                  {"place", place_json(view)},
                   {"inputs", inputs_json(view)},
                   {"segment", segment_json(view)},
                   {"minutes_left", view.minutes_left},

@@ -1,6 +1,7 @@
 // Documents of what is stored: loads, furnaces with their channels, steels, readings.
 #include <algorithm>
 
+#include "server/api/document_parts.h"
 #include "server/api/documents.h"
 #include "server/base/time_text.h"
 #include "server/live/result_fields.h"
@@ -17,7 +18,7 @@ Json row_json(const storage::LoadRow& row) {
           {"person", row.person},
           {"started_at", format_time(row.started_us)},
           {"ended_at", row.ended_us ? Json(format_time(*row.ended_us)) : Json(nullptr)},
-          {"state", row.ended_us ? "ended" : "open"},
+          {"state", state_of(row)},
           {"created_at", format_time(row.created_us)},
           {"revision", row.revision}};
 }
@@ -34,21 +35,26 @@ Json channel_document(const ChannelState& state, std::int64_t now_us) {
   json["last"] = std::move(last);
   json["stored"] = state.counts.stored;
   json["conflicts"] = state.counts.conflicts;
+  json["undecided"] = state.counts.conflicts - state.counts.chosen;
+  json["typical_interval_s"] = number_or_null(state.health.typical_interval_s);
+  json["health"] = {
+      {"state", text(state.health.health)},
+      {"sentence", state.health.sentence},
+      {"since", state.health.since_us ? Json(format_time(*state.health.since_us)) : Json(nullptr)}};
   json["refused"] = std::move(refused);
   return json;
 }
 
 Json furnace_document(const FurnaceState& state, std::int64_t now_us) {
   const Furnace& furnace = *state.furnace;
-  Json chambers = Json::array(), mappings = Json::array(), channels = Json::array();
-  for (const Chamber& chamber : furnace.chambers)
-    chambers.push_back({{"id", chamber.id}, {"name", chamber.name}});
+  Json mappings = Json::array(), channels = Json::array();
   for (const CsvMapping& mapping : furnace.csv_mappings) mappings.push_back(mapping.name);
   for (const ChannelState& channel : state.channels) channels.push_back(channel_document(channel, now_us));
   return {{"id", furnace.id},
           {"name", furnace.name},
           {"process", furnace.process},
-          {"chambers", std::move(chambers)},
+          {"line", furnace.line},
+          {"chambers", chambers_json(furnace)},
           {"atmosphere",
            {{"co_fraction", furnace.co_fraction},
             {"h2_fraction", furnace.h2_fraction},

@@ -223,7 +223,10 @@ void EventHub::leave(std::uint64_t place, bool dropped) {
 
 void EventHub::remove_left() {
   for (const auto place : left_) {
-    clients_.erase(place);
+    const auto found = clients_.find(place);
+    // It wants no more, or does not read: nothing may stay in the kernel for it.
+    if (found->second.socket) discard_untaken(found->second.socket.get());
+    clients_.erase(found);
     --open_streams_;
   }
   left_.clear();

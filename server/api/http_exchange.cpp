@@ -19,7 +19,7 @@ constexpr std::size_t max_drained_bytes = 32u << 20;
 constexpr std::size_t small_body_bytes = 64u << 10;
 constexpr std::size_t kept_buffer_bytes = 64u << 10;
 constexpr std::size_t slowest_bytes_per_s = 256u << 10;  // counts beside the request's own time
-constexpr int reads_per_turn = 4;                        // then others get their turn
+constexpr int reads_per_turn = 1;  // of 64 KiB; then others get their turn, or many large bodies hold up all
 
 void shrink(std::string& buffer) {
   if (buffer.capacity() > kept_buffer_bytes) buffer.shrink_to_fit();
@@ -42,11 +42,11 @@ void ConnectionLoop::collect(Connection& connection, Moment now) {
     // Above that much, look before reading on: it may be a body that is refused.
     if (static_cast<std::size_t>(count) < scratch_.size() || connection.head_bytes == 0) break;
   }
-  if (ended && connection.input.empty()) return close(connection);
+  if (ended && connection.input.empty()) return leave(connection, now);
   if (fresh && !connection.input.empty()) connection.deadline = now + seconds(limits_.request_timeout_s);
   // A client that closed its side may still wait for the answer to a whole request; with less than that
   // nothing can come any more.
-  if (advance(connection, now) && ended) close(connection);
+  if (advance(connection, now) && ended) leave(connection, now);
 }
 
 bool ConnectionLoop::advance(Connection& connection, Moment now) {
@@ -95,8 +95,9 @@ bool ConnectionLoop::take_head(Connection& connection) {
   return true;
 }
 
-Moment ConnectionLoop::deadline_for(std::size_t bytes, Moment from) const {
-  return from + seconds(limits_.request_timeout_s) + seconds(bytes / slowest_bytes_per_s);
+// One that takes nothing is cut before one that is slow with much.
+void ConnectionLoop::set_flush_deadline(Connection& connection, Moment now) const {
+  connection.deadline = std::min(connection.cut_at, now + seconds(limits_.request_timeout_s));
 }
 
 void ConnectionLoop::charge_body(Connection& connection) {
@@ -124,13 +125,15 @@ void ConnectionLoop::refuse(Connection& connection, const Problem& problem, Mome
   connection.sent_bytes = 0;
   connection.close_after = true;
   connection.state = Connection::State::flushing;
-  connection.deadline = now + seconds(limits_.request_timeout_s);
+  connection.deadline = connection.cut_at = now + seconds(limits_.request_timeout_s);
   flush(connection, now);
 }
 
 void ConnectionLoop::flush(Connection& connection, Moment now) {
+  const auto before = connection.sent_bytes;
   if (!send_some(connection.socket.get(), connection.output, connection.sent_bytes)) return close(connection);
   if (connection.sent_bytes < connection.output.size()) {
+    if (connection.sent_bytes > before) set_flush_deadline(connection, now);
     return poller_.change(connection.socket.get(), EPOLLOUT | EPOLLONESHOT, connection.key);
   }
   release_charge(connection);
@@ -144,18 +147,28 @@ void ConnectionLoop::start_draining(Connection& connection, Moment now) {
   ::shutdown(connection.socket.get(), SHUT_WR);
   connection.state = Connection::State::draining;
   connection.deadline = now + linger;
+  connection.cut_at = now + seconds(limits_.request_timeout_s);
   poller_.change(connection.socket.get(), EPOLLIN | EPOLLONESHOT, connection.key);
 }
 
-void ConnectionLoop::drain(Connection& connection) {
+void ConnectionLoop::drain(Connection& connection, Moment now) {
   for (int turn = 0; turn < reads_per_turn; ++turn) {
     const auto count = ::recv(connection.socket.get(), scratch_.data(), scratch_.size(), 0);
     if (count < 0 && (errno == EAGAIN || errno == EWOULDBLOCK)) break;
-    if (count <= 0) return close(connection);
+    if (count <= 0) return leave(connection, now);
     connection.drained_bytes += static_cast<std::size_t>(count);
     if (connection.drained_bytes > max_drained_bytes) return close(connection);
   }
   poller_.change(connection.socket.get(), EPOLLIN | EPOLLONESHOT, connection.key);
+}
+
+// A socket closed before the client took its answer would live on in the kernel with all that memory, beyond
+// every limit. So the connection keeps its place; the sweep alone looks at it again, since a client that has
+// ended its side would wake the loop without end.
+void ConnectionLoop::leave(Connection& connection, Moment now) {
+  if (!has_untaken(connection.socket.get())) return close(connection);
+  if (connection.state != Connection::State::draining) return start_draining(connection, now);
+  if (now >= connection.cut_at) cut(connection);
 }
 
 void ConnectionLoop::wait_for_request(Connection& connection, Moment now) {
@@ -185,7 +198,9 @@ void ConnectionLoop::finish(Connection& connection, std::string bytes, bool clos
   // A broken connection takes this way too: the loop finds it broken again and closes it.
   connection.output = std::move(bytes);
   connection.state = Connection::State::flushing;
-  connection.deadline = deadline_for(connection.output.size(), now);
+  connection.cut_at =
+      now + seconds(limits_.request_timeout_s) + seconds(connection.output.size() / slowest_bytes_per_s);
+  set_flush_deadline(connection, now);
   connection.unsent_bytes = connection.output.size();
   unsent_bytes_ += connection.unsent_bytes;
   if (unsent_bytes_ > limits_.max_buffered_bytes) poller_.wake();

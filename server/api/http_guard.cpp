@@ -58,7 +58,10 @@ void HostGuard::check(const RequestHead& head, std::string_view local_address) c
                   {}};
   }
   if (!changes_state(head.method)) return;
-  bool foreign = head.header("sec-fetch-site") == "cross-site";
+  // A page of our own says same-origin, a person's own address line none; same-site is another port or a
+  // neighbour's name. Gateways and old browsers send nothing.
+  const auto site = head.header("sec-fetch-site");
+  bool foreign = !site.empty() && site != "same-origin" && site != "none";
   if (const auto found = head.headers.find("origin"); found != head.headers.end()) {
     const std::string_view origin = found->second;
     const auto scheme_end = origin.find("://");

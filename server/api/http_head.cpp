@@ -51,7 +51,8 @@ void check_target(std::string_view target) {
   }
 }
 
-// RFC 9112 3.2.2: a server accepts the absolute form; its authority then stands for the Host field.
+// RFC 9112 3.2.2: a server accepts the absolute form; its authority then stands for the Host field, which
+// must be there all the same (3.2).
 void take_absolute_form(RequestHead& head) {
   constexpr std::string_view scheme = "http://";
   if (lower_ascii(std::string_view(head.target).substr(0, scheme.size())) != scheme) return;
@@ -123,7 +124,6 @@ void check_framing(RequestHead& head, bool http11, const HttpLimits& limits) {
   }
   const bool bodiless = head.method == "GET" || head.method == "HEAD" || head.method == "TRACE";
   if (bodiless && head.content_length > 0) malformed("A " + head.method + " request carries no body.");
-  if (http11 && head.headers.count("host") == 0) malformed("The Host header is missing.");
 
   head.keep_alive = http11;
   for_each_part(head.header("connection"), ',', [&](std::string_view part) {
@@ -188,6 +188,7 @@ RequestHead parse_head(std::string_view head, const HttpLimits& limits) {
       add_field(line, result);
     }
   }
+  if (http11 && result.headers.count("host") == 0) malformed("The Host header is missing.");
   take_absolute_form(result);
   if (result.target.empty() || result.target.front() != '/')
     malformed("The address must begin with a slash.");

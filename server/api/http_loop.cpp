@@ -86,6 +86,9 @@ void ConnectionLoop::run() {
     if (now >= *end || !answers_pending(unread_too)) break;
   }
   const std::lock_guard lock(mutex_);
+  for (const auto& [key, connection] : connections_) {
+    if (connection->state == Connection::State::flushing) discard_untaken(connection->socket.get());
+  }
   connections_.clear();
   open_connections_ = 0;
 }
@@ -107,7 +110,7 @@ void ConnectionLoop::serve(std::uint64_t key, std::uint32_t events, Moment now) 
     case Connection::State::flushing:
       return flush(*connection, now);
     case Connection::State::draining:
-      return drain(*connection);
+      return drain(*connection, now);
     case Connection::State::working:
       return;
   }
@@ -150,6 +153,7 @@ void ConnectionLoop::give_up_unsent() {
       }
     }
     if (oldest == nullptr) return;
+    discard_untaken(oldest->socket.get());
     forget(*oldest);
   }
 }
@@ -203,6 +207,11 @@ void ConnectionLoop::tell_busy(Connection& connection, bool full) {
   poller_.change(connection.socket.get(), EPOLLOUT | EPOLLONESHOT, connection.key);
 }
 
+void ConnectionLoop::cut(Connection& connection) {
+  discard_untaken(connection.socket.get());
+  close(connection);
+}
+
 void ConnectionLoop::close(Connection& connection) {
   const std::lock_guard lock(mutex_);
   forget(connection);
@@ -253,9 +262,10 @@ void ConnectionLoop::sweep(Moment now) {
   }
   // Only this thread takes connections out that no worker holds, so the pointers stay good.
   for (Connection* connection : late) {
-    const bool started = connection->state == Connection::State::collecting && !connection->input.empty();
-    if (!started) {
-      close(*connection);
+    if (connection->state == Connection::State::flushing) {
+      cut(*connection);
+    } else if (connection->state == Connection::State::draining || connection->input.empty()) {
+      leave(*connection, now);
     } else {
       refuse(*connection,
              {408,

@@ -31,7 +31,8 @@ struct Connection {
     collecting,  // idle, or part of a request is here
     working,     // with a worker, watched by nobody
     flushing,    // part of the answer is still to be sent
-    draining     // answered and closed on our side; input is thrown away so that no reset eats the answer
+    draining  // answered and closed on our side; input is thrown away so that no reset eats the answer, and
+              // the place is kept while the kernel holds bytes of it
   };
 
   std::uint64_t key = 0;
@@ -40,6 +41,7 @@ struct Connection {
   std::string local_address;
   State state = State::collecting;
   Moment deadline;
+  Moment cut_at;  // flushing, draining: no later than that, however the client comes on
 
   std::string input;  // bytes not yet used
   HeadScanner scanner;
@@ -96,13 +98,15 @@ class ConnectionLoop {
   void charge_body(Connection& connection);
   void refuse(Connection& connection, const Problem& problem, Moment now);
   void flush(Connection& connection, Moment now);
-  void drain(Connection& connection);
+  void drain(Connection& connection, Moment now);
+  void leave(Connection& connection, Moment now);  // closes once the client has taken its answer
+  void cut(Connection& connection);                // closes now; what the client has not taken is lost
   void start_draining(Connection& connection, Moment now);
   void wait_for_request(Connection& connection, Moment now);
   void close(Connection& connection);
   void forget(Connection& connection);  // the same with the mutex held
   void tell_busy(Connection& connection, bool full);
-  Moment deadline_for(std::size_t bytes, Moment from) const;
+  void set_flush_deadline(Connection& connection, Moment now) const;
   void release_charge(Connection& connection);
   void sweep(Moment now);
   void pause_accepting(int error, Moment now);

@@ -4,6 +4,7 @@
 #include <cstdio>
 #include <exception>
 #include <mutex>
+#include <set>
 #include <stdexcept>
 
 #include "server/api/http_answer.h"
@@ -95,6 +96,7 @@ class HttpServer::Impl {
 
   const HttpLimits limits_;
   Router router_;
+  std::set<std::string, std::less<>> at_once_;  // paths whose handlers need no worker
   HttpServer::Handler fallback_ = not_found;
   std::function<void(std::string_view)> report_ = report_to_stderr;
   std::atomic<std::uint64_t> requests_ = 0;
@@ -110,7 +112,10 @@ class HttpServer::Impl {
     hooks.admit = [this](const Connection& connection) {
       guard_.check(connection.head, connection.local_address);
     };
-    hooks.work = [this](Connection& connection) { workers_.post([this, &connection] { work(connection); }); };
+    hooks.work = [this](Connection& connection) {
+      if (answered_at_once(connection.head)) return work(connection);
+      workers_.post([this, &connection] { work(connection); });
+    };
     hooks.last_answer = [this](const Response& response) { return answers_.answer({}, {response, false}); };
     hooks.report = [this](std::string_view line) { report_(line); };
     return hooks;
@@ -122,6 +127,10 @@ class HttpServer::Impl {
     std::string greeting;
   };
 
+  bool answered_at_once(const RequestHead& head) const {
+    const auto path = std::string_view(head.target).substr(0, head.target.find('?'));
+    return (head.method == "GET" || head.method == "HEAD") && at_once_.count(path) != 0;
+  }
   void work(Connection& connection);
   Outcome respond(Request& request, bool head_only);
   Outcome open_stream(const Endpoint& endpoint, const Request& request, bool head_only);
@@ -225,6 +234,11 @@ HttpServer::~HttpServer() {
 void HttpServer::route(std::string method, std::string pattern, Handler handler) {
   impl_->before_start("route()");
   impl_->router_.add(std::move(method), std::move(pattern), {std::move(handler), {}});
+}
+
+void HttpServer::route_at_once(std::string path, Handler handler) {
+  route("GET", path, std::move(handler));
+  impl_->at_once_.insert(std::move(path));
 }
 
 void HttpServer::stream(std::string path, std::function<std::string(const Request&)> greeting) {

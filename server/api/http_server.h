@@ -91,6 +91,9 @@ class HttpServer {
   // Pattern: literal segments and {} for one segment, e.g. /api/v1/loads/{}/notes; a literal goes before
   // {}. Before start only. Throws std::logic_error for a malformed or repeated pattern.
   void route(std::string method, std::string pattern, Handler handler);
+  // GET on a literal path, answered on the connections' own thread: also while every worker waits for a disk.
+  // The handler must wait for nothing and take microseconds.
+  void route_at_once(std::string path, Handler handler);
   // GET `path` becomes an SSE stream. `greeting` makes the first events for a new client, as SSE text (may
   // be empty, may throw Problem). The client is enrolled before the greeting is made: it misses no event
   // published later, but may get one again that the greeting already contained.

@@ -1,11 +1,13 @@
 #include "server/api/http_socket.h"
 
 #include <arpa/inet.h>
+#include <linux/sockios.h>
 #include <netdb.h>
 #include <netinet/in.h>
 #include <netinet/tcp.h>
 #include <sys/epoll.h>
 #include <sys/eventfd.h>
+#include <sys/ioctl.h>
 #include <sys/socket.h>
 #include <unistd.h>
 
@@ -20,6 +22,12 @@ namespace {
 
 constexpr int backlog = 1024;
 constexpr unsigned vanished_after_ms = 30000;
+// Beside what the peer's window admits. Without it the kernel takes some megabytes for each peer that does
+// not read, which no limit of ours would see.
+constexpr int max_unsent_in_kernel_bytes = 128 << 10;
+// The kernel doubles it. Else a buffer grows to what the system allows each, often 6 MB or more, and a peer
+// whose requests wait can fill it.
+constexpr int receive_buffer_bytes = 256 << 10;
 
 // bind, getsockname and the like take the general address type of C.
 sockaddr* general(sockaddr_storage& storage) {
@@ -99,7 +107,11 @@ Listener open_listener(const std::string& address, int port) {
   for (const addrinfo* one = found; one != nullptr; one = one->ai_next) {
     Descriptor socket(::socket(one->ai_family, SOCK_STREAM | SOCK_NONBLOCK | SOCK_CLOEXEC, 0));
     // Not SO_REUSEPORT: with it a second daemon would take half of the connections without a word.
-    if (socket) switch_on(socket.get(), SOL_SOCKET, SO_REUSEADDR);
+    if (socket) {
+      switch_on(socket.get(), SOL_SOCKET, SO_REUSEADDR);
+      // Connections inherit it.
+      setsockopt(socket.get(), SOL_SOCKET, SO_RCVBUF, &receive_buffer_bytes, sizeof receive_buffer_bytes);
+    }
     if (socket && ::bind(socket.get(), one->ai_addr, one->ai_addrlen) == 0 &&
         ::listen(socket.get(), backlog) == 0) {
       const int bound_port = port_of(socket.get());
@@ -116,6 +128,22 @@ Listener open_listener(const std::string& address, int port) {
 void tune_connection(int socket) {
   switch_on(socket, IPPROTO_TCP, TCP_NODELAY);
   setsockopt(socket, IPPROTO_TCP, TCP_USER_TIMEOUT, &vanished_after_ms, sizeof vanished_after_ms);
+  setsockopt(socket, IPPROTO_TCP, TCP_NOTSENT_LOWAT, &max_unsent_in_kernel_bytes,
+             sizeof max_unsent_in_kernel_bytes);
+}
+
+bool has_untaken(int socket) {
+  tcp_info info{};
+  socklen_t size = sizeof info;
+  if (getsockopt(socket, IPPROTO_TCP, TCP_INFO, &info, &size) != 0 || info.tcpi_state == TCP_CLOSE)
+    return false;
+  int bytes = 0;
+  return ioctl(socket, SIOCOUTQ, &bytes) == 0 && bytes > 0;
+}
+
+void discard_untaken(int socket) {
+  const linger at_once{1, 0};
+  setsockopt(socket, SOL_SOCKET, SO_LINGER, &at_once, sizeof at_once);
 }
 
 std::string remote_address_of(int socket) {

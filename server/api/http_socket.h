@@ -34,8 +34,14 @@ struct Listener {
 // Non-blocking, backlog 1024, the port not shared with another process. Port 0 takes a free one.
 Listener open_listener(const std::string& address, int port);
 
-// TCP_NODELAY, and an end for peers that vanished without a word.
+// TCP_NODELAY, an end for peers that vanished without a word, and a bound on what the kernel holds for those
+// that do not read.
 void tune_connection(int socket);
+// Whether the kernel holds bytes for a peer that is still there and has not taken them.
+bool has_untaken(int socket);
+// A close after this frees what the peer has not taken, and resets the connection; else the kernel would keep
+// both, counted by nobody.
+void discard_untaken(int socket);
 std::string remote_address_of(int socket);  // literal; IPv4 also where it came in over IPv6
 std::string local_address_of(int socket);
 

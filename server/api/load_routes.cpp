@@ -7,11 +7,10 @@
 #include "server/base/json_fields.h"
 #include "server/base/time_text.h"
 #include "server/live/definition_json.h"
+#include "server/live/push_line.h"
 
 namespace hearthfront::server {
 namespace {
-
-constexpr const char* invalid_request = "invalid-request";
 
 int limit_from(const Request& request) {
   const auto it = request.query.find("limit");
@@ -35,17 +34,6 @@ std::int64_t cursor_from(const Request& request) {
   return cursor;
 }
 
-// Storage calls a clash of loads or revisions misuse; to a client it is a conflict of state.
-template <typename Call>
-auto as_conflict(const char* type, const char* title, Call call) {
-  try {
-    return call();
-  } catch (const storage::StorageError& error) {
-    if (error.fault == storage::StorageFault::misuse) throw Problem{409, type, title, error.what(), ""};
-    throw;
-  }
-}
-
 }  // namespace
 
 void Api::add_load_routes() {
@@ -55,10 +43,16 @@ void Api::add_load_routes() {
   http.route("GET", "/api/v1/loads/{}", guarded([this](const Request& r) { return show_load(r); }));
   http.route("POST", "/api/v1/loads/{}/notes", guarded([this](const Request& r) { return add_note(r); }));
   http.route("POST", "/api/v1/loads/{}/end", guarded([this](const Request& r) { return end_load(r); }));
+  http.route("PUT", "/api/v1/loads/{}", guarded([this](const Request& r) { return correct_load(r); }));
+  http.route("POST", "/api/v1/loads/{}/move", guarded([this](const Request& r) { return move_load(r); }));
+  http.route("POST", "/api/v1/loads/{}/cancel", guarded([this](const Request& r) { return cancel_load(r); }));
+  http.route("GET", "/api/v1/loads/{}/revisions", guarded([this](const Request& r) { return revisions(r); }));
+  http.route("GET", "/api/v1/furnaces/{}/recent",
+             guarded([this](const Request& r) { return recent_loads(r); }));
+  http.route("POST", "/api/v1/furnaces/{}/push", guarded([this](const Request& r) { return push(r); }));
 }
 
-Response Api::create_load(const Request& request) {
-  const LoadDefinition load = read_load_body(request.body, parts_.plant);
+void Api::check_times(const LoadDefinition& load) const {
   const std::int64_t now = parts_.clock.now_us();
   const auto tolerance_us = static_cast<std::int64_t>(parts_.settings.ingest.future_tolerance_s * 1e6);
   const auto past_us = static_cast<std::int64_t>(parts_.settings.ingest.past_limit_days * 86400e6);
@@ -71,19 +65,21 @@ Response Api::create_load(const Request& request) {
   if (load.ended_us && *load.ended_us > now + tolerance_us)
     throw Problem{422, "invalid-load", "The end cannot be right", "ended_at: lies in the future.",
                   "ended_at"};
+  if (load.last_place().from_us > now + tolerance_us)
+    throw Problem{422, "invalid-load", "The move cannot be right",
+                  "path: the last step lies in the future; enter a move when it has happened.", "path"};
+}
 
-  storage::LoadRow row;
-  row.name = load.name;
-  row.furnace = load.furnace.id;
-  row.chamber = load.chamber;
-  row.person = load.person;
-  row.started_us = load.started_us;
-  row.ended_us = load.ended_us;
+Response Api::create_load(const Request& request) {
+  LoadDefinition load = read_load_body(with_rework(request.body), parts_.plant);
+  check_times(load);
+  const std::int64_t now = parts_.clock.now_us();
+  if (load.path.size() == 1) follow_line(load, *readers_.take(), now);
+  storage::LoadRow row = row_of(load);
   row.created_us = now;
-  row.definition_json = stored_definition(load);
   const storage::AuditRow audit{now, load.person, "start load", "", "", load_body(load)};
   row.id = as_conflict("chamber-in-use", "Another load is in this chamber",
-                       [&] { return parts_.store.create_load(row, audit); });
+                       [&] { return parts_.store.create_load(row, stays_of(load), audit); });
   row.revision = 1;
   parts_.loads_changed();
   return {201,
@@ -134,12 +130,8 @@ Response Api::end_load(const Request& request) {
   const std::int64_t now = parts_.clock.now_us();
   const std::string person = fields.word("person", 80);
   const std::int64_t ended = fields.has("ended_at") ? fields.time("ended_at") : now;
-  fields.ignore_null("ended_at");
   fields.finish();
-  if (found.row.ended_us) {
-    throw Problem{409, "load-already-ended", "The load has already ended",
-                  "Load " + found.row.name + " ended at " + format_time(*found.row.ended_us) + ".", ""};
-  }
+  refuse_ended(found);
   const auto tolerance_us = static_cast<std::int64_t>(parts_.settings.ingest.future_tolerance_s * 1e6);
   if (ended <= found.row.started_us || ended > now + tolerance_us)
     throw Problem{422, invalid_request, "The end cannot be right",
@@ -148,17 +140,13 @@ Response Api::end_load(const Request& request) {
                   "ended_at"};
   LoadDefinition load = *found.definition;
   load.ended_us = ended;
-  const storage::AuditRow audit{now,        person,
-                                "end load", "load " + std::to_string(found.row.id),
-                                "",         Json{{"ended_at", format_time(ended)}}.dump()};
-  as_conflict("load-changed", "Somebody else changed this load just now", [&] {
-    parts_.store.revise_load(found.row.id, found.row.revision, stored_definition(load), ended, audit);
-    return 0;
-  });
-  parts_.loads_changed();
-  ++found.row.revision;
-  found.row.ended_us = ended;
-  return {200, "application/json", load_json(found.row, load), {}};
+  if (load.last_place().from_us >= ended)
+    throw Problem{422, invalid_request, "The end cannot be right",
+                  "ended_at: the load moved at " + format_time(load.last_place().from_us) +
+                      ", after that. Correct its path first.",
+                  "ended_at"};
+  return changed(found, load,
+                 {now, person, "end load", "", "", Json{{"ended_at", format_time(ended)}}.dump()});
 }
 
 }  // namespace hearthfront::server

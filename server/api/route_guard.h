@@ -20,4 +20,17 @@ HttpServer::Handler guarded(Handler handler) {
   };
 }
 
+// Storage calls a clash of loads or revisions misuse; to a client it is a conflict of state.
+template <typename Call>
+auto as_conflict(const char* type, const char* title, Call call) {
+  try {
+    return call();
+  } catch (const storage::StorageError& error) {
+    if (error.fault == storage::StorageFault::misuse) throw Problem{409, type, title, error.what(), ""};
+    throw;
+  }
+}
+
+inline constexpr const char* invalid_request = "invalid-request";
+
 }  // namespace hearthfront::server

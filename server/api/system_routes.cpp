@@ -92,10 +92,11 @@ void Api::update_metrics() const {
 
 void Api::add_system_routes() {
   HttpServer& http = parts_.http;
-  http.route("GET", "/healthz", [](const Request&) {
+  // Both without a worker: whoever watches the daemon must hear of it while all workers wait for the disk.
+  http.route_at_once("/healthz", [](const Request&) {
     return Response{200, "text/plain; charset=utf-8", "alive\n", {}};
   });
-  http.route("GET", "/readyz", [this](const Request& r) { return ready(r); });
+  http.route_at_once("/readyz", [this](const Request& r) { return ready(r); });
   http.route("GET", "/metrics", [this](const Request&) {
     update_metrics();
     return Response{200, "text/plain; version=0.0.4; charset=utf-8", parts_.metrics.text(), {}};

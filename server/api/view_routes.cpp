@@ -5,6 +5,7 @@
 #include "server/api/route_guard.h"
 #include "server/live/derive.h"
 #include "server/live/engine.h"
+#include "server/live/push_line.h"
 #include "server/live/result_json.h"
 
 namespace hearthfront::server {
@@ -34,14 +35,15 @@ void Api::add_view_routes() {
 }
 
 std::shared_ptr<LoadView> Api::derive_view(const FoundLoad& found, storage::Reader& reader) {
-  const auto source = stored_readings(reader, [&](const std::string& channel) {
-    return parts_.acceptor.channel_id(found.row.furnace, channel).value_or(-1);
+  const auto source = stored_readings(reader, [&](const std::string& furnace, const std::string& channel) {
+    return parts_.acceptor.channel_id(furnace, channel).value_or(-1);
   });
   const std::int64_t now = parts_.clock.now_us();
   const auto load = derive(found.definition, source, found.row.ended_us.value_or(now));
   auto view =
       std::make_shared<LoadView>(make_view(*load, found.definition, now, parts_.settings.live.stale_after_s));
   view->row = found.row;
+  if (!found.row.ended_us) view->line_position = line_position(*found.definition, reader, now);
   view->sequence = parts_.board.sequence();
   return view;
 }

@@ -22,7 +22,12 @@ enum class FileUnit {
   microvolt,
   weight_percent,
   volume_percent,
-  ppm  // by volume
+  ppm,  // by volume
+  pascal,
+  hectopascal,
+  kilopascal,
+  bar,
+  count
 };
 
 enum class Encoding { automatic, utf8, utf16, utf16_le, utf16_be, windows_1252, iso_8859_1 };

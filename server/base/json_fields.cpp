@@ -61,8 +61,9 @@ JsonFields::JsonFields(const Json& object, std::string path, std::string problem
   for (const auto& [name, value] : object.items()) unread_.push_back(name);
 }
 
-bool JsonFields::has(std::string_view name) const {
+bool JsonFields::has(std::string_view name) {
   const auto it = object_.find(name);
+  if (it != object_.end() && it->is_null()) std::erase(unread_, name);
   return it != object_.end() && !it->is_null();
 }
 
@@ -85,8 +86,10 @@ const Json& JsonFields::any(std::string_view name) {
   return take(name);
 }
 
-void JsonFields::ignore_null(std::string_view name) {
-  if (!has(name)) std::erase(unread_, name);
+bool JsonFields::flag(std::string_view name) {
+  const Json& value = take(name);
+  if (!value.is_boolean()) fail(name, "expected true or false.");
+  return value.get<bool>();
 }
 
 std::string JsonFields::word(std::string_view name, std::size_t max_length) {

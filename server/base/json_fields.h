@@ -27,7 +27,8 @@ class JsonFields {
  public:
   JsonFields(const Json& object, std::string path, std::string problem_type);
 
-  bool has(std::string_view name) const;
+  // Whether it is there with a value; a member that is null counts as left out.
+  bool has(std::string_view name);
   std::string word(std::string_view name,
                    std::size_t max_length);  // 1..max characters, no control characters
   double number(std::string_view name, double low, double high, std::string_view unit);
@@ -36,7 +37,7 @@ class JsonFields {
   const Json& array(std::string_view name, std::size_t min_size, std::size_t max_size);
   const Json& object(std::string_view name);
   const Json& any(std::string_view name);
-  void ignore_null(std::string_view name);  // "member": null means the same as leaving it out
+  bool flag(std::string_view name);
   std::string path_of(std::string_view name) const;
   [[noreturn]] void fail(std::string_view name, const std::string& detail) const;
   void finish() const;

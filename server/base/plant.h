@@ -3,6 +3,7 @@
 // A load copies what it needs, so a later edit of these files never changes a past load.
 #pragma once
 
+#include <cstdint>
 #include <optional>
 #include <string>
 #include <string_view>
@@ -13,11 +14,23 @@
 
 namespace hearthfront::server {
 
-enum class Role { temperature, load_temperature, probe_temperature, probe_emf, carbon_potential, co };
-enum class Unit { degc, degf, millivolt, weight_percent, volume_percent };
+enum class Role {
+  temperature,
+  load_temperature,
+  probe_temperature,
+  probe_emf,
+  carbon_potential,
+  co,
+  h2,
+  co2,
+  dew_point,
+  pressure,  // of the furnace gas, absolute
+  push       // of a pusher line: a contact or counter whose value rises with each push
+};
+enum class Unit { degc, degf, millivolt, weight_percent, volume_percent, hectopascal, count };
 
 std::string_view text(Role role);  // "temperature", "load_temperature", ...
-std::string_view text(Unit unit);  // "degC", "degF", "mV", "wt_pct", "vol_pct"
+std::string_view text(Unit unit);  // "degC", "degF", "mV", "wt_pct", "vol_pct", "hPa", "count"
 std::optional<Role> role_from(std::string_view word);
 std::optional<Unit> unit_from(std::string_view word);
 bool unit_fits(Role role, Unit unit);
@@ -35,9 +48,17 @@ struct Channel {
   double hold_limit_s = 600;  // ... then its value is `held` until so long after it, then `planned`
 };
 
+// A chamber, or a zone of a pusher line.
 struct Chamber {
   std::string id, name;
+  int places = 1;  // loads (trays) it holds at a time
 };
+
+// What the carbon potential can be computed from, in the order a furnace trusts them.
+enum class CarbonSource : std::uint8_t { logged, probe_emf, co2, dew_point };
+std::string_view text(CarbonSource source);  // "logged", "probe emf", "CO2", "dew point"
+std::string_view key(CarbonSource source);   // "logged", "probe_emf", "co2", "dew_point"
+Role role_of(CarbonSource source);           // of its main channel
 
 struct Furnace {
   std::string id, name;
@@ -48,12 +69,18 @@ struct Furnace {
   double lag_min = 20;
   double total_pressure_bar = 1.01325;
   std::string diffusivity = "agren";  // or "tibbetts"
+  bool line = false;                  // a pusher line: its chambers are zones, trays go through them in order
+  bool dew_over_frost = false;        // what a dew-point mirror shows below 0 degC
+  std::vector<CarbonSource> carbon_sources{CarbonSource::logged, CarbonSource::probe_emf, CarbonSource::co2,
+                                           CarbonSource::dew_point};
+  double source_tolerance_wt_pct = 0.08;  // sources further apart than this disagree
   std::vector<Channel> channels;
   std::vector<CsvMapping> csv_mappings;
 
   const Channel* channel(std::string_view name) const;
   const Chamber* chamber(std::string_view id) const;
   const CsvMapping* csv_mapping(std::string_view name) const;
+  int places() const;  // of all chambers
 };
 
 struct SteelEntry {

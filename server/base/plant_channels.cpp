@@ -8,13 +8,14 @@
 namespace hearthfront::server {
 namespace {
 
-const std::vector<std::string> role_words{"temperature", "load_temperature", "probe_temperature",
-                                          "probe_emf",   "carbon_potential", "co"};
+const std::vector<std::string> role_words{
+    "temperature", "load_temperature", "probe_temperature", "probe_emf", "carbon_potential", "co", "h2",
+    "co2",         "dew_point",        "pressure",          "push"};
 
 std::vector<std::string> units_of(Role role) {
   std::vector<std::string> words;
-  for (const Unit unit :
-       {Unit::degc, Unit::degf, Unit::millivolt, Unit::weight_percent, Unit::volume_percent}) {
+  for (const Unit unit : {Unit::degc, Unit::degf, Unit::millivolt, Unit::weight_percent, Unit::volume_percent,
+                          Unit::hectopascal, Unit::count}) {
     if (unit_fits(role, unit)) words.emplace_back(text(unit));
   }
   return words;
@@ -34,6 +35,16 @@ Range plausible(Role role, Unit unit) {
       return {0, 2};
     case Role::co:
       return {0, 50};
+    case Role::h2:
+      return {0, 100};
+    case Role::co2:
+      return {0, 5};
+    case Role::dew_point:
+      return {convert(-60, Unit::degc, unit), convert(60, Unit::degc, unit)};
+    case Role::pressure:
+      return {500, 2000};
+    case Role::push:
+      return {0, 1e9};
     case Role::temperature:
     case Role::load_temperature:
     case Role::probe_temperature:

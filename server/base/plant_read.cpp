@@ -42,7 +42,7 @@ namespace {
 std::vector<Chamber> read_chambers(ConfigTable& table) {
   if (!table.has("chambers")) {
     table.tables("chambers");  // makes it a known key
-    return {{"main", "Main"}};
+    return {{"main", "Main", 1}};
   }
   std::vector<Chamber> chambers;
   std::vector<std::string> taken;
@@ -53,6 +53,8 @@ std::vector<Chamber> read_chambers(ConfigTable& table) {
     claim(each, "id", chamber.id, taken);
     chamber.name = chamber.id;
     each.text("name", chamber.name, 1, 60);
+    std::int64_t places = chamber.places;
+    if (each.integer("places", places, 1, 200)) chamber.places = static_cast<int>(places);
     each.finish();
     chambers.push_back(chamber);
   }
@@ -77,6 +79,32 @@ void read_gas(ConfigTable& table, Furnace& furnace) {
   }
 }
 
+void read_sources(ConfigTable& table, Furnace& furnace) {
+  std::string surface = "water";
+  if (table.text("dew_point_over", surface) && surface != "water" && surface != "frost")
+    table.fault("dew_point_over", "expected \"water\" or \"frost\", got \"" + surface + "\"");
+  furnace.dew_over_frost = surface == "frost";
+  table.number("source_tolerance_wt_pct", furnace.source_tolerance_wt_pct, 0.01, 1);
+  std::vector<std::string> words;
+  if (!table.texts("carbon_sources", words)) return;
+  std::vector<CarbonSource> order;
+  std::vector<std::string> known;
+  for (const CarbonSource source : Furnace{}.carbon_sources) known.emplace_back(key(source));
+  for (const std::string& word : words) {
+    const auto place = std::find(known.begin(), known.end(), word);
+    const auto source = place == known.end()
+                            ? CarbonSource::logged
+                            : Furnace{}.carbon_sources.at(static_cast<std::size_t>(place - known.begin()));
+    if (place == known.end())
+      table.fault("carbon_sources", "expected " + list_of(known) + ", got \"" + word + "\"");
+    else if (std::find(order.begin(), order.end(), source) != order.end())
+      table.fault("carbon_sources", "\"" + word + "\" stands twice");
+    else
+      order.push_back(source);
+  }
+  if (!order.empty()) furnace.carbon_sources = order;
+}
+
 Furnace read_furnace(ConfigTable& table, std::vector<std::string>& ids) {
   Furnace furnace;
   table.require("id", "readings and loads name the furnace by it");
@@ -88,7 +116,9 @@ Furnace read_furnace(ConfigTable& table, std::vector<std::string>& ids) {
     table.fault("process", "expected \"gas carburizing\", got \"" + furnace.process + "\"");
   }
   furnace.chambers = read_chambers(table);
+  table.boolean("line", furnace.line);
   read_gas(table, furnace);
+  read_sources(table, furnace);
 
   std::vector<std::string> names;
   for (ConfigTable& each : table.tables("channel")) {

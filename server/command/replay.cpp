@@ -85,7 +85,7 @@ int replay(const ReplayOptions& options) {
 
   const auto definition =
       std::make_shared<const LoadDefinition>(read_load_body(read_file(options.load_path), plant));
-  const Furnace& furnace = definition->furnace;
+  const Furnace& furnace = definition->first_furnace();
   const CsvMapping* mapping = nullptr;
   if (!options.mapping.empty())
     mapping = furnace.csv_mapping(options.mapping);
@@ -108,8 +108,9 @@ int replay(const ReplayOptions& options) {
                  options.log_path.c_str(), readings.refused(), readings.conflicts());
 
   const std::int64_t until = definition->ended_us.value_or(readings.newest_us(definition->started_us));
-  const auto source = [&](const std::string& channel, std::int64_t from, std::int64_t to) {
-    return readings.in(channel, from, to);
+  ReadingSource source;
+  source.readings = [&](const LoadChannels::Used& used, std::int64_t from, std::int64_t to) {
+    return used.furnace == furnace.id ? readings.in(used.name, from, to) : std::vector<Sample>{};
   };
   const RunResult result = read_result(*derive(definition, source, until), definition);
   std::printf("%s\n", (options.json ? result_json(result) : result_table(result)).c_str());

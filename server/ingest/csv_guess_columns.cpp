@@ -93,15 +93,32 @@ bool speaks_of(const std::set<std::string>& words, Role role) {
                           {"cp", "cpot", "pot", "potential", "carbon", "kohlenstoff", "pegel", "cpegel"});
     case Role::co:
       return any_of_words(words, {"co", "kohlenmonoxid"});
+    case Role::h2:
+      return any_of_words(words, {"h2", "hydrogen", "wasserstoff"});
+    case Role::co2:
+      return any_of_words(words, {"co2", "kohlendioxid"});
+    case Role::dew_point:
+      return any_of_words(words, {"dew", "dewpoint", "taupunkt"});
+    case Role::pressure:
+      return any_of_words(words, {"pressure", "druck", "ofendruck"});
+    case Role::push:
+      return any_of_words(words, {"push", "pushes", "pusher", "takt"});
   }
   return false;
 }
 
-// Set points, outputs and other gases are no measurement of ours.
+// A gas or a pressure is never another one's channel, whatever the unit.
+bool speaks_of_another(const std::set<std::string>& words, Role role) {
+  for (const Role other : {Role::co, Role::h2, Role::co2, Role::dew_point, Role::pressure, Role::push}) {
+    if (other != role && speaks_of(words, other)) return true;
+  }
+  return false;
+}
+
+// Set points, outputs and what is measured elsewhere.
 bool is_something_else(const std::set<std::string>& words) {
-  return any_of_words(
-      words, {"setpoint", "sp",  "set", "soll", "sollwert", "target",   "output",   "out", "power",  "alarm",
-              "status",   "co2", "ch4", "h2",   "dew",      "dewpoint", "taupunkt", "oil", "quench", "öl"});
+  return any_of_words(words, {"setpoint", "sp", "set", "soll", "sollwert", "target", "output", "out", "power",
+                              "alarm", "status", "ch4", "oil", "quench", "öl"});
 }
 
 struct Column {
@@ -156,11 +173,12 @@ int score_of(const Column& column, const Channel& channel, const Furnace& furnac
   else
     for (const std::string& word : wanted) score += words.contains(word) ? 25 : 0;
   if (speaks_of(words, channel.role)) score += 30;
-  if (is_something_else(words)) score -= 80;
+  if (is_something_else(words) || speaks_of_another(words, channel.role)) score -= 80;
   const auto unit = column.unit_for(channel.role);
   if (unit) score += 20;
   if (!unit) {
-    for (const Role role : {Role::temperature, Role::probe_emf, Role::carbon_potential, Role::co})
+    for (const Role role :
+         {Role::temperature, Role::probe_emf, Role::carbon_potential, Role::co, Role::pressure})
       if (column.unit_for(role)) return 0;  // it names a unit, of something else
   }
   const double within = column.share_within(channel, unit.value_or(likely_unit(column, channel)));

@@ -15,8 +15,23 @@ Json recipe_json(const Recipe& recipe);
 Json window_json(const Window& window);
 Json load_body_json(const LoadDefinition& load);
 
-Recipe read_recipe(JsonFields load);
-Item read_item(const Json& entry, const std::string& path, const Plant& plant, const Furnace& furnace);
+Json quench_json(const Quench& quench);
+Json furnace_copy_json(const Furnace& furnace);
+// A part as the library keeps it: an item without name, quantity and history.
+Json part_json(const Item& item);
+
+Recipe read_recipe(const Json& recipe, const std::string& path);
+Quench read_quench(JsonFields& load);
+// The figures of the drawing, of a load's item or of a library part. Leaves finish() to the caller.
+void read_part(JsonFields& fields, Item& item, const Plant& plant, double default_lag_min);
+// After quench and item are known: the carbon content that the criterion means.
+void settle_criterion(Item& item, const Quench& quench, const std::string& path);
+Item read_item(const Json& entry, const std::string& path, const Plant& plant, double default_lag_min);
+std::optional<LibraryCopy> read_library_copy(JsonFields& fields);
+std::vector<PathStep> read_path(JsonFields& load, const Plant& plant, std::int64_t started_us,
+                                std::optional<std::int64_t> ended_us);
+std::vector<MaskSpan> read_masks(JsonFields& load);
+Furnace read_furnace_copy(const Json& json);
 
 inline constexpr const char* invalid_load = "invalid-load";
 

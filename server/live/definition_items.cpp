@@ -1,9 +1,12 @@
+#include <algorithm>
 #include <array>
 #include <cmath>
 #include <cstdio>
+#include <functional>
 #include <limits>
 
 #include "server/live/definition_fields.h"
+#include "solver/material/case_hardness.h"
 #include "solver/material/hardness.h"
 
 namespace hearthfront::server {
@@ -97,49 +100,54 @@ Criterion read_criterion(JsonFields& item) {
       criterion.martensite_pct = fields.number("martensite_pct", 50, 99, "%");
     fields.finish();
   }
-  if (criterion.kind == CriterionKind::carbon) return criterion;
-  const auto hrc = criterion.kind == CriterionKind::hardness_hrc ? std::optional(criterion.limit)
-                                                                 : solver::hrc_from_hv(criterion.limit);
-  const auto carbon = hrc ? solver::carbon_for_hardness_hrc(*hrc, criterion.martensite_pct) : std::nullopt;
-  if (!carbon)
-    item.fail("criterion", "no carbon content up to 0.6 % gives " + criterion.text() +
-                               "; choose a lower hardness or a higher share of martensite.");
-  criterion.carbon_limit_wt_pct = *carbon;
   return criterion;
+}
+
+// The carbon content at which the case has the hardness the drawing names, by the measured table alone: the
+// few per cent of austenite near that carbon are in the table already.
+std::optional<double> carbon_of(const Item& item, const Quench& quench) {
+  const Criterion& criterion = item.criterion;
+  const auto hv = criterion.kind == CriterionKind::hardness_hrc ? solver::hv_from_hrc(criterion.limit)
+                                                                : std::optional(criterion.limit);
+  if (!hv) return std::nullopt;
+  return solver::carbon_for_hardness_hv(*hv, item.steel.composition,
+                                        {criterion.martensite_pct, std::nullopt, quench.tempering});
+}
+
+InitialProfile read_initial(JsonFields& item) {
+  JsonFields fields(item.object("initial_profile"), item.path_of("initial_profile"), invalid_load);
+  InitialProfile initial;
+  if (fields.has("load")) initial.load = fields.integer("load", 1, 2'000'000'000);
+  if (fields.has("item")) initial.item = fields.word("item", 40);
+  const auto column = [&](const char* name, double low, double high, std::vector<double>& into) {
+    for (const Json& value : fields.array(name, 4, 2000)) {
+      const double number = value.is_number() ? value.get<double>() : high + 1;
+      if (!(number >= low && number <= high))
+        fields.fail(name, "expected numbers from " + rounded(low) + " to " + rounded(high) + ".");
+      into.push_back(number);
+    }
+  };
+  column("depth_mm", 0, 1000, initial.depth_mm);
+  column("carbon_wt_pct", 0, 2.5, initial.carbon_wt_pct);
+  if (initial.depth_mm.size() != initial.carbon_wt_pct.size() || initial.depth_mm.front() != 0 ||
+      !std::is_sorted(initial.depth_mm.begin(), initial.depth_mm.end(), std::less_equal<>{}))
+    fields.fail("depth_mm", "expected as many depths as carbon contents, from 0 inward.");
+  fields.finish();
+  return initial;
 }
 
 }  // namespace
 
-Recipe read_recipe(JsonFields load) {
-  JsonFields fields(load.object("recipe"), "recipe", invalid_load);
-  Recipe recipe;
-  recipe.name = fields.word("name", 80);
-  double total_min = 0;
-  const Json& segments = fields.array("segments", 1, 40);
-  for (std::size_t i = 0; i < segments.size(); ++i) {
-    JsonFields s(segments[i], "recipe.segments[" + std::to_string(i) + "]", invalid_load);
-    Segment segment;
-    segment.name = s.word("name", 40);
-    segment.duration_min = s.number("duration_min", 0.5, 30'000, "minutes");
-    segment.temperature_degc = s.number("temperature_degc", 20, 1150, "degC");
-    segment.carbon_potential_wt_pct = s.number("carbon_potential_wt_pct", 0, 1.8, "wt%");
-    s.finish();
-    total_min += segment.duration_min;
-    recipe.segments.push_back(std::move(segment));
-  }
-  fields.finish();
-  if (total_min > 30'000)
-    fields.fail("segments",
-                "the recipe lasts " + rounded(total_min / 60) + " hours; at most 500 hours make sense.");
-  return recipe;
+std::optional<LibraryCopy> read_library_copy(JsonFields& fields) {
+  if (!fields.has("library")) return std::nullopt;
+  JsonFields copy(fields.object("library"), fields.path_of("library"), invalid_load);
+  LibraryCopy library{copy.word("key", 80), copy.integer("version", 1, 1'000'000)};
+  copy.finish();
+  return library;
 }
 
-Item read_item(const Json& entry, const std::string& path, const Plant& plant, const Furnace& furnace) {
-  JsonFields fields(entry, path, invalid_load);
-  Item item;
-  item.name = fields.word("name", 40);
+void read_part(JsonFields& fields, Item& item, const Plant& plant, double default_lag_min) {
   item.part = fields.has("part") ? fields.word("part", 80) : item.name;
-  item.quantity = fields.has("quantity") ? fields.integer("quantity", 1, 1'000'000) : 1;
   item.steel = read_steel(fields, plant);
   item.core_carbon_wt_pct = fields.has("core_carbon_wt_pct")
                                 ? fields.number("core_carbon_wt_pct", 0.02, 0.6, "wt%")
@@ -149,20 +157,53 @@ Item read_item(const Json& entry, const std::string& path, const Plant& plant, c
   item.case_depth_window_mm = read_window(fields, "case_depth_window_mm", 0.02, 20, "mm");
   if (fields.has("surface_carbon_window_wt_pct"))
     item.surface_carbon_window_wt_pct = read_window(fields, "surface_carbon_window_wt_pct", 0.2, 1.5, "wt%");
-  item.lag_min = fields.has("lag_min") ? fields.number("lag_min", 0, 600, "minutes") : furnace.lag_min;
-  for (const char* optional :
-       {"part", "quantity", "core_carbon_wt_pct", "criterion", "surface_carbon_window_wt_pct", "lag_min"})
-    fields.ignore_null(optional);
-  fields.finish();
+  if (fields.has("grinding_stock_mm"))
+    item.grinding_stock_mm = fields.number("grinding_stock_mm", 0, 2, "mm");
+  item.lag_min = fields.has("lag_min") ? fields.number("lag_min", 0, 600, "minutes") : default_lag_min;
+  if (item.case_depth_window_mm.second + item.grinding_stock_mm > item.section.reach_mm())
+    fields.fail("case_depth_window_mm",
+                "the case asked for (with grinding stock) is deeper than the part, whose section is " +
+                    rounded(item.section.reach_mm()) + " mm from the surface to its middle.");
+}
 
-  if (item.case_depth_window_mm.second > item.section.reach_mm())
-    fields.fail("case_depth_window_mm", "the case asked for is deeper than the part, whose section is " +
-                                            rounded(item.section.reach_mm()) +
-                                            " mm from the surface to its middle.");
-  if (item.core_carbon_wt_pct >= item.criterion.carbon_limit_wt_pct)
-    fields.fail("criterion", "the core (" + rounded(item.core_carbon_wt_pct) + " % carbon) already meets " +
-                                 item.criterion.text() + " (" + rounded(item.criterion.carbon_limit_wt_pct) +
-                                 " % carbon), so it marks no case.");
+void settle_criterion(Item& item, const Quench& quench, const std::string& path) {
+  const auto fail = [&](const std::string& detail) {
+    throw Problem{422, invalid_load, "The value cannot be used", path + ".criterion: " + detail,
+                  path + ".criterion"};
+  };
+  Criterion& criterion = item.criterion;
+  if (criterion.kind != CriterionKind::carbon) {
+    const auto carbon = carbon_of(item, quench);
+    if (!carbon)
+      fail("no carbon content up to 0.6 % gives " + criterion.text() +
+           "; choose a lower hardness or a higher share of martensite.");
+    criterion.carbon_limit_wt_pct = carbon.value_or(0);
+  }
+  if (item.core_carbon_wt_pct >= criterion.carbon_limit_wt_pct)
+    fail("the core (" + rounded(item.core_carbon_wt_pct) + " % carbon) already meets " + criterion.text() +
+         " (" + rounded(criterion.carbon_limit_wt_pct) + " % carbon), so it marks no case.");
+}
+
+Item read_item(const Json& entry, const std::string& path, const Plant& plant, double default_lag_min) {
+  JsonFields fields(entry, path, invalid_load);
+  Item item;
+  item.name = fields.word("name", 40);
+  item.quantity = fields.has("quantity") ? fields.integer("quantity", 1, 1'000'000) : 1;
+  read_part(fields, item, plant, default_lag_min);
+  item.library = read_library_copy(fields);
+  if (fields.has("rework_of"))
+    fields.fail("rework_of",
+                "only the daemon can look up an earlier load; a load file carries its profile as "
+                "initial_profile.");
+  if (fields.has("initial_profile")) {
+    item.initial = read_initial(fields);
+    const double reach = item.section.reach_mm();
+    if (std::fabs(item.initial->depth_mm.back() - reach) > 0.05 * reach)
+      fields.fail("initial_profile", "reaches " + rounded(item.initial->depth_mm.back()) +
+                                         " mm deep, but this section " + rounded(reach) +
+                                         " mm: rework needs the section of the earlier load.");
+  }
+  fields.finish();
   return item;
 }
 

@@ -25,56 +25,90 @@ void check_hot_enough(const LoadDefinition& load) {
   }
 }
 
+void check_until(const LoadDefinition& load) {
+  for (std::size_t i = 0; i < load.recipe.segments.size(); ++i) {
+    const auto& until = load.recipe.segments[i].until;
+    if (!until || until->item.empty()) continue;
+    const bool known = std::any_of(load.items.begin(), load.items.end(),
+                                   [&](const Item& item) { return item.name == until->item; });
+    const std::string path = "recipe.segments[" + std::to_string(i) + "].until.item";
+    if (!known)
+      throw Problem{422, invalid_load, "The segment ends by an item that is not there",
+                    path + ": the load has no item \"" + until->item + "\".", path};
+  }
+}
+
+const Furnace& known_furnace(const Plant& plant, const std::string& id) {
+  const Furnace* furnace = plant.furnace(id);
+  if (furnace) return *furnace;
+  throw Problem{422, "unknown-furnace", "The furnace is not in the plant file",
+                "furnace: \"" + id + "\" is not in the plant file. GET /api/v1/furnaces lists the ids.",
+                "furnace"};
+}
+
+void read_places(JsonFields& fields, const Plant& plant, LoadDefinition& load) {
+  const std::string id = fields.word("furnace", 60);
+  const Furnace& furnace = known_furnace(plant, id);
+  std::string chamber;
+  if (fields.has("chamber")) {
+    chamber = fields.word("chamber", 60);
+    if (!furnace.chamber(chamber)) fields.fail("chamber", "the furnace has no chamber with this id.");
+  } else if (furnace.chambers.size() == 1 || furnace.line) {
+    chamber = furnace.chambers.front().id;
+  } else if (!fields.has("path")) {
+    fields.fail("chamber", "the furnace has several chambers; say which one.");
+  }
+  if (fields.has("path")) {
+    load.path = read_path(fields, plant, load.started_us, load.ended_us);
+    if (load.path.front().furnace != id || (!chamber.empty() && load.path.front().chamber != chamber))
+      fields.fail("path", "the first step must be in the furnace and chamber that the load names.");
+  } else {
+    load.path = {{load.started_us, id, chamber}};
+  }
+  for (const PathStep& step : load.path)
+    if (!step.outside() && !load.furnace(step.furnace))
+      load.furnaces.push_back(known_furnace(plant, step.furnace));
+}
+
 LoadDefinition read_load(const Json& json, const Plant& plant) {
   JsonFields fields(json, "", invalid_load);
   LoadDefinition load;
   load.name = fields.word("name", 60);
-  const std::string furnace_id = fields.word("furnace", 60);
-  const Furnace* furnace = plant.furnace(furnace_id);
-  if (!furnace)
-    throw Problem{
-        422, "unknown-furnace", "The furnace is not in the plant file",
-        "furnace: \"" + furnace_id + "\" is not in the plant file. GET /api/v1/furnaces lists the ids.",
-        "furnace"};
-  load.furnace = *furnace;
-  if (fields.has("chamber")) {
-    load.chamber = fields.word("chamber", 60);
-    if (!furnace->chamber(load.chamber)) fields.fail("chamber", "the furnace has no chamber with this id.");
-  } else if (furnace->chambers.size() == 1) {
-    load.chamber = furnace->chambers.front().id;
-  } else {
-    fields.fail("chamber", "the furnace has several chambers; say which one.");
-  }
   load.person = fields.word("person", 80);
   load.started_us = fields.time("started_at");
   if (fields.has("ended_at")) {
     load.ended_us = fields.time("ended_at");
     if (*load.ended_us <= load.started_us) fields.fail("ended_at", "the end must be later than the start.");
   }
+  read_places(fields, plant, load);
   if (fields.has("charge_temperature_degc"))
     load.charge_temperature_degc = fields.number("charge_temperature_degc", -20, 1100, "degC");
   if (fields.has("lattice_s")) load.lattice_s = fields.number("lattice_s", 5, 600, "s");
-  load.recipe = read_recipe(fields);
-  fields.any("recipe");
+  if (fields.has("film_min")) load.film_min = fields.number("film_min", 0, 120, "minutes");
+  load.quench = read_quench(fields);
+  load.recipe = read_recipe(fields.object("recipe"), "recipe");
   const Json& items = fields.array("items", 1, 40);
   std::set<std::string> names;
   for (std::size_t i = 0; i < items.size(); ++i) {
     const std::string path = "items[" + std::to_string(i) + "]";
-    load.items.push_back(read_item(items[i], path, plant, load.furnace));
+    load.items.push_back(read_item(items[i], path, plant, load.first_furnace().lag_min));
+    settle_criterion(load.items.back(), load.quench, path);
     if (!names.insert(load.items.back().name).second)
       throw Problem{422, invalid_load, "Two items have one name",
                     path + ".name: another item is already called \"" + load.items.back().name + "\".",
                     path + ".name"};
   }
-  for (const char* optional : {"chamber", "ended_at", "charge_temperature_degc", "lattice_s"})
-    fields.ignore_null(optional);
+  load.masks = read_masks(fields);
   fields.finish();
   load.model_version = solver::model_version;
+  check_until(load);
   check_hot_enough(load);
   return load;
 }
 
-Furnace read_furnace(const Json& json) {
+}  // namespace
+
+Furnace read_furnace_copy(const Json& json) {
   Furnace furnace;
   furnace.id = json.at("id");
   furnace.name = json.at("name");
@@ -85,8 +119,19 @@ Furnace read_furnace(const Json& json) {
   furnace.total_pressure_bar = json.at("total_pressure_bar");
   furnace.diffusivity = json.at("diffusivity");
   if (json.contains("beta_m_per_s")) furnace.beta_m_per_s = json.at("beta_m_per_s").get<double>();
+  // What version 1 of the stored copy did not have keeps its default.
+  furnace.line = json.value("line", false);
+  furnace.dew_over_frost = json.value("dew_point_over", "water") == "frost";
+  furnace.source_tolerance_wt_pct = json.value("source_tolerance_wt_pct", furnace.source_tolerance_wt_pct);
+  if (json.contains("carbon_sources")) {
+    const auto known = furnace.carbon_sources;
+    furnace.carbon_sources.clear();
+    for (const Json& word : json.at("carbon_sources"))
+      for (const CarbonSource source : known)
+        if (word == key(source)) furnace.carbon_sources.push_back(source);
+  }
   for (const Json& chamber : json.at("chambers"))
-    furnace.chambers.push_back({chamber.at("id"), chamber.at("name")});
+    furnace.chambers.push_back({chamber.at("id"), chamber.at("name"), chamber.value("places", 1)});
   for (const Json& entry : json.at("channels")) {
     Channel channel;
     channel.name = entry.at("name");
@@ -103,8 +148,6 @@ Furnace read_furnace(const Json& json) {
   return furnace;
 }
 
-}  // namespace
-
 LoadDefinition read_load_body(std::string_view body, const Plant& plant) {
   return read_load(parse_body(body), plant);
 }
@@ -112,7 +155,9 @@ LoadDefinition read_load_body(std::string_view body, const Plant& plant) {
 LoadDefinition read_stored_definition(std::string_view stored) {
   const Json json = Json::parse(stored.begin(), stored.end());
   Plant copy;
-  copy.furnaces.push_back(read_furnace(json.at("furnace")));
+  if (json.contains("furnace")) copy.furnaces.push_back(read_furnace_copy(json.at("furnace")));
+  if (json.contains("furnaces"))
+    for (const Json& furnace : json.at("furnaces")) copy.furnaces.push_back(read_furnace_copy(furnace));
   LoadDefinition load = read_load(json.at("load"), copy);
   load.model_version = json.at("model_version");
   return load;

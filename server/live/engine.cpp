@@ -2,10 +2,12 @@
 
 #include <algorithm>
 #include <chrono>
+#include <limits>
 
 #include "server/base/log.h"
 #include "server/base/time_text.h"
 #include "server/live/definition_json.h"
+#include "server/live/push_line.h"
 #include "server/live/result_json.h"
 
 namespace hearthfront::server {
@@ -20,21 +22,34 @@ constexpr std::int64_t view_refresh_us = 10'000'000;  // of data time
 
 }  // namespace
 
-ReadingSource stored_readings(storage::Reader& reader,
-                              std::function<std::int64_t(const std::string& channel)> channel_id) {
-  return [&reader, channel_id = std::move(channel_id)](const std::string& channel, std::int64_t from_us,
-                                                       std::int64_t to_us) {
+ReadingSource stored_readings(
+    storage::Reader& reader,
+    std::function<std::int64_t(const std::string& furnace, const std::string& channel)> channel_id) {
+  ReadingSource source;
+  source.readings = [&reader, channel_id](const LoadChannels::Used& used, std::int64_t from_us,
+                                          std::int64_t to_us) {
     std::vector<Sample> samples;
-    for (const storage::Reading& reading : reader.accepted(channel_id(channel), from_us, to_us))
+    for (const storage::Reading& reading :
+         reader.accepted(channel_id(used.furnace, used.name), from_us, to_us))
       samples.push_back({reading.time_us, reading.value});
     return samples;
   };
+  source.marks = [&reader, channel_id](const LoadChannels::Used& used, std::int64_t from_us,
+                                       std::int64_t to_us) {
+    std::vector<TimeSpan> marks;
+    for (const storage::MaskRow& mask : reader.masks(channel_id(used.furnace, used.name), from_us, to_us))
+      if (!mask.withdrawn) marks.push_back({mask.from_us, mask.to_us});
+    return marks;
+  };
+  return source;
 }
 
 Engine::Engine(EngineParts parts) : parts_(std::move(parts)) {
   for (const Furnace& furnace : parts_.plant.furnaces)
-    for (const Channel& channel : furnace.channels)
+    for (const Channel& channel : furnace.channels) {
       furnace_of_channel_[parts_.channel_id(furnace.id, channel.name)] = furnace.id;
+      if (furnace.line && channel.role == Role::push) push_channels_[furnace.id] = &channel;
+    }
 }
 
 Engine::~Engine() {
@@ -106,14 +121,10 @@ void Engine::round(storage::Reader& reader) {
     }
   }
   apply_changes(reader);
-  refresh_views();
+  follow_pushes(reader);
+  refresh_views(reader);
   caught_up_ = true;
   parts_.metrics.set(Level::open_loads, static_cast<double>(tracked_.size()));
-}
-
-ReadingSource Engine::source(storage::Reader& reader, const std::string& furnace) const {
-  return stored_readings(
-      reader, [this, furnace](const std::string& channel) { return parts_.channel_id(furnace, channel); });
 }
 
 void Engine::reconcile(storage::Reader& reader) {
@@ -135,9 +146,9 @@ void Engine::reconcile(storage::Reader& reader) {
           std::make_shared<const LoadDefinition>(read_stored_definition(row.definition_json));
       tracked.load = std::make_unique<LiveLoad>(tracked.definition);
       for (const auto& used : tracked.load->channels().used())
-        tracked.channels.push_back(parts_.channel_id(row.furnace, used.name));
-      read_all(*tracked.load, source(reader, row.furnace));
-      refresh(tracked_[row.id] = std::move(tracked), parts_.clock.now_us());
+        tracked.channels.push_back(parts_.channel_id(used.furnace, used.name));
+      read_all(*tracked.load, source(reader));
+      refresh(tracked_[row.id] = std::move(tracked), reader, parts_.clock.now_us());
     } catch (const std::exception& error) {
       log_error("a load cannot be run", {{"load", row.id}, {"name", row.name}, {"what", error.what()}});
       parts_.metrics.add(Total::engine_failures);
@@ -160,26 +171,56 @@ void Engine::apply_changes(storage::Reader& reader) {
       for (std::size_t used = 0; used < tracked.channels.size(); ++used) {
         const std::int64_t from = std::max(span.from_us, tracked.load->readings_from_us());
         if (tracked.channels[used] != span.channel || span.to_us < from) continue;
-        const std::string& name = tracked.load->channels().used()[used].name;
-        tracked.load->replace_readings(used, from, span.to_us,
-                                       source(reader, tracked.row.furnace)(name, from, span.to_us));
+        read_again(*tracked.load, source(reader), used, from, span.to_us);
         tracked.touched = true;
       }
     }
     const auto furnace = furnace_of_channel_.find(span.channel);
     if (furnace == furnace_of_channel_.end()) continue;
+    if (const auto line = push_channels_.find(furnace->second);
+        line != push_channels_.end() &&
+        parts_.channel_id(furnace->second, line->second->name) == span.channel)
+      pushes_may_wait_ = true;
     for (const storage::LoadRow& row : reader.ended_touching(furnace->second, span.from_us, span.to_us))
       finish(reader, row);
   }
   pending_.clear();
 }
 
-void Engine::refresh_views() {
+// A signal that rises after the last push it gave moves the line; what it says about earlier times is too
+// late, the line has moved on since.
+void Engine::follow_pushes(storage::Reader& reader) {
+  if (!pushes_may_wait_) return;
+  pushes_may_wait_ = false;
+  for (const auto& [id, channel] : push_channels_) {
+    const Furnace& line = *parts_.plant.furnace(id);
+    const std::int64_t signal = parts_.channel_id(id, channel->name);
+    const auto last = reader.last_push(id, "");
+    std::int64_t from_us = last ? last->at_us + 1 : std::numeric_limits<std::int64_t>::max();
+    if (!last)
+      for (const auto& [load, tracked] : tracked_)
+        if (tracked.row.furnace == id) from_us = std::min(from_us, tracked.row.started_us + 1);
+    const auto before = reader.newest(signal, from_us - 1);
+    const auto samples = reader.accepted(signal, from_us, latest_time_us);
+    for (const std::int64_t at_us : rises(samples, before ? std::optional(before->value) : std::nullopt)) {
+      try {
+        push_line(line, parts_.store, reader, {id, at_us, "Push signal", "signal"}, parts_.clock.now_us());
+        loads_dirty_ = true;
+      } catch (const storage::StorageError& error) {
+        if (error.fault != storage::StorageFault::misuse) throw;
+        log_warn("a push signal moved nothing", {{"furnace", id}, {"why", error.what()}});
+      }
+    }
+  }
+  if (loads_dirty_) wake();
+}
+
+void Engine::refresh_views(storage::Reader& reader) {
   const std::int64_t now = parts_.clock.now_us();
   double stale = 0;
   for (auto& [id, tracked] : tracked_) {
     const bool due = now - tracked.view_us >= view_refresh_us || now < tracked.view_us;
-    if (tracked.touched || due) refresh(tracked, now);
+    if (tracked.touched || due) refresh(tracked, reader, now);
     const auto view = parts_.board.load(id);
     stale += view && view->condition == Condition::stale ? 1 : 0;
   }
@@ -191,13 +232,14 @@ void Engine::refresh_views() {
   published_at_ = tick;
 }
 
-void Engine::refresh(Tracked& tracked, std::int64_t now_us) {
+void Engine::refresh(Tracked& tracked, storage::Reader& reader, std::int64_t now_us) {
   const std::uint64_t steps = tracked.load->steps();
   tracked.load->advance_to(now_us);
   parts_.metrics.add(Total::engine_steps, static_cast<double>(tracked.load->steps() - steps));
   auto view =
       std::make_shared<LoadView>(make_view(*tracked.load, tracked.definition, now_us, parts_.stale_after_s));
   view->row = tracked.row;
+  view->line_position = line_position(*tracked.definition, reader, now_us);
   parts_.board.publish(std::move(view));
   tracked.touched = false;
   tracked.view_us = now_us;
@@ -208,7 +250,7 @@ void Engine::finish(storage::Reader& reader, const storage::LoadRow& row) {
   try {
     const auto definition =
         std::make_shared<const LoadDefinition>(read_stored_definition(row.definition_json));
-    const auto load = derive(definition, source(reader, row.furnace), *row.ended_us);
+    const auto load = derive(definition, source(reader), *row.ended_us);
     parts_.metrics.add(Total::engine_steps, static_cast<double>(load->steps()));
     const std::string json = result_json(read_result(*load, definition));
     const auto stored = reader.result(row.id);

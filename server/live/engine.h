@@ -26,6 +26,11 @@
 
 namespace hearthfront::server {
 
+// Reads accepted readings and marks of a load's channels through `reader`.
+ReadingSource stored_readings(
+    storage::Reader& reader,
+    std::function<std::int64_t(const std::string& furnace, const std::string& channel)> channel_id);
+
 struct EngineParts {
   const Plant& plant;
   const Clock& clock;
@@ -69,16 +74,19 @@ class Engine {
   void round(storage::Reader& reader);
   void reconcile(storage::Reader& reader);
   void apply_changes(storage::Reader& reader);
-  void refresh_views();
-  void refresh(Tracked& tracked, std::int64_t now_us);
+  void follow_pushes(storage::Reader& reader);
+  void refresh_views(storage::Reader& reader);
+  void refresh(Tracked& tracked, storage::Reader& reader, std::int64_t now_us);
   void finish(storage::Reader& reader, const storage::LoadRow& row);
   void note_newest(const storage::ChangedSpan& span);
-  ReadingSource source(storage::Reader& reader, const std::string& furnace) const;
+  ReadingSource source(storage::Reader& reader) const { return stored_readings(reader, parts_.channel_id); }
 
   EngineParts parts_;
   std::map<std::int64_t, std::string> furnace_of_channel_;
   std::map<std::int64_t, Tracked> tracked_;
   std::vector<storage::ChangedSpan> pending_;
+  std::map<std::string, const Channel*> push_channels_;  // of lines, by furnace
+  bool pushes_may_wait_ = true;
   std::vector<std::int64_t> fresh_views_;
   std::chrono::steady_clock::time_point published_at_{};
 
@@ -89,9 +97,5 @@ class Engine {
   std::atomic<bool> loads_dirty_{true}, caught_up_{false};
   std::atomic<std::uint64_t> rounds_{0};
 };
-
-// Reads accepted readings of a furnace's channels through `reader`.
-ReadingSource stored_readings(storage::Reader& reader,
-                              std::function<std::int64_t(const std::string& channel)> channel_id);
 
 }  // namespace hearthfront::server

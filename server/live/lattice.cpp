@@ -4,67 +4,77 @@
 #include <cmath>
 #include <limits>
 
-#include "solver/atmosphere/carbon_gas.h"
-#include "solver/material/constants.h"
+#include "server/live/carbon_sources.h"
 
 namespace hearthfront::server {
 namespace {
 
-// Below this an oxygen probe's electrolyte does not conduct well enough to be believed (common practice,
-// no source); carbon transport is paused there anyway.
-constexpr double probe_works_from_degc = 700.0;
-constexpr double bar_per_atm = 1.01325;
+constexpr double rounding_s = 1e-5;
 
 double seconds(std::int64_t us) {
   return static_cast<double>(us) * 1e-6;
 }
 
+// What a furnace without a source says about parts that stand in air.
+constexpr double outside_degc = 20;
+
+std::optional<MaskRule> mask_rule(Role role) {
+  if (role == Role::probe_emf) return probe_in_air;
+  if (role == Role::co || role == Role::co2 || role == Role::h2) return analyser_on_zero_gas;
+  return std::nullopt;
+}
+
+Basis worse(Basis a, Basis b) {
+  // By how little is known: measured, masked, held, planned.
+  const auto rank = [](Basis basis) {
+    return basis == Basis::measured ? 0 : basis == Basis::masked ? 1 : basis == Basis::held ? 2 : 3;
+  };
+  return rank(a) < rank(b) ? b : a;
+}
+
 Basis worst_basis(const Coverage& coverage, double length_s) {
-  constexpr double rounding_s = 1e-5;
   if (coverage.known_s() < length_s - rounding_s) return Basis::planned;
-  return coverage.held_s > rounding_s ? Basis::held : Basis::measured;
+  if (coverage.held_s > rounding_s) return Basis::held;
+  return coverage.masked_s > rounding_s ? Basis::masked : Basis::measured;
+}
+
+// The part of one interval that a load spent in one place.
+struct Piece {
+  const PathStep* place;
+  std::int64_t from_us, to_us;
+};
+
+std::vector<Piece> pieces(const LoadDefinition& load, std::int64_t from_us, std::int64_t to_us) {
+  std::vector<Piece> list;
+  for (std::size_t i = 0; i < load.path.size(); ++i) {
+    // Before its start a load is looked at where it began.
+    const std::int64_t begin = i == 0 ? std::numeric_limits<std::int64_t>::min() : load.path[i].from_us;
+    const std::int64_t end =
+        i + 1 < load.path.size() ? load.path[i + 1].from_us : std::numeric_limits<std::int64_t>::max();
+    const std::int64_t low = std::max(begin, from_us), high = std::min(end, to_us);
+    if (low < high) list.push_back({&load.path[i], low, high});
+  }
+  return list;
 }
 
 }  // namespace
 
-PlannedMeans planned_means(const LoadDefinition& load, std::int64_t from_us, std::int64_t to_us) {
-  const double from = seconds(from_us - load.started_us), to = seconds(to_us - load.started_us);
-  PlannedMeans sum;
-  double start = 0;
-  for (std::size_t i = 0; i < load.recipe.segments.size(); ++i) {
-    const Segment& segment = load.recipe.segments[i];
-    const bool last = i + 1 == load.recipe.segments.size();
-    const double end = last ? std::numeric_limits<double>::infinity() : start + segment.duration_min * 60.0;
-    const double overlap = std::min(end, to) - std::max(start, from);
-    if (overlap > 0) {
-      sum.temperature_degc += overlap * segment.temperature_degc;
-      sum.carbon_potential_wt_pct += overlap * segment.carbon_potential_wt_pct;
-    }
-    start = end;
-  }
-  sum.temperature_degc /= to - from;
-  sum.carbon_potential_wt_pct /= to - from;
-  return sum;
-}
-
-SegmentPlace segment_at(const LoadDefinition& load, std::int64_t time_us) {
-  const double at_min = seconds(time_us - load.started_us) / 60.0;
-  double start = 0;
-  for (std::size_t i = 0;; ++i) {
-    const double end = start + load.recipe.segments[i].duration_min;
-    if (at_min < end || i + 1 == load.recipe.segments.size())
-      return {i, at_min - start, end - at_min, at_min >= end};
-    start = end;
-  }
-}
-
 LoadChannels::LoadChannels(const LoadDefinition& load) {
-  for (const Channel& channel : load.furnace.channels) {
-    const bool taken =
-        std::any_of(used_.begin(), used_.end(), [&](const Used& u) { return u.role == channel.role; });
-    if (channel.chamber != load.chamber || taken) continue;
-    used_.push_back({channel.role, channel.name, channel.unit});
-    series_.emplace_back(channel.gap_limit_s, channel.hold_limit_s);
+  for (const PathStep& step : load.path) {
+    if (step.outside()) continue;
+    for (const Channel& channel : load.furnace(step.furnace)->channels) {
+      const bool taken = std::any_of(used_.begin(), used_.end(), [&](const Used& u) {
+        return u.furnace == step.furnace && u.chamber == channel.chamber && u.role == channel.role;
+      });
+      if (channel.chamber != step.chamber || taken || channel.role == Role::push) continue;
+      used_.push_back({step.furnace, channel.chamber, channel.role, channel.name, channel.unit});
+      series_.emplace_back(channel.gap_limit_s, channel.hold_limit_s, mask_rule(channel.role));
+      std::vector<TimeSpan> marks;
+      for (const MaskSpan& mask : load.masks)
+        if (mask.furnace == step.furnace && mask.channel == channel.name)
+          marks.push_back({mask.from_us, mask.to_us});
+      series_.back().set_marks(std::move(marks));
+    }
   }
 }
 
@@ -75,70 +85,175 @@ std::optional<std::int64_t> LoadChannels::replace(std::size_t used, std::int64_t
   return series_[used].replace(from_us, to_us, samples);
 }
 
-const ChannelSeries* LoadChannels::series(Role role) const {
+std::optional<std::int64_t> LoadChannels::set_marks(std::size_t used, std::vector<TimeSpan> marks) {
+  return series_[used].set_marks(std::move(marks));
+}
+
+const ChannelSeries* LoadChannels::at(const PathStep& place, Role role) const {
   for (std::size_t i = 0; i < used_.size(); ++i)
-    if (used_[i].role == role) return &series_[i];
+    if (used_[i].role == role && used_[i].furnace == place.furnace && used_[i].chamber == place.chamber)
+      return &series_[i];
   return nullptr;
 }
 
-const ChannelSeries* LoadChannels::carbon_series() const {
-  const ChannelSeries* logged = series(Role::carbon_potential);
-  return logged ? logged : series(Role::probe_emf);
+const ChannelSeries* LoadChannels::series(const LoadDefinition& load, std::int64_t at_us, Role role) const {
+  return at(load.place_at(at_us), role);
 }
 
-IntervalInput LoadChannels::input(const LoadDefinition& load, std::int64_t from_us,
-                                  std::int64_t to_us) const {
+std::size_t LoadChannels::index_of(const ChannelSeries* series) const {
+  return static_cast<std::size_t>(series - series_.data());
+}
+
+bool LoadChannels::any(Role role) const {
+  return std::any_of(used_.begin(), used_.end(), [&](const Used& u) { return u.role == role; });
+}
+
+IntervalInput LoadChannels::input(const LoadDefinition& load, const RecipePlace& recipe_place,
+                                  std::int64_t from_us, std::int64_t to_us) const {
   const double length = seconds(to_us - from_us);
-  const PlannedMeans planned = planned_means(load, from_us, to_us);
-  const auto cover = [&](Role role) {
-    const ChannelSeries* s = series(role);
-    return s ? s->cover(from_us, to_us) : Coverage{};
-  };
-  const auto mean_or = [](const Coverage& c, double otherwise) {
-    return c.known_s() > 0 ? c.integral / c.known_s() : otherwise;
-  };
-
   IntervalInput input;
-  const Coverage furnace = cover(Role::temperature);
-  input.furnace_temperature_degc =
-      (furnace.integral + planned.temperature_degc * (length - furnace.known_s())) / length;
-  input.temperature_basis = worst_basis(furnace, length);
+  double load_couple_s = 0, load_couple_integral = 0, gas_s = 0, carbon_integral = 0;
+  double co_s = 0, co_integral = 0, h2_s = 0, h2_integral = 0;
+  const Furnace* last_furnace = nullptr;
+  input.furnace_temperature_degc = 0;
+  for (const Piece& piece : pieces(load, from_us, to_us)) {
+    const double piece_s = seconds(piece.to_us - piece.from_us);
+    if (piece.place->outside()) {
+      input.furnace_temperature_degc += outside_degc * piece_s;
+      input.temperature_basis = worse(input.temperature_basis, Basis::planned);
+      input.carbon_potential_basis = worse(input.carbon_potential_basis, Basis::planned);
+      continue;
+    }
+    const Furnace& furnace = *load.furnace(piece.place->furnace);
+    last_furnace = &furnace;
+    const SetPoints planned = recipe_place.planned_means(load.recipe, piece.from_us, piece.to_us);
+    const auto cover = [&](Role role) {
+      const ChannelSeries* s = at(*piece.place, role);
+      return s ? s->cover(piece.from_us, piece.to_us) : Coverage{};
+    };
+    const auto mean = [](const Coverage& c) {
+      return c.known_s() > 0 ? std::optional(c.integral / c.known_s()) : std::nullopt;
+    };
 
-  const Coverage load_couple = cover(Role::load_temperature);
-  if (load_couple.known_s() > 0.5 * length) input.load_temperature_degc = mean_or(load_couple, 0);
+    const Coverage temperature = cover(Role::temperature);
+    const double furnace_integral =
+        temperature.integral + planned.temperature_degc * (piece_s - temperature.known_s());
+    input.furnace_temperature_degc += furnace_integral;
+    input.temperature_basis = worse(input.temperature_basis, worst_basis(temperature, piece_s));
 
-  Coverage carbon = cover(Role::carbon_potential);
-  if (from_probe()) {
-    carbon = cover(Role::probe_emf);
-    const double probe_degc = mean_or(cover(Role::probe_temperature), input.furnace_temperature_degc);
-    const double co = mean_or(cover(Role::co), load.furnace.co_fraction * 100.0) / 100.0;
-    const double emf_mv = mean_or(carbon, 0);
-    double potential = planned.carbon_potential_wt_pct;
-    if (probe_degc >= probe_works_from_degc && co > 0)
-      potential = solver::carbon_potential_from_probe(emf_mv, probe_degc + solver::zero_celsius_k,
-                                                      co * load.furnace.total_pressure_bar / bar_per_atm);
-    carbon.integral = potential * carbon.known_s();
+    const Coverage couple = cover(Role::load_temperature);
+    load_couple_s += couple.known_s();
+    load_couple_integral += couple.integral;
+
+    CarbonReading reading;
+    reading.furnace_degc = furnace_integral / piece_s;
+    reading.probe_degc = mean(cover(Role::probe_temperature));
+    const Coverage co = cover(Role::co), h2 = cover(Role::h2);
+    reading.co_vol_pct = mean(co);
+    reading.h2_vol_pct = mean(h2);
+    reading.pressure_hpa = mean(cover(Role::pressure));
+    std::vector<SourceValue> sources;
+    double known_s = 0;
+    for (const CarbonSource source : furnace.carbon_sources) {
+      const Coverage c = cover(role_of(source));
+      reading.value = mean(c);
+      const auto potential = carbon_potential_wt_pct(source, furnace, reading);
+      if (!potential) continue;
+      sources.push_back({source, *potential, worst_basis(c, piece_s), false});
+      // The first that is measured leads; while none is, the one that knows most.
+      const auto leading =
+          std::find_if(sources.begin(), sources.end(), [](const SourceValue& v) { return v.leads; });
+      const bool better =
+          leading == sources.end() || (leading->basis != Basis::measured &&
+                                       worse(leading->basis, sources.back().basis) == leading->basis &&
+                                       leading->basis != sources.back().basis);
+      if (!better) continue;
+      if (leading != sources.end()) leading->leads = false;
+      sources.back().leads = true;
+      known_s = c.known_s();
+    }
+    const auto leading =
+        std::find_if(sources.begin(), sources.end(), [](const SourceValue& v) { return v.leads; });
+    const double potential = leading == sources.end() ? 0 : leading->carbon_potential_wt_pct;
+    carbon_integral += potential * known_s + planned.carbon_potential_wt_pct * (piece_s - known_s);
+    input.carbon_potential_basis =
+        worse(input.carbon_potential_basis, leading == sources.end() ? Basis::planned : leading->basis);
+    input.disagreement_wt_pct = spread_of_measured(sources);
+    input.sources = std::move(sources);
+    gas_s += piece_s;
+    co_s += co.known_s();
+    co_integral += co.integral;
+    h2_s += h2.known_s();
+    h2_integral += h2.integral;
   }
-  input.carbon_potential_wt_pct =
-      (carbon.integral + planned.carbon_potential_wt_pct * (length - carbon.known_s())) / length;
-  input.carbon_potential_basis = worst_basis(carbon, length);
+  input.furnace_temperature_degc /= length;
+  if (load_couple_s > 0.5 * length) input.load_temperature_degc = load_couple_integral / load_couple_s;
+  input.gas = gas_s >= 0.5 * length;
+  if (gas_s > 0) input.carbon_potential_wt_pct = carbon_integral / gas_s;
+  if (co_s > 0.5 * length) input.co_fraction = co_integral / co_s / 100.0;
+  if (h2_s > 0.5 * length) input.h2_fraction = h2_integral / h2_s / 100.0;
+  if (last_furnace)
+    input.furnace = solver::FurnaceSettings{last_furnace->beta_m_per_s, last_furnace->co_fraction,
+                                            last_furnace->h2_fraction};
   return input;
 }
 
-std::optional<std::int64_t> LoadChannels::complete_until_us(std::int64_t now_us) const {
-  std::optional<std::int64_t> until;
-  for (const ChannelSeries* s : {series(Role::temperature), carbon_series()}) {
-    const auto newest = s ? s->newest(now_us) : std::nullopt;
-    if (!newest) return std::nullopt;
-    until = until ? std::min(*until, newest->time_us) : newest->time_us;
+std::vector<BasisSpan> LoadChannels::spans(const LoadDefinition& load, const std::vector<Role>& roles,
+                                           std::int64_t from_us, std::int64_t to_us) const {
+  std::vector<BasisSpan> joined;
+  const auto add = [&](const BasisSpan& span) {
+    if (!joined.empty() && joined.back().basis == span.basis && joined.back().to_us == span.from_us)
+      joined.back().to_us = span.to_us;
+    else
+      joined.push_back(span);
+  };
+  for (const Piece& piece : pieces(load, from_us, to_us)) {
+    std::vector<std::vector<BasisSpan>> each;
+    for (const Role role : roles)
+      if (const ChannelSeries* s = at(*piece.place, role))
+        each.push_back(s->spans(piece.from_us, piece.to_us));
+    if (each.empty()) {
+      add({Basis::planned, piece.from_us, piece.to_us});
+      continue;
+    }
+    // Walks all lists together; between two cuts the best of them counts.
+    std::vector<std::size_t> next(each.size(), 0);
+    for (std::int64_t at_us = piece.from_us; at_us < piece.to_us;) {
+      Basis best = Basis::planned;
+      std::int64_t cut = piece.to_us;
+      for (std::size_t i = 0; i < each.size(); ++i) {
+        while (each[i][next[i]].to_us <= at_us) ++next[i];
+        best = worse(best, each[i][next[i]].basis) == best ? each[i][next[i]].basis : best;
+        cut = std::min(cut, each[i][next[i]].to_us);
+      }
+      add({best, at_us, cut});
+      at_us = cut;
+    }
   }
-  return until;
+  return joined;
+}
+
+std::optional<std::int64_t> LoadChannels::complete_until_us(const LoadDefinition& load,
+                                                            std::int64_t now_us) const {
+  const PathStep& place = load.place_at(now_us);
+  const auto newest = [&](Role role) {
+    const ChannelSeries* s = at(place, role);
+    return s ? s->newest_logged(now_us) : std::nullopt;
+  };
+  const auto temperature = newest(Role::temperature);
+  if (!temperature) return std::nullopt;
+  // Any source may lead, so each that has spoken at all must have spoken.
+  std::optional<std::int64_t> until;
+  for (const Role role : {Role::carbon_potential, Role::probe_emf, Role::co2, Role::dew_point})
+    if (const auto sample = newest(role)) until = std::min(until.value_or(sample->time_us), sample->time_us);
+  if (!until) return std::nullopt;
+  return std::min(*until, temperature->time_us);
 }
 
 std::optional<std::int64_t> LoadChannels::newest_us(std::int64_t now_us) const {
   std::optional<std::int64_t> newest;
   for (const ChannelSeries& s : series_)
-    if (const auto sample = s.newest(now_us))
+    if (const auto sample = s.newest_logged(now_us))
       newest = std::max(newest.value_or(sample->time_us), sample->time_us);
   return newest;
 }

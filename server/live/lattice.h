@@ -1,46 +1,50 @@
 // The inputs of the model on the time lattice of a load: for each interval the time-weighted mean of what
-// the channels say, with its basis, and the recipe's value for the part they are silent about.
+// the channels of the chambers it was in say, with its basis, and the recipe's value for the part they are
+// silent about.
+//
+// Carbon potential may come from several sources (logged, probe emf, CO2, dew point). The furnace's order
+// says whom to trust; a source that is not measured gives way to one that is.
 #pragma once
 
-#include <array>
 #include <cstdint>
 #include <optional>
 #include <string>
 #include <vector>
 
 #include "server/live/load_definition.h"
+#include "server/live/recipe_place.h"
 #include "server/live/series.h"
+#include "solver/process/gas_carburizing.h"
 
 namespace hearthfront::server {
 
-// The recipe as a function of time: set points of the segment at that time; after the last segment its
-// values go on.
-struct PlannedMeans {
-  double temperature_degc = 0, carbon_potential_wt_pct = 0;
+struct SourceValue {
+  CarbonSource source = CarbonSource::logged;
+  double carbon_potential_wt_pct = 0;
+  Basis basis = Basis::measured;
+  bool leads = false;
 };
-PlannedMeans planned_means(const LoadDefinition& load, std::int64_t from_us, std::int64_t to_us);
-
-// Which segment a moment belongs to by the recipe's own times.
-struct SegmentPlace {
-  std::size_t index = 0;
-  double elapsed_min = 0, minutes_left = 0;  // minutes_left is negative past the end of the last segment
-  bool overdue = false;
-};
-SegmentPlace segment_at(const LoadDefinition& load, std::int64_t time_us);
 
 struct IntervalInput {
   double furnace_temperature_degc = 0;
   std::optional<double> load_temperature_degc;
   double carbon_potential_wt_pct = 0;
   Basis temperature_basis = Basis::measured, carbon_potential_basis = Basis::measured;  // the worst within
+  bool gas = true;                                 // false: outside any furnace for most of the interval
+  std::optional<double> co_fraction, h2_fraction;  // mole fractions, where measured
+  std::optional<solver::FurnaceSettings> furnace;  // the last one it was in
+  std::vector<SourceValue> sources;                // of the chamber it was in last, in the furnace's order
+  // Largest difference between sources that are measured; empty with fewer than two.
+  std::optional<double> disagreement_wt_pct;
 };
 
-// The channels of one chamber that the model reads, by role.
+// The channels that the model reads, of every chamber on a load's path.
 class LoadChannels {
  public:
   explicit LoadChannels(const LoadDefinition& load);
 
   struct Used {
+    std::string furnace, chamber;
     Role role;
     std::string name;
     Unit unit;
@@ -49,20 +53,27 @@ class LoadChannels {
   // Takes readings in the channel's own unit.
   std::optional<std::int64_t> replace(std::size_t used, std::int64_t from_us, std::int64_t to_us,
                                       std::vector<Sample> samples);
+  std::optional<std::int64_t> set_marks(std::size_t used, std::vector<TimeSpan> marks);
 
-  IntervalInput input(const LoadDefinition& load, std::int64_t from_us, std::int64_t to_us) const;
+  IntervalInput input(const LoadDefinition& load, const RecipePlace& place, std::int64_t from_us,
+                      std::int64_t to_us) const;
 
-  const ChannelSeries* series(Role role) const;
-  bool from_probe() const { return !series(Role::carbon_potential) && series(Role::probe_emf); }
-  // The channel the carbon potential rests on.
-  const ChannelSeries* carbon_series() const;
-  // Newest reading of the temperature and of the carbon channel, whichever is older; empty where one has
+  // Of the chamber the load was in at that time.
+  const ChannelSeries* series(const LoadDefinition& load, std::int64_t at_us, Role role) const;
+  std::size_t index_of(const ChannelSeries* series) const;  // in used()
+  // Touching spans of one basis along the path, for one input; the best source where there are several.
+  std::vector<BasisSpan> spans(const LoadDefinition& load, const std::vector<Role>& roles,
+                               std::int64_t from_us, std::int64_t to_us) const;
+  bool any(Role role) const;
+  // Newest reading of the temperature and of a carbon channel, whichever is older; empty where one has
   // none.
-  std::optional<std::int64_t> complete_until_us(std::int64_t now_us) const;
+  std::optional<std::int64_t> complete_until_us(const LoadDefinition& load, std::int64_t now_us) const;
   std::optional<std::int64_t> newest_us(std::int64_t now_us) const;  // of any channel
   std::int64_t reach_us() const;
 
  private:
+  const ChannelSeries* at(const PathStep& place, Role role) const;
+
   std::vector<Used> used_;
   std::vector<ChannelSeries> series_;  // as used_, temperatures in degC
 };

@@ -13,11 +13,9 @@ solver::GasCarburizing make_model(const LoadDefinition& load, const Item& item) 
   part.steel = item.steel.composition;
   part.core_carbon_wt_pct = item.core_carbon_wt_pct;
   part.lag_s = item.lag_min * 60.0;
-  part.law = load.furnace.diffusivity == "tibbetts" ? solver::DiffusivityLaw::tibbetts
-                                                    : solver::DiffusivityLaw::agren;
-  part.beta_m_per_s = load.furnace.beta_m_per_s;
-  part.co_fraction = load.furnace.co_fraction;
-  part.h2_fraction = load.furnace.h2_fraction;
+  part.film_s = load.film_min * 60.0;
+  part.law = load.first_furnace().diffusivity == "tibbetts" ? solver::DiffusivityLaw::tibbetts
+                                                            : solver::DiffusivityLaw::agren;
 
   std::vector<solver::TimeAtTemperature> pieces;
   for (const Segment& segment : load.recipe.segments)
@@ -27,18 +25,42 @@ solver::GasCarburizing make_model(const LoadDefinition& load, const Item& item) 
   return solver::GasCarburizing(part, density);
 }
 
+solver::GasCarburizing::State make_state(const LoadDefinition& load, const Item& item,
+                                         const solver::GasCarburizing& model) {
+  if (!item.initial) return model.start(load.charge_temperature_degc);
+  solver::Profile profile;
+  for (const double depth : item.initial->depth_mm) profile.depth_m.push_back(depth * 1e-3);
+  profile.carbon_wt_pct = item.initial->carbon_wt_pct;
+  return model.start(load.charge_temperature_degc, profile);
+}
+
+solver::IntervalInputs solver_inputs(const IntervalInput& input, double duration_s) {
+  solver::IntervalInputs inputs;
+  inputs.duration_s = duration_s;
+  inputs.furnace_temperature_degc = input.furnace_temperature_degc;
+  inputs.load_temperature_degc = input.load_temperature_degc;
+  inputs.carbon_potential_wt_pct = input.carbon_potential_wt_pct;
+  inputs.co_fraction = input.co_fraction;
+  inputs.h2_fraction = input.h2_fraction;
+  inputs.furnace = input.furnace;
+  inputs.gas = input.gas;
+  return inputs;
+}
+
 }  // namespace
 
 LiveLoad::LiveLoad(std::shared_ptr<const LoadDefinition> definition)
     : definition_(std::move(definition)),
       channels_(*definition_),
       lattice_us_(std::llround(definition_->lattice_s * 1e6)),
+      settled_{0, {}, RecipePlace(definition_->started_us)},
+      now_(settled_),
       state_us_(definition_->started_us) {
-  for (const Item& item : definition_->items) models_.push_back(make_model(*definition_, item));
-  for (const auto& model : models_) {
-    workspaces_.emplace_back(model);
-    settled_.items.push_back(model.start(definition_->charge_temperature_degc));
+  for (const Item& item : definition_->items) {
+    models_.push_back(make_model(*definition_, item));
+    settled_.items.push_back(make_state(*definition_, item, models_.back()));
   }
+  for (const auto& model : models_) workspaces_.emplace_back(model);
   marks_.push_back(settled_);
   now_ = settled_;
 }
@@ -51,6 +73,10 @@ void LiveLoad::replace_readings(std::size_t used, std::int64_t from_us, std::int
                                 std::vector<Sample> samples) {
   const auto changed = channels_.replace(used, from_us, to_us, std::move(samples));
   if (changed) rewind_before(*changed);
+}
+
+void LiveLoad::set_marks(std::size_t used, std::vector<TimeSpan> marks) {
+  if (const auto changed = channels_.set_marks(used, std::move(marks))) rewind_before(*changed);
 }
 
 void LiveLoad::rewind_before(std::int64_t time_us) {
@@ -76,12 +102,8 @@ RunPoint LiveLoad::advance(RunState& state, std::int64_t to_us) {
   RunPoint point;
   point.from_us = lattice_us(state.interval);
   point.to_us = to_us;
-  point.input = channels_.input(*definition_, point.from_us, to_us);
-  solver::IntervalInputs inputs;
-  inputs.duration_s = static_cast<double>(to_us - point.from_us) * 1e-6;
-  inputs.furnace_temperature_degc = point.input.furnace_temperature_degc;
-  inputs.load_temperature_degc = point.input.load_temperature_degc;
-  inputs.carbon_potential_wt_pct = point.input.carbon_potential_wt_pct;
+  point.input = channels_.input(*definition_, state.place, point.from_us, to_us);
+  const auto inputs = solver_inputs(point.input, static_cast<double>(to_us - point.from_us) * 1e-6);
   for (std::size_t i = 0; i < models_.size(); ++i) {
     auto& item = state.items[i];
     const solver::Outcome outcome = models_[i].advance(item, inputs, workspaces_[i]);
@@ -92,7 +114,31 @@ RunPoint LiveLoad::advance(RunState& state, std::int64_t to_us) {
                            depth.has_value(), outcome.notes, outcome.kind});
   }
   ++state.interval;
+  place(state, point);
   return point;
+}
+
+void LiveLoad::place(RunState& state, const RunPoint& point) const {
+  FurnaceSight sight{point.from_us, point.to_us, std::nullopt, std::nullopt};
+  if (point.input.gas && point.input.temperature_basis == Basis::measured)
+    sight.temperature_degc = point.input.furnace_temperature_degc;
+  if (point.input.gas && point.input.carbon_potential_basis == Basis::measured)
+    sight.carbon_potential_wt_pct = point.input.carbon_potential_wt_pct;
+  bool due = false;
+  const Segment& segment = definition_->recipe.segments[state.place.now().index];
+  if (segment.until) {
+    due = segment.until->kind == Until::Kind::part_temperature;
+    for (std::size_t i = 0; i < point.items.size(); ++i) {
+      const ItemPoint& item = point.items[i];
+      if (segment.until->kind == Until::Kind::part_temperature)
+        due = due && item.part_temperature_degc >= segment.temperature_degc - segment.until->limit;
+      else if (definition_->items[i].name == segment.until->item)
+        due = segment.until->kind == Until::Kind::case_depth
+                  ? item.depth_known && item.case_depth_mm >= segment.until->limit
+                  : item.surface_carbon_wt_pct >= segment.until->limit;
+    }
+  }
+  state.place.step(definition_->recipe, sight, due);
 }
 
 void LiveLoad::advance_to(std::int64_t now_us) {
@@ -102,7 +148,7 @@ void LiveLoad::advance_to(std::int64_t now_us) {
   // yet; but a gap settles once it is longer than any reading can speak for.
   std::int64_t settle_until = target;
   if (!definition_->ended_us || target < *definition_->ended_us) {
-    const auto complete = channels_.complete_until_us(target);
+    const auto complete = channels_.complete_until_us(*definition_, target);
     settle_until = std::min(target, std::max(complete.value_or(0), target - channels_.reach_us()));
   }
   // A clock that was set back: what lies ahead of it is derived again when its time comes.

@@ -14,6 +14,7 @@
 
 #include "server/live/lattice.h"
 #include "server/live/load_definition.h"
+#include "server/live/recipe_place.h"
 #include "solver/solver.h"
 
 namespace hearthfront::server {
@@ -45,6 +46,9 @@ class LiveLoad {
   void replace_readings(std::size_t used, std::int64_t from_us, std::int64_t to_us,
                         std::vector<Sample> samples);
 
+  // The stretches that people marked on one used channel.
+  void set_marks(std::size_t used, std::vector<TimeSpan> marks);
+
   // Brings the run to `now_us`, or to the load's end where that is earlier.
   void advance_to(std::int64_t now_us);
 
@@ -54,6 +58,7 @@ class LiveLoad {
   std::size_t item_count() const { return definition_->items.size(); }
   const solver::GasCarburizing& model(std::size_t item) const { return models_[item]; }
   const solver::GasCarburizing::State& state(std::size_t item) const { return now_.items[item]; }
+  const RecipePlace& recipe_place() const { return now_.place; }
   // Every interval from the start to state_us, the provisional ones at the end included.
   template <typename Visit>
   void each_point(Visit visit) const {
@@ -67,11 +72,13 @@ class LiveLoad {
   struct RunState {
     std::int64_t interval = 0;  // intervals done
     std::vector<solver::GasCarburizing::State> items;
+    RecipePlace place;
   };
 
   std::int64_t lattice_us(std::int64_t interval) const;
   void rewind_before(std::int64_t time_us);
   RunPoint advance(RunState& state, std::int64_t to_us);
+  void place(RunState& state, const RunPoint& point) const;
   void set_mark();
 
   std::shared_ptr<const LoadDefinition> definition_;

@@ -38,6 +38,30 @@ solver::Section ItemSection::in_metres() const {
   return {shape, reach_mm() * 1e-3, bore_diameter_mm / 2 * 1e-3};
 }
 
+const Furnace* LoadDefinition::furnace(std::string_view id) const {
+  for (const Furnace& each : furnaces)
+    if (each.id == id) return &each;
+  return nullptr;
+}
+
+const PathStep& LoadDefinition::place_at(std::int64_t time_us) const {
+  const PathStep* place = &path.front();
+  for (const PathStep& step : path)
+    if (step.from_us <= time_us) place = &step;
+  return *place;
+}
+
+const PathStep& LoadDefinition::last_furnace_place() const {
+  const PathStep* place = &path.front();
+  for (const PathStep& step : path)
+    if (!step.outside()) place = &step;
+  return *place;
+}
+
+std::optional<std::int64_t> LoadDefinition::until_us(std::size_t index) const {
+  return index + 1 < path.size() ? std::optional(path[index + 1].from_us) : ended_us;
+}
+
 double LoadDefinition::planned_minutes() const {
   double sum = 0;
   for (const Segment& segment : recipe.segments) sum += segment.duration_min;
@@ -58,6 +82,18 @@ std::string_view text(solver::Shape shape) {
       return "sphere";
     case solver::Shape::bore:
       return "bore";
+  }
+  return "";
+}
+
+std::string_view text(Until::Kind kind) {
+  switch (kind) {
+    case Until::Kind::case_depth:
+      return "case_depth";
+    case Until::Kind::surface_carbon:
+      return "surface_carbon";
+    case Until::Kind::part_temperature:
+      return "part_temperature";
   }
   return "";
 }

@@ -11,7 +11,8 @@ Json result_notes_json(const RunResult& result);
 Json result_gaps_json(const RunResult& result);
 Json criterion_result_json(const Criterion& criterion);  // with carbon limit and words
 Json number_or_null(std::optional<double> value);
-const char* carbon_source(const RunResult& result);
+std::string carbon_source(const RunResult& result);  // of the newest interval, in words
+Json result_segments_json(const RunResult& result);
 
 inline constexpr const char* band_not_computed = "band not computed";
 

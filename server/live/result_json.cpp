@@ -11,6 +11,7 @@ namespace {
 Json input_json(const InputSummary& summary, const std::vector<std::string>& channels) {
   return {{"measured_s", summary.measured_s},
           {"held_s", summary.held_s},
+          {"masked_s", summary.masked_s},
           {"planned_s", summary.planned_s},
           {"channels", channels}};
 }
@@ -21,9 +22,24 @@ Json number_or_null(std::optional<double> value) {
   return value ? Json(*value) : Json(nullptr);
 }
 
-const char* carbon_source(const RunResult& result) {
-  if (result.from_probe) return result.co_measured ? "probe emf, CO measured" : "probe emf, CO assumed";
-  return result.carbon_channels.empty() ? "recipe" : "logged";
+std::string carbon_source(const RunResult& result) {
+  for (const SourceValue& each : result.sources) {
+    if (!each.leads) continue;
+    if (each.source == CarbonSource::logged) return "logged";
+    return std::string(text(each.source)) + (result.co_measured ? ", CO measured" : ", CO assumed");
+  }
+  return "recipe";
+}
+
+Json result_segments_json(const RunResult& result) {
+  Json segments = Json::array();
+  const auto& runs = result.segments;
+  for (std::size_t i = 0; i < runs.size(); ++i)
+    segments.push_back({{"name", result.definition->recipe.segments[runs[i].index].name},
+                        {"from", format_time(runs[i].from_us)},
+                        {"to", format_time(i + 1 < runs.size() ? runs[i + 1].from_us : result.state_us)},
+                        {"by", text(runs[i].by)}});
+  return segments;
 }
 
 Json criterion_result_json(const Criterion& criterion) {
@@ -31,6 +47,28 @@ Json criterion_result_json(const Criterion& criterion) {
   json["carbon_limit_wt_pct"] = criterion.carbon_limit_wt_pct;
   json["text"] = criterion.text();
   return json;
+}
+
+Json hardness_json(const ItemResult& item) {
+  const HardnessResult& hardness = item.hardness;
+  Json sources = Json::array();
+  for (const SourceTable& table : hardness.sources) {
+    Json values = Json::array();
+    for (const solver::SourceValue& each : table.values)
+      values.push_back({{"source", each.source},
+                        {"value", each.value},
+                        {"in_stated_range", each.in_stated_range},
+                        {"used", &each == &table.values.front()}});
+    sources.push_back({{"quantity", table.quantity}, {"unit", table.unit}, {"values", std::move(values)}});
+  }
+  return {{"as", hardness.treatment},
+          {"surface_hv", hardness.surface_hv},
+          {"surface_hrc", number_or_null(hardness.surface_hrc)},
+          {"surface_retained_austenite_pct", hardness.surface_retained_austenite_pct},
+          {"depth_mm", item.profile_depth_mm},
+          {"hv", hardness.hv},
+          {"retained_austenite_pct", hardness.retained_austenite_pct},
+          {"sources", std::move(sources)}};
 }
 
 Json result_items_json(const RunResult& result) {
@@ -49,6 +87,8 @@ Json result_items_json(const RunResult& result) {
          {"core_carbon_wt_pct", definition.core_carbon_wt_pct},
          {"criterion", criterion_result_json(definition.criterion)},
          {"case_depth_mm", number_or_null(item.case_depth_mm)},
+         {"grinding_stock_mm", definition.grinding_stock_mm},
+         {"finished_case_depth_mm", number_or_null(item.finished_case_depth_mm)},
          {"case_depth_window_mm", window_json(definition.case_depth_window_mm)},
          {"surface_carbon_wt_pct", item.surface_carbon_wt_pct},
          {"surface_carbon_window_wt_pct", surface_window ? window_json(*surface_window) : Json(nullptr)},
@@ -60,6 +100,7 @@ Json result_items_json(const RunResult& result) {
          {"balance_residual_relative", item.balance_residual_relative},
          {"part_temperature_degc", item.part_temperature_degc},
          {"outcome", outcome_word(item.outcome)},
+         {"hardness", hardness_json(item)},
          {"profile", {{"depth_mm", item.profile_depth_mm}, {"carbon_wt_pct", item.profile_carbon_wt_pct}}}});
   }
   return items;
@@ -91,11 +132,13 @@ std::string result_json(const RunResult& result) {
   Json inputs{{"temperature", input_json(result.temperature, result.temperature_channels)},
               {"carbon_potential", input_json(result.carbon_potential, result.carbon_channels)}};
   inputs["carbon_potential"]["source"] = carbon_source(result);
+  inputs["carbon_potential"]["largest_disagreement_wt_pct"] = result.largest_disagreement_wt_pct;
   if (result.load_temperature)
     inputs["load_temperature"] = input_json(*result.load_temperature, result.load_channels);
   const Json json{{"load", load.name},
-                  {"furnace", load.furnace.id},
-                  {"chamber", load.chamber},
+                  {"furnace", load.path.front().furnace},
+                  {"chamber", load.path.front().chamber},
+                  {"path", load_body_json(load).at("path")},
                   {"model_version", load.model_version},
                   {"lattice_s", load.lattice_s},
                   {"started_at", format_time(load.started_us)},
@@ -104,6 +147,7 @@ std::string result_json(const RunResult& result) {
                   {"final", result.final},
                   {"band", band_not_computed},
                   {"inputs", std::move(inputs)},
+                  {"segments", result_segments_json(result)},
                   {"gaps", result_gaps_json(result)},
                   {"notes", result_notes_json(result)},
                   {"items", result_items_json(result)}};
@@ -112,9 +156,9 @@ std::string result_json(const RunResult& result) {
 
 std::string result_table(const RunResult& result) {
   const LoadDefinition& load = *result.definition;
-  std::string out = "Load " + load.name + " in " + load.furnace.name + ", " + format_time(load.started_us) +
-                    " to " + format_time(result.state_us) + (result.final ? " (ended)" : " (still open)") +
-                    "\n";
+  std::string out = "Load " + load.name + " in " + load.first_furnace().name + ", " +
+                    format_time(load.started_us) + " to " + format_time(result.state_us) +
+                    (result.final ? " (ended)" : " (still open)") + "\n";
   char line[256];
   const auto minutes = [](double s) { return s / 60.0; };
   for (const auto& [name, input] : {std::pair{"temperature", result.temperature},

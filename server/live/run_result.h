@@ -13,7 +13,7 @@
 namespace hearthfront::server {
 
 struct InputSummary {
-  double measured_s = 0, held_s = 0, planned_s = 0;
+  double measured_s = 0, held_s = 0, masked_s = 0, planned_s = 0;
 };
 
 struct GapSpan {
@@ -29,12 +29,30 @@ struct NoteSpan {
 const char* note_kind(std::uint32_t note);  // "paused below austenite", ...
 std::string note_sentence(std::uint32_t note);
 
+// What published sources say of one quantity; the first is the one used.
+struct SourceTable {
+  std::string quantity, unit;
+  std::vector<solver::SourceValue> values;
+};
+
+// After quench and tempering, at the depths of the profile.
+struct HardnessResult {
+  std::string treatment;  // in words
+  std::vector<double> hv, retained_austenite_pct;
+  double surface_hv = 0, surface_retained_austenite_pct = 0;
+  std::optional<double> surface_hrc;
+  std::vector<SourceTable> sources;
+};
+
 struct ItemResult {
-  std::optional<double> case_depth_mm, total_depth_mm, turnover_depth_mm, depth_at_0p35_mm, depth_at_0p40_mm;
+  // case_depth_mm as hardened; finished_case_depth_mm after the grinding stock is gone.
+  std::optional<double> case_depth_mm, finished_case_depth_mm;
+  std::optional<double> total_depth_mm, turnover_depth_mm, depth_at_0p35_mm, depth_at_0p40_mm;
   double surface_carbon_wt_pct = 0, carbon_uptake_g_m2 = 0, balance_residual_relative = 0;
   double part_temperature_degc = 0;
   solver::OutcomeKind outcome = solver::OutcomeKind::reached;  // the gravest of the run
   std::vector<double> profile_depth_mm, profile_carbon_wt_pct;
+  HardnessResult hardness;
 };
 const char* outcome_word(solver::OutcomeKind outcome);
 
@@ -45,13 +63,20 @@ struct RunResult {
   InputSummary temperature, carbon_potential;
   std::optional<InputSummary> load_temperature;  // planned_s: no reading, the lag was used
   std::vector<std::string> temperature_channels, carbon_channels, load_channels;
-  bool from_probe = false, co_measured = false;
+  bool co_measured = false;
+  std::vector<SourceValue> sources;  // of the newest interval
+  std::optional<double> disagreement_wt_pct;
+  double largest_disagreement_wt_pct = 0;
+  std::vector<SegmentRun> segments;  // as the furnace ran them
   std::vector<GapSpan> gaps;
   std::vector<NoteSpan> notes;
   std::vector<ItemResult> items;
 };
 
 RunResult read_result(const LiveLoad& load, std::shared_ptr<const LoadDefinition> definition);
+
+// Whether the sources of the newest interval are further apart than the furnace's tolerance.
+bool sources_disagree(const RunResult& result);
 
 // The item whose case is furthest from its window's middle, relative to the window: the one to watch.
 std::size_t controlling_item(const RunResult& result);

@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <cstdio>
 
 namespace hearthfront::server {
 namespace {
@@ -32,9 +33,25 @@ std::string say_what_is_amiss(const LoadView& view) {
   for (const ItemResult& item : view.result.items)
     if (item.outcome == solver::OutcomeKind::failed)
       return "The model failed on this load; its numbers stopped at the last good moment.";
+  if (view.carbon_potential.basis == Basis::masked)
+    return "Carbon potential masked (burn-off, purge or calibration): last value carried.";
+  if (view.carbon_potential.basis != Basis::measured && view.temperature.basis != Basis::measured &&
+      view.result.definition->place_at(view.result.state_us).outside())
+    return "Outside any furnace: the parts are taken to cool in still air.";
   if (view.carbon_potential.basis != Basis::measured)
-    return silence(view.result.from_probe ? "Probe" : "Carbon potential", view.carbon_potential);
+    return silence("Carbon potential", view.carbon_potential);
   if (view.temperature.basis != Basis::measured) return silence("Temperature", view.temperature);
+  if (sources_disagree(view.result)) {
+    char line[120];
+    std::snprintf(line, sizeof line,
+                  "Carbon sources disagree by %.2f %% C: check probe, analyser and dew point.",
+                  *view.result.disagreement_wt_pct);
+    return line;
+  }
+  if (!view.segment.doubt.empty()) return view.segment.doubt;
+  if (view.segment.long_by_min > 0)
+    return "Segment \"" + view.result.definition->recipe.segments[view.segment.index].name + "\" has run " +
+           std::to_string(std::lround(view.segment.long_by_min)) + " min longer than planned.";
   for (const NoteSpan& note : view.result.notes)
     if (note.to_us == view.result.state_us && note.note != solver::note_paused_below_austenite)
       return note_sentence(note.note);
@@ -92,8 +109,16 @@ LoadView make_view(const LiveLoad& load, std::shared_ptr<const LoadDefinition> d
   view.result = read_result(load, std::move(definition));
   view.data_us = load.channels().newest_us(load.state_us());
   view.history = std::make_shared<const History>(read_history(load, 600));
-  view.segment = segment_at(load.definition(), load.state_us());
-  view.minutes_left = seconds(load.definition().planned_end_us() - load.state_us()) / 60.0;
+  const RecipePlace& place = load.recipe_place();
+  const Recipe& recipe = load.definition().recipe;
+  view.segment = {place.now().index,
+                  place.now().from_us,
+                  place.now().by,
+                  place.elapsed_min(load.state_us()),
+                  place.segment_left_min(recipe, load.state_us()),
+                  place.long_by_min(recipe, load.state_us()),
+                  place.doubt(recipe)};
+  view.minutes_left = place.minutes_left(recipe, load.state_us());
 
   const RunPoint* last = nullptr;
   load.each_point([&](const RunPoint& point) { last = &point; });
@@ -106,8 +131,16 @@ LoadView make_view(const LiveLoad& load, std::shared_ptr<const LoadDefinition> d
     view.temperature.value = first.temperature_degc;
     view.carbon_potential.value = first.carbon_potential_wt_pct;
   }
-  view.temperature.age_s = age_s(load.channels().series(Role::temperature), now_us);
-  view.carbon_potential.age_s = age_s(load.channels().carbon_series(), now_us);
+  const auto age_of = [&](Role role) {
+    return age_s(load.channels().series(load.definition(), load.state_us(), role), now_us);
+  };
+  view.temperature.age_s = age_of(Role::temperature);
+  for (const SourceValue& each : view.result.sources)
+    if (each.leads) view.carbon_potential.age_s = age_of(role_of(each.source));
+  if (!view.carbon_potential.age_s)
+    for (const CarbonSource source : load.definition().first_furnace().carbon_sources)
+      if (const auto age = age_of(role_of(source)); age && !view.carbon_potential.age_s)
+        view.carbon_potential.age_s = age;
 
   if (load.at_end())
     view.condition = Condition::ended;

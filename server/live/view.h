@@ -49,8 +49,16 @@ struct LoadView {
   Condition condition = Condition::no_data_yet;
   std::string message;  // a sentence about what is amiss; empty: nothing
   InputNow temperature, carbon_potential;
-  SegmentPlace segment;
+  struct {
+    std::size_t index = 0;
+    std::int64_t started_us = 0;
+    PlacedBy by = PlacedBy::start;
+    double elapsed_min = 0, minutes_left = 0, long_by_min = 0;
+    std::string doubt;
+  } segment;
   double minutes_left = 0;
+  // Of a pusher line: the tray's position from the entry on, counted in pushes; empty elsewhere.
+  std::optional<int> line_position;
 };
 
 // Makes everything but row and sequence.

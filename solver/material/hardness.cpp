@@ -10,11 +10,11 @@ namespace {
 struct HardnessPair {
   double hrc, hv;
 };
-constexpr std::array<HardnessPair, 32> e140{
-    {{20, 238}, {25, 266}, {30, 302}, {35, 345}, {38, 372}, {39, 382}, {40, 392}, {41, 402},
-     {42, 412}, {43, 423}, {44, 434}, {45, 446}, {46, 458}, {47, 471}, {48, 484}, {49, 498},
-     {50, 513}, {51, 528}, {52, 544}, {53, 560}, {54, 577}, {55, 595}, {56, 613}, {57, 633},
-     {58, 653}, {59, 674}, {60, 697}, {61, 720}, {62, 746}, {63, 772}, {64, 800}, {65, 832}}};
+constexpr std::array<HardnessPair, 35> e140{
+    {{20, 238}, {25, 266}, {30, 302}, {35, 345}, {38, 372}, {39, 382}, {40, 392}, {41, 402}, {42, 412},
+     {43, 423}, {44, 434}, {45, 446}, {46, 458}, {47, 471}, {48, 484}, {49, 498}, {50, 513}, {51, 528},
+     {52, 544}, {53, 560}, {54, 577}, {55, 595}, {56, 613}, {57, 633}, {58, 653}, {59, 674}, {60, 697},
+     {61, 720}, {62, 746}, {63, 772}, {64, 800}, {65, 832}, {66, 865}, {67, 900}, {68, 940}}};
 
 constexpr std::array<double, 5> martensite_columns{50, 80, 90, 95, 99};
 struct CarbonRow {
@@ -63,6 +63,18 @@ double martensite_hardness_hrc(double carbon_wt_pct, double martensite_pct) {
   return between(c, hodge_orehoski[i - 1].carbon, hodge_orehoski[i].carbon,
                  at_martensite(hodge_orehoski[i - 1], martensite_pct),
                  at_martensite(hodge_orehoski[i], martensite_pct));
+}
+
+double martensite_hardness_hv(double carbon_wt_pct, double martensite_pct) {
+  constexpr double full_martensite_pct = 99.0, plateau_from_wt_pct = 0.80, plateau_hv = 865.0;
+  constexpr double table_end_wt_pct = hodge_orehoski.back().carbon;
+  // The table lies within E140 everywhere.
+  const double by_table = *hv_from_hrc(martensite_hardness_hrc(carbon_wt_pct, martensite_pct));
+  if (!(carbon_wt_pct > table_end_wt_pct)) return by_table;
+  const double full = *hv_from_hrc(martensite_hardness_hrc(table_end_wt_pct, full_martensite_pct));
+  const double richer = between(std::min(carbon_wt_pct, plateau_from_wt_pct), table_end_wt_pct,
+                                plateau_from_wt_pct, full, plateau_hv);
+  return by_table * richer / full;
 }
 
 std::optional<double> carbon_for_hardness_hrc(double hrc, double martensite_pct) {

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 #include <limits>
+#include <stdexcept>
 
 #include "solver/atmosphere/carbon_gas.h"
 #include "solver/material/activity.h"
@@ -20,9 +21,35 @@ double kelvin(double degc) {
   return degc + zero_celsius_k;
 }
 
+bool is_fraction(const std::optional<double>& value) {
+  return !value || (*value >= 0.0 && *value <= 1.0);
+}
+
 bool computable(const IntervalInputs& in) {
+  const bool gas_known =
+      std::isfinite(in.carbon_potential_wt_pct) && is_fraction(in.co_fraction) && is_fraction(in.h2_fraction);
   return in.duration_s > 0.0 && std::isfinite(in.duration_s) && std::isfinite(in.furnace_temperature_degc) &&
-         std::isfinite(in.load_temperature_degc.value_or(0.0)) && std::isfinite(in.carbon_potential_wt_pct);
+         std::isfinite(in.load_temperature_degc.value_or(0.0)) && (gas_known || !in.gas);
+}
+
+// Mean of 1 - exp(-t/constant) from `age` on, for `length`.
+double film_share(double age_s, double length_s, double constant_s) {
+  return 1.0 + constant_s / length_s * std::exp(-age_s / constant_s) * std::expm1(-length_s / constant_s);
+}
+
+void check_profile(const Profile& profile, const Mesh& mesh) {
+  const auto& x = profile.depth_m;
+  const auto& c = profile.carbon_wt_pct;
+  if (x.size() < 4 || x.size() != c.size())
+    throw std::invalid_argument("initial profile: four depths or more are needed, each with its carbon");
+  const bool ascends =
+      std::adjacent_find(x.begin(), x.end(), [](double a, double b) { return !(a < b); }) == x.end();
+  const double extent = mesh.section.extent_m;
+  if (!ascends || std::fabs(x.front()) > 1e-9 || x.back() > extent * (1 + 1e-9) ||
+      x.back() + 0.5 * (x.back() - x[x.size() - 2]) < 0.95 * extent)
+    throw std::invalid_argument("initial profile: depths must ascend from 0 to the centre of this section");
+  if (!std::all_of(c.begin(), c.end(), [](double v) { return v >= 0.0 && v <= 2.6; }))
+    throw std::invalid_argument("initial profile: carbon outside 0-2.6 wt%");
 }
 
 }  // namespace
@@ -47,20 +74,49 @@ GasCarburizing::GasCarburizing(const CarburizingPart& part, const MeshDensity& d
       austenite_from_degc_(ae3_degc(part.steel, part.core_carbon_wt_pct)) {}
 
 GasCarburizing::State GasCarburizing::start(double charge_temperature_degc) const {
+  return start_from(charge_temperature_degc, [&](std::size_t) { return part_.core_carbon_wt_pct; });
+}
+
+GasCarburizing::State GasCarburizing::start(double charge_temperature_degc, const Profile& initial) const {
+  check_profile(initial, *mesh_);
+  return start_from(charge_temperature_degc,
+                    [&](std::size_t node) { return carbon_at_depth_wt_pct(initial, mesh_->depth_m[node]); });
+}
+
+template <class CarbonAtNode>
+GasCarburizing::State GasCarburizing::start_from(double charge_temperature_degc,
+                                                 CarbonAtNode carbon_at) const {
   State state{CarbonField(mesh_, lanes(), part_.core_carbon_wt_pct),
               std::vector<double>(lanes(), charge_temperature_degc),
               std::vector<LaneConditions>(lanes()),
               {}};
   for (std::size_t lane = 0; lane < lanes(); ++lane) {
     for (std::size_t i = 0; i < mesh_->nodes(); ++i)
-      state.field.set_carbon_wt_pct(lane, i,
-                                    part_.core_carbon_wt_pct + members_[lane].core_carbon_offset_wt_pct);
+      state.field.set_carbon_wt_pct(lane, i, carbon_at(i) + members_[lane].core_carbon_offset_wt_pct);
     state.initial_wt_pct_m.push_back(state.field.inventory_wt_pct_m(lane));
     LaneConditions& c = state.conditions[lane];
     c.diffusivity = diffusivity_form(DiffusivityLaw::constant, 0, 1, 1e-30);
     c.surface = {part_.core_carbon_wt_pct, std::numeric_limits<double>::infinity(), 0.0};
   }
   return state;
+}
+
+// Mean over the interval.
+double GasCarburizing::lane_beta_m_per_s(const State& state, const IntervalInputs& inputs,
+                                         const Member& member, double t_k) const {
+  const FurnaceSettings furnace =
+      inputs.furnace.value_or(FurnaceSettings{part_.beta_m_per_s, part_.co_fraction, part_.h2_fraction});
+  const double co = inputs.co_fraction.value_or(furnace.co_fraction);
+  const double h2 = inputs.h2_fraction.value_or(furnace.h2_fraction);
+  double beta = member.beta_scale;
+  if (!furnace.beta_m_per_s)
+    beta *= transfer_coefficient_m_per_s(co, h2, t_k);
+  else if (inputs.co_fraction || inputs.h2_fraction)
+    beta *= *furnace.beta_m_per_s * transfer_ratio(co, h2, furnace.co_fraction, furnace.h2_fraction);
+  else
+    beta *= *furnace.beta_m_per_s;
+  const double film_s = part_.film_s * member.film_scale;
+  return film_s > 0.0 ? beta * film_share(state.film_age_s, inputs.duration_s, film_s) : beta;
 }
 
 // Fills state.conditions for every lane; returns the notes of the nominal lane.
@@ -75,33 +131,40 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
     // A member that is still too cold stands still while the nominal one moves: a vanishing diffusivity.
     const double scale = austenite ? diffusivity_factor_ * member.diffusivity_scale : 1e-30;
     c.diffusivity = diffusivity_form(part_.law, t_k, scale, part_.constant_diffusivity_m2_s);
-    const double beta = member.beta_scale * part_.beta_m_per_s.value_or(transfer_coefficient_m_per_s(
-                                                part_.co_fraction, part_.h2_fraction, t_k));
+    if (lane == 0) {
+      const TemperatureRange range = diffusivity_range(part_.law);
+      if (t_k < range.low_k || t_k > range.high_k) notes |= note_outside_diffusivity_range;
+    }
+    if (!inputs.gas) {
+      c.surface = {part_.core_carbon_wt_pct, std::numeric_limits<double>::infinity(), 0.0};
+      continue;
+    }
     const double potential =
         std::max(0.0, inputs.carbon_potential_wt_pct + member.carbon_potential_offset_wt_pct);
     const double limit = cementite_limit_wt_pct(t_k);
     const double equilibrium = potential / alloy_factor_;
     c.surface.equilibrium_wt_pct = std::min(equilibrium, limit);
-    c.surface.resistance_s_per_m = austenite ? 1.0 / (beta * alloy_factor_) : 1e30;
+    c.surface.resistance_s_per_m =
+        austenite ? 1.0 / (lane_beta_m_per_s(state, inputs, member, t_k) * alloy_factor_) : 1e30;
     c.surface.forced_wt_pct_m_per_s = 0.0;
     if (lane == 0) {
       if (equilibrium > limit) notes |= note_capped_at_carbide_limit;
       const double furnace_k = kelvin(inputs.furnace_temperature_degc);
       // Activity 1 is the graphite limit; its own inverse would cost as much as the step.
       if (carbon_activity(std::min(potential, 2.6), furnace_k) > 1.0) notes |= note_sooting_gas;
-      const TemperatureRange range = diffusivity_range(part_.law);
-      if (t_k < range.low_k || t_k > range.high_k) notes |= note_outside_diffusivity_range;
     }
   }
   return notes;
 }
 
 bool GasCarburizing::note_jump(State& state, const IntervalInputs& inputs, double part_degc) const {
-  const bool jump = !state.moving ||
-                    std::fabs(inputs.carbon_potential_wt_pct - state.last_carbon_potential_wt_pct) >
-                        jump_carbon_potential_wt_pct ||
-                    std::fabs(part_degc - state.last_part_temperature_degc) > jump_temperature_k;
-  state.last_carbon_potential_wt_pct = inputs.carbon_potential_wt_pct;
+  const bool jump =
+      !state.moving || inputs.gas != state.in_gas ||
+      (inputs.gas && std::fabs(inputs.carbon_potential_wt_pct - state.last_carbon_potential_wt_pct) >
+                         jump_carbon_potential_wt_pct) ||
+      std::fabs(part_degc - state.last_part_temperature_degc) > jump_temperature_k;
+  if (inputs.gas) state.last_carbon_potential_wt_pct = inputs.carbon_potential_wt_pct;
+  state.in_gas = inputs.gas;
   state.last_part_temperature_degc = part_degc;
   return jump;
 }
@@ -151,6 +214,7 @@ Outcome GasCarburizing::advance(State& state, const IntervalInputs& inputs, Work
     done = step.duration_s < left ? done + step.duration_s : dt;
   }
   state.settled_s += dt;
+  if (inputs.gas) state.film_age_s += dt;
 
   const bool finite = std::all_of(state.field.crossed_wt_pct_m.begin(), state.field.crossed_wt_pct_m.end(),
                                   [](double crossed) { return std::isfinite(crossed); });

@@ -4,11 +4,15 @@
 // The model is immutable and may be shared by threads; State is a value (copying it sets a mark);
 // a Workspace belongs to one thread. advance() never throws, allocates or blocks.
 //
-// Below the austenite range of the core (Andrews' Ae3) the section is not single-phase austenite: carbon
-// transport is paused and the outcome says so. A gas above the cementite limit of the steel is capped
-// there, and noted. Temperatures outside the range of the diffusivity law are still computed with it, and
-// noted as outside. Part temperature: the load thermocouple where given, else a first-order lag behind the
-// furnace (lumped body, textbook heat transfer), advanced exactly over the interval.
+// Outside any carburizing gas (vacuum, nitrogen, a move between furnaces) nothing crosses the surface and
+// carbon goes on spreading; oxidation and decarburizing by air are not modelled. A film left on the surface
+// (oxide, washing residue) makes a slow start: beta (1 - exp(-t/film_s)), a suggestion of practice without a
+// published law; t counts the time in gas as austenite and each interval takes its mean. Below the austenite
+// range of the core (Andrews' Ae3) the section is not single-phase austenite: carbon transport is paused and
+// the outcome says so. A gas above the cementite limit of the steel is capped there, and noted. Temperatures
+// outside the range of the diffusivity law are still computed with it, and noted as outside. Part
+// temperature: the load thermocouple where given, else a first-order lag behind the furnace (lumped body,
+// textbook heat transfer), advanced exactly over the interval.
 #pragma once
 
 #include <cstdint>
@@ -18,6 +22,7 @@
 
 #include "solver/diffusion/field.h"
 #include "solver/material/steel.h"
+#include "solver/section/measures.h"
 
 namespace hearthfront::solver {
 
@@ -28,8 +33,11 @@ struct CarburizingPart {
   double lag_s = 1200;              // time constant of the part behind the furnace, 0-36000
   DiffusivityLaw law = DiffusivityLaw::agren;
   double constant_diffusivity_m2_s = 0;  // for DiffusivityLaw::constant only
-  std::optional<double> beta_m_per_s;    // overrides the value from the gas
-  double co_fraction = 0.20, h2_fraction = 0.40;
+  // Overrides the value from the gas: beta in the gas of the next line. A measured gas scales it
+  // (transfer_ratio).
+  std::optional<double> beta_m_per_s;
+  double co_fraction = 0.20, h2_fraction = 0.40;  // where no gas is measured
+  double film_s = 0;                              // time constant of a slow start, 0-7200; 0: none
 };
 
 // How one ensemble member departs from the nominal part and furnace. Lane 0 is the nominal one: pauses,
@@ -37,15 +45,28 @@ struct CarburizingPart {
 struct Member {
   double diffusivity_scale = 1, beta_scale = 1, lag_scale = 1;
   double temperature_offset_k = 0, carbon_potential_offset_wt_pct = 0, core_carbon_offset_wt_pct = 0;
+  double film_scale = 1;
 };
 
-// Means over one lattice interval. A value that is not finite, or a duration that is not above 0, fails the
-// state.
+// Settings of a furnace, as in CarburizingPart.
+struct FurnaceSettings {
+  std::optional<double> beta_m_per_s;
+  double co_fraction = 0.20, h2_fraction = 0.40;
+};
+
+// Means over one lattice interval. A value that is not finite, a mole fraction outside 0-1, or a duration
+// that is not above 0, fails the state.
 struct IntervalInputs {
   double duration_s = 60;
   double furnace_temperature_degc = 20;
   std::optional<double> load_temperature_degc;
   double carbon_potential_wt_pct = 0;
+  // Measured gas, 0-1; where empty the furnace's.
+  std::optional<double> co_fraction, h2_fraction;
+  // The furnace the part is in, where it is another than the part's own (a load that moved).
+  std::optional<FurnaceSettings> furnace;
+  // False: the part is outside any carburizing gas; potential and fractions are then not looked at.
+  bool gas = true;
 };
 
 // The closed list of outcomes. Negative: the state stays at the farthest good point.
@@ -72,7 +93,9 @@ class GasCarburizing {
     std::vector<double> initial_wt_pct_m;       // inventory at the start
     double settled_s = 0;                       // since the last jump of the inputs
     double last_carbon_potential_wt_pct = 0, last_part_temperature_degc = 0;
-    bool moving = false;  // false at the start and while paused
+    double film_age_s = 0;  // time in gas as austenite
+    bool in_gas = false;    // in the last interval that moved
+    bool moving = false;    // false at the start and while paused
     bool failed = false;
   };
 
@@ -92,7 +115,16 @@ class GasCarburizing {
   GasCarburizing(const CarburizingPart& part, const MeshDensity& density,
                  std::vector<Member> members = {Member{}});
 
+  // A new part: core carbon everywhere.
   State start(double charge_temperature_degc) const;
+  // Rework: a part that an earlier load left with `initial`. The section must be the same; core carbon is the
+  // profile's own. Lay the mesh out for both loads: the root of the sum of their squared diffusion lengths.
+  // A profile on this model's nodes is taken over bit for bit. Any other is read at this model's nodes by
+  // `carbon_at_depth_wt_pct`: depths within 0.3 um, and the carbon inside (a quadrature over each mesh's own
+  // nodes) within 3e-4 of what the profile holds above its core (tests); it is the start of this load's
+  // balance. Throws std::invalid_argument where the profile has fewer than four depths, does not ascend from
+  // the surface to this section's centre (within 5 % of its extent), or holds carbon outside 0-2.6 wt%.
+  State start(double charge_temperature_degc, const Profile& initial) const;
   Outcome advance(State& state, const IntervalInputs& inputs, Workspace& workspace) const;
 
   const Mesh& mesh() const { return *mesh_; }
@@ -101,6 +133,10 @@ class GasCarburizing {
   std::size_t lanes() const { return members_.size(); }
 
  private:
+  template <class CarbonAtNode>
+  State start_from(double charge_temperature_degc, CarbonAtNode carbon_at) const;
+  double lane_beta_m_per_s(const State& state, const IntervalInputs& inputs, const Member& member,
+                           double temperature_k) const;
   std::uint32_t set_conditions(State& state, const IntervalInputs& inputs,
                                std::span<const double> part_degc) const;
   bool note_jump(State& state, const IntervalInputs& inputs, double part_degc) const;

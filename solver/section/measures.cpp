@@ -7,32 +7,10 @@
 
 #include "solver/diffusion/potential.h"
 #include "solver/material/constants.h"
+#include "solver/section/cubic.h"
 
 namespace hearthfront::solver {
 namespace {
-
-// Cubic through four nodes (Lagrange).
-double cubic_at(const double* x, const double* y, double at) {
-  double sum = 0.0;
-  for (int p = 0; p < 4; ++p) {
-    double weight = y[p];
-    for (int q = 0; q < 4; ++q)
-      if (q != p) weight *= (at - x[q]) / (x[p] - x[q]);
-    sum += weight;
-  }
-  return sum;
-}
-
-// Where the cubic through four nodes leaves `before`, by halving [low, high]. The cubic passes through both
-// ends, so the bracket holds such a place.
-template <class Predicate>
-double root_between(const double* x, const double* y, double low, double high, Predicate before) {
-  for (int step = 0; step < 60 && high - low > 1e-13; ++step) {
-    const double middle = 0.5 * (low + high);
-    (before(cubic_at(x, y, middle)) ? low : high) = middle;
-  }
-  return 0.5 * (low + high);
-}
 
 // What every node's row gains (flux in minus flux out), and dC/dt at the nodes: the gains through the inverse
 // of the mesh's mass rows.
@@ -89,8 +67,19 @@ std::optional<double> depth_at_carbon_m(const Profile& profile, double limit) {
   while (i > 0 && c[i - 1] < limit) --i;
   if (i == 0) return 0.0;
   // c[i-1] >= limit > c[i].
-  const std::size_t first = std::min(i >= 2 ? i - 2 : 0, x.size() - 4);
+  const std::size_t first = cubic_first(i, x.size());
   return root_between(&x[first], &c[first], x[i - 1], x[i], [&](double carbon) { return carbon >= limit; });
+}
+
+double carbon_at_depth_wt_pct(const Profile& profile, double depth_m) {
+  const auto& x = profile.depth_m;
+  const auto& c = profile.carbon_wt_pct;
+  if (depth_m <= x.front()) return c.front();
+  if (depth_m >= x.back()) return c.back();
+  const auto i = static_cast<std::size_t>(std::upper_bound(x.begin(), x.end(), depth_m) - x.begin());
+  const std::size_t first = cubic_first(i, x.size());
+  const auto [least, most] = std::minmax_element(&c[first], &c[first] + 4);
+  return std::clamp(cubic_at(&x[first], &c[first], depth_m), *least, *most);
 }
 
 std::optional<double> turnover_depth_m(const CarbonField& field, std::size_t lane,
@@ -110,7 +99,7 @@ std::optional<double> turnover_depth_m(const CarbonField& field, std::size_t lan
   if (std::accumulate(change.gain.begin(), change.gain.begin() + static_cast<std::ptrdiff_t>(last), 0.0) >=
       0.0)
     return std::nullopt;
-  const std::size_t first = std::min(last >= 2 ? last - 2 : 0, x.size() - 4);
+  const std::size_t first = cubic_first(last, x.size());
   return root_between(&x[first], &rate[first], x[last - 1], x[last], [](double r) { return r < 0.0; });
 }
 

@@ -15,7 +15,7 @@
 namespace hearthfront::solver {
 
 struct Profile {
-  std::vector<double> depth_m;  // the nodes, ascending from 0 (the surface)
+  std::vector<double> depth_m;  // the nodes, ascending from 0 (the surface); at least four
   std::vector<double> carbon_wt_pct;
 };
 Profile read_profile(const CarbonField& field, std::size_t lane, const LaneConditions& conditions);
@@ -23,6 +23,10 @@ Profile read_profile(const CarbonField& field, std::size_t lane, const LaneCondi
 // Where the profile falls to `limit`. 0 where even the richest point is below it; empty where the core is
 // above it, so that the criterion has no meaning.
 std::optional<double> depth_at_carbon_m(const Profile& profile, double limit_wt_pct);
+
+// Carbon at one depth, by a cubic through the four nearest nodes that is kept within their values. At the end
+// nodes and beyond them their own values.
+double carbon_at_depth_wt_pct(const Profile& profile, double depth_m);
 
 // Depth where the steel changes from giving carbon up (nearer the surface) to gaining it: the sign change of
 // the flux divergence. Empty while the metal near the surface gains.

@@ -99,7 +99,7 @@ TEST_CASE("a body nested without end is refused before it can hurt") {
 
 TEST_CASE("defaults are filled in from the plant and kept with the load") {
   const auto def = definition();
-  CHECK(def->chamber == "main");
+  CHECK(def->path.front().chamber == "main");
   CHECK(def->lattice_s == 60);
   CHECK(def->items[0].core_carbon_wt_pct == 0.195);
   CHECK(def->items[0].lag_min == 20);

@@ -3,6 +3,7 @@
 
 #include <array>
 #include <atomic>
+#include <cerrno>
 #include <chrono>
 #include <cstdio>
 #include <mutex>
@@ -34,6 +35,9 @@ struct Fixture {
     });
     server.route("GET", "/long", [](const Request&) {
       return Response{200, "application/json", std::string(3u << 20, 'j'), {}};
+    });
+    server.route("GET", "/some", [](const Request&) {
+      return Response{200, "application/json", std::string(150u << 10, 'j'), {}};
     });
     server.route("GET", "/huge", [](const Request&) {
       return Response{200, "application/json", std::string(16u << 20, 'j'), {}};
@@ -330,6 +334,7 @@ TEST_CASE("many large bodies at once are bounded together, small ones go on") {
   const std::string head = "POST /echo HTTP/1.1\r\nHost: localhost\r\nContent-Length: 2097152\r\n\r\n";
   Client first(fixture.port);
   first.send(head + std::string((2u << 20) - 1, 'b'));
+  std::this_thread::sleep_for(std::chrono::milliseconds(500));  // all of it is read before the second begins
   Client second(fixture.port);
   second.send(head + std::string((2u << 20) - 1, 'b'));
   CHECK(second.read_answer().status == 503);
@@ -355,6 +360,62 @@ TEST_CASE("answers that nobody takes are bounded together, the oldest given up f
   // Two answers of 16 MiB fit into 40 MiB, three do not.
   CHECK(fixture.server.counters().open_connections == 2);
   CHECK(fixture.ask(get("/hello")).status == 200);
+}
+
+TEST_CASE("what needs no worker is answered while every worker waits") {
+  HttpLimits limits;
+  limits.threads = 2;
+  HttpServer server(limits);
+  std::atomic<bool> over = false;
+  std::atomic<int> waiting = 0;
+  server.route("GET", "/waits", [&](const Request&) {
+    ++waiting;
+    while (!over) std::this_thread::sleep_for(std::chrono::milliseconds(1));
+    return Response{200, "text/plain", "waited", {}};
+  });
+  server.route_at_once("/alive", [](const Request& request) {
+    if (request.query.count("throws") != 0) throw std::runtime_error("secret");
+    return Response{200, "text/plain", "alive", {}};
+  });
+  server.on_error([](std::string_view) {});
+  const int port = server.start("127.0.0.1", 0);
+  std::vector<Client> blocked;
+  for (int i = 0; i < 3; ++i) {
+    blocked.emplace_back(port);
+    blocked.back().send(get("/waits"));
+  }
+  while (waiting < 2) std::this_thread::sleep_for(std::chrono::milliseconds(1));
+  Client client(port);
+  client.send(get("/alive") + get("/alive?a=1") + get("/alive?throws") + post("/alive", "x"));
+  CHECK(client.read_answer().body == "alive");
+  CHECK(client.read_answer().body == "alive");
+  CHECK(client.read_answer().status == 500);
+  CHECK(Client(port).ask("GET /alive HTTP/1.0\r\n\r\n").has("Connection: close\r\n"));
+  over = true;
+  CHECK(client.read_answer().status == 405);  // that one took a worker
+  for (auto& one : blocked) CHECK(one.read_answer().body == "waited");
+  CHECK_THROWS_AS(server.route_at_once("/late", [](const Request&) { return Response{}; }), std::logic_error);
+}
+
+TEST_CASE(
+    "a client that ended its side but takes no answer keeps its place until it is cut, and is reset then") {
+  HttpLimits limits;
+  limits.request_timeout_s = 1;
+  Fixture fixture(limits);
+  Client client(fixture.port);
+  client.send(get("/some"));  // the kernel takes it whole, so that nothing waits in the loop
+  client.end_sending();
+  const auto open_after = [&](int wait_ms) {
+    std::this_thread::sleep_for(std::chrono::milliseconds(wait_ms));
+    return fixture.server.counters().open_connections;
+  };
+  CHECK(open_after(300) == 1);
+  int open = 1;
+  for (int i = 0; i < 100 && open > 0; ++i) open = open_after(100);
+  CHECK(open == 0);
+  while (client.receive()) {
+  }
+  CHECK(errno == ECONNRESET);  // so the kernel holds nothing more of it
 }
 
 TEST_CASE("64 clients at once each get their own answers") {

@@ -94,7 +94,8 @@ TEST_CASE("a head that two readers could read in two ways is refused (RFC 9112 s
   CHECK(verdict_with("X: a\rb\r\n") == 400);
   CHECK(verdict_with(std::string("X: a\0b\r\n", 8)) == 400);
   CHECK(verdict_with("Host: other\r\n") == 400);
-  CHECK(verdict("GET / HTTP/1.1\r\n\r\n") == 400);  // RFC 9112 section 3.2: Host is required
+  CHECK(verdict("GET / HTTP/1.1\r\n\r\n") == 400);                  // RFC 9112 section 3.2: Host is required
+  CHECK(verdict("GET http://localhost/ HTTP/1.1\r\n\r\n") == 400);  // in absolute form as well
   CHECK(verdict("GET / HTTP/1.0\r\n\r\n") == 200);
   CHECK(verdict("GET / HTTP/1.1\nHost: localhost\n\n") == 400);
   CHECK(verdict("GET / HTTP/2.0\r\nHost: localhost\r\n\r\n") == 400);
@@ -216,7 +217,15 @@ TEST_CASE("only names of this server are taken as Host, only its own pages may c
     }
     CHECK(verdict_of("GET", "localhost:80", std::string("Origin: ") + origin + "\r\n") == 200);
   }
-  CHECK(verdict_of("POST", "localhost", "Sec-Fetch-Site: cross-site\r\n") == 403);
+  // W3C Fetch Metadata Request Headers, section 2.3: the values of Sec-Fetch-Site.
+  for (const char* site : {"cross-site", "same-site", "x"}) {
+    CAPTURE(site);
+    CHECK(verdict_of("POST", "localhost", std::string("Sec-Fetch-Site: ") + site + "\r\n") == 403);
+    CHECK(verdict_of("GET", "localhost", std::string("Sec-Fetch-Site: ") + site + "\r\n") == 200);
+  }
+  for (const char* site : {"same-origin", "none"}) {
+    CHECK(verdict_of("POST", "localhost", std::string("Sec-Fetch-Site: ") + site + "\r\n") == 200);
+  }
 }
 
 TEST_CASE("gzip is taken only where the client offers it (RFC 9110 section 12.5.3)") {

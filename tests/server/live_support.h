@@ -21,7 +21,7 @@ inline Plant small_plant() {
   Furnace furnace;
   furnace.id = "f1";
   furnace.name = "Furnace 1";
-  furnace.chambers = {{"main", "Main"}};
+  furnace.chambers = {{"main", "Main", 1}};
   Channel temperature{"temperature", Role::temperature, Unit::degc, "main", 0, 1100, 60, 300, 600};
   Channel potential{"potential", Role::carbon_potential, Unit::weight_percent, "main", 0, 2, 60, 300, 600};
   furnace.channels = {temperature, potential};
@@ -66,14 +66,16 @@ inline Log noisy_log(const LoadDefinition& load, int minutes, int gap_from = 0, 
 }
 
 inline ReadingSource source_of(const Log& log) {
-  return [&log](const std::string& channel, std::int64_t from, std::int64_t to) {
+  ReadingSource source;
+  source.readings = [&log](const LoadChannels::Used& channel, std::int64_t from, std::int64_t to) {
     std::vector<Sample> samples;
-    const auto it = log.find(channel);
+    const auto it = log.find(channel.name);
     if (it == log.end()) return samples;
     for (const Sample& sample : it->second)
       if (sample.time_us >= from && sample.time_us <= to) samples.push_back(sample);
     return samples;
   };
+  return source;
 }
 
 inline std::string result_of(const LiveLoad& load, const std::shared_ptr<const LoadDefinition>& def) {

@@ -1,9 +1,8 @@
-// Material laws against published or independently computed values. "Computed" values were evaluated from the
-// cited formula outside this project, with R = 8.314463 J/mol/K (1.987 cal/mol/K), M_C = 12.011, M_Fe
-// = 55.845.
+// Material laws against published or independently computed values; where sources disagree, sources_test.cpp.
+// "Computed" values were evaluated from the cited formula outside this project, with R = 8.314463 J/mol/K
+// (1.987 cal/mol/K), M_C = 12.011, M_Fe = 55.845.
 #include <doctest/doctest.h>
 
-#include <array>
 #include <cmath>
 #include <initializer_list>
 
@@ -28,31 +27,6 @@ doctest::Approx within(double value, double tolerance) {
 
 }  // namespace
 
-TEST_CASE("diffusivity of carbon: Agren 1986 and Tibbetts 1980 at carburizing temperatures") {
-  struct Row {
-    double degc;
-    std::array<double, 4> agren, tibbetts;  // 1e-11 m2/s at 0.2, 0.4, 0.8, 1.2 wt% C; computed
-  };
-  const std::array<Row, 5> table{{
-      {850, {0.3982, 0.4994, 0.7773, 1.196}, {0.3888, 0.5100, 0.8778, 1.511}},
-      {900, {0.7720, 0.9570, 1.456, 2.192}, {0.7685, 0.9831, 1.609, 2.633}},
-      {930, {1.119, 1.377, 2.069, 3.076}, {1.126, 1.420, 2.259, 3.593}},
-      {950, {1.418, 1.739, 2.590, 3.820}, {1.437, 1.796, 2.806, 4.384}},
-      {980, {1.995, 2.432, 3.580, 5.220}, {2.042, 2.519, 3.835, 5.838}},
-  }};
-  const std::array<double, 4> carbon{0.2, 0.4, 0.8, 1.2};
-  for (const Row& row : table)
-    for (std::size_t j = 0; j < carbon.size(); ++j) {
-      CAPTURE(row.degc);
-      CAPTURE(carbon[j]);
-      const double t = row.degc + zero_c;
-      CHECK(1e11 * diffusivity_m2_s(diffusivity_form(DiffusivityLaw::agren, t), carbon[j]) ==
-            four_figures(row.agren[j]));
-      CHECK(1e11 * diffusivity_m2_s(diffusivity_form(DiffusivityLaw::tibbetts, t), carbon[j]) ==
-            four_figures(row.tibbetts[j]));
-    }
-}
-
 TEST_CASE("diffusivity: a factor multiplies it and the constant law is constant") {
   const double d = diffusivity_m2_s(diffusivity_form(DiffusivityLaw::agren, 1203.15), 0.6);
   CHECK(diffusivity_m2_s(diffusivity_form(DiffusivityLaw::agren, 1203.15, 0.8), 0.6) ==
@@ -76,9 +50,6 @@ TEST_CASE("activity of carbon in austenite: Gustafson 1985, computed from the pu
     const double t = row.degc + zero_c;
     CHECK(carbon_activity(row.carbon, t) == four_figures(row.activity));
     CHECK(carbon_at_activity(carbon_activity(row.carbon, t), t) == within(row.carbon, 1e-11));
-    // Ellis, Davidson, Bodsworth, JISI 201 (1963) 582 (from memory), an independent measurement.
-    const double ellis = std::pow(10.0, 2300.0 / t - 2.21 + 0.15 * row.carbon + std::log10(row.carbon));
-    CHECK(carbon_activity(row.carbon, t) == doctest::Approx(ellis).epsilon(0.03));
   }
 }
 
@@ -101,8 +72,6 @@ TEST_CASE("solubility of graphite and cementite in austenite") {
     CHECK(cementite_limit_wt_pct(row.degc + zero_c) == within(row.cementite, 0.0018));
     CHECK(graphite_limit_wt_pct(row.degc + zero_c) < cementite_limit_wt_pct(row.degc + zero_c));
   }
-  // Fe-C diagram (handbook value, from memory): graphite eutectoid 0.68 wt% at 738 degC.
-  CHECK(graphite_limit_wt_pct(738 + zero_c) == within(0.68, 0.01));
 }
 
 TEST_CASE("alloy factor (Gunnarson 1967, from memory) and its diffusivity factor (radiotracer, 1976)") {

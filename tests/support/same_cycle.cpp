@@ -34,11 +34,32 @@ ReferenceProblem reference_problem(const solver::CarburizingPart& part,
   problem.bore_radius_m = part.section.bore_radius_m;
   problem.core_wt_pct = part.core_carbon_wt_pct;
   problem.diffusivity_factor = 1.0 - 0.107 * s.cr_wt_pct;
+  // Andrews 1965: nothing moves below it.
+  const double ae3_degc = 910.0 - 203.0 * std::sqrt(part.core_carbon_wt_pct) + 44.7 * s.si_wt_pct -
+                          15.2 * s.ni_wt_pct + 31.5 * s.mo_wt_pct - 30.0 * s.mn_wt_pct - 11.0 * s.cr_wt_pct;
+  double film_age_s = 0;
   for (const solver::IntervalInputs& in : inputs) {
-    const double hundreds = (in.load_temperature_degc.value() - 900.0) / 100.0;
+    const double degc = in.load_temperature_degc.value();
+    if (!(degc > ae3_degc)) continue;
+    const double hundreds = (degc - 900.0) / 100.0;
     const double cap = 1.2276 + 0.2933 * hundreds + 0.01457 * hundreds * hundreds;
-    problem.pieces.push_back({in.duration_s, in.load_temperature_degc.value() + 273.15,
-                              std::min(in.carbon_potential_wt_pct / k, cap), part.beta_m_per_s.value() * k});
+    const double gas = in.co_fraction.value_or(part.co_fraction) *
+                       std::sqrt(in.h2_fraction.value_or(part.h2_fraction)) /
+                       (part.co_fraction * std::sqrt(part.h2_fraction));
+    ReferencePiece piece{in.duration_s, degc + 273.15, std::min(in.carbon_potential_wt_pct / k, cap),
+                         in.gas ? part.beta_m_per_s.value() * gas * k : 0.0};
+    // A film follows time, not intervals: while it matters, in pieces of a sixth at their middles.
+    const bool filmed = in.gas && part.film_s > 0 && film_age_s < 12 * part.film_s;
+    const int cuts = filmed ? 6 : 1;
+    piece.duration_s /= cuts;
+    const double clean = piece.transfer_m_per_s;
+    for (int i = 0; i < cuts; ++i) {
+      if (filmed)
+        piece.transfer_m_per_s =
+            clean * -std::expm1(-(film_age_s + (i + 0.5) * piece.duration_s) / part.film_s);
+      problem.pieces.push_back(piece);
+    }
+    if (in.gas) film_age_s += in.duration_s;
   }
   return problem;
 }

@@ -10,8 +10,9 @@
 
 namespace hearthfront::testing {
 
-// The part's beta_m_per_s must be set and every input must carry a load temperature; all of it in austenite.
-// `face_m` is left to the caller.
+// The part's beta_m_per_s must be set and every input must carry a load temperature. Time below austenite is
+// left out, time outside gas has no transfer, a film follows time continuously. `face_m` is left to the
+// caller.
 ReferenceProblem reference_problem(const solver::CarburizingPart& part,
                                    const std::vector<solver::IntervalInputs>& inputs);
 

@@ -125,9 +125,9 @@ export class Daemon {
     return daemon;
   }
 
-  async start() {
+  async start(program = binary()) {
     const log = openSync(join(this.folder, 'daemon.log'), 'a');
-    this.process = spawn(binary(), ['serve', '--settings', this.settings], { stdio: ['ignore', log, log] });
+    this.process = spawn(program, ['serve', '--settings', this.settings], { stdio: ['ignore', log, log] });
     running.add(this.process);
     this.ended = new Promise((tell) => this.process.once('exit', (code, signal) => tell({ code, signal })));
     let over = false;

@@ -6,6 +6,7 @@
 #include <initializer_list>
 #include <string>
 
+#include "support/paths.h"
 #include "support/same_cycle.h"
 
 using namespace hearthfront::solver;
@@ -73,6 +74,22 @@ TEST_CASE("plate, cylinder and bore under noisy minutes: depths within 0.2 um of
     // A step of one minute does not resolve how the outermost micrometres follow each minute's noise (0.014
     // wt% from one to the next): a tenth of that.
     CHECK(std::fabs(profile.carbon_wt_pct[0] - surface) < 1.4e-3);
+  }
+}
+
+TEST_CASE("film, time outside gas, dips below austenite, measured gas: depths within 0.2 um of CVODE") {
+  for (const ProcessPath& path : process_paths(21)) {
+    if (!path.rework.empty()) continue;
+    CAPTURE(path.name);
+    CarburizingPart part = part_of({"16MnCr5", {Shape::plate, 10e-3, 0}, 0});
+    part.film_s = path.film_s;
+    const ReferenceResult exact = reference(part, path.inputs, 1.4);
+    const GasCarburizing::State state = solved(part, path.inputs);
+    const Profile profile = read_profile(state.field, 0, state.conditions[0]);
+    for (double limit : {part.core_carbon_wt_pct + 0.04, 0.30, 0.35, 0.40, 0.50, 0.60}) {
+      CAPTURE(limit);
+      CHECK(std::fabs(depth_at_carbon_m(profile, limit).value() - exact.depth_at_m(limit)) < 0.2e-6);
+    }
   }
 }
 
