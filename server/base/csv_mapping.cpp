@@ -40,6 +40,7 @@ class Checker {
         add("date_column", "is the time column as well; leave it out where one column holds both");
     }
     check_time();
+    check_no_value();
     if (mapping_.units_line && mapping_.header_lines == 0)
       add("units_line", "header_lines = 0: a units line stands below the line that names the columns");
     for (std::size_t i = 0; i < mapping_.columns.size(); ++i) {
@@ -77,6 +78,13 @@ class Checker {
                            suggestion(mapping_.time_zone, TimeZone::names()) +
                            "; expected a name such as \"Europe/Berlin\" or \"America/Chicago\"");
     }
+  }
+
+  void check_no_value() {
+    const auto& words = mapping_.no_value;
+    if (words.size() > 100) add("no_value", "expected at most 100 words");
+    if (std::any_of(words.begin(), words.end(), [](const std::string& word) { return word.size() > 40; }))
+      add("no_value", "expected words of at most 40 bytes");
   }
 
   // Header text, or "#" and a number.

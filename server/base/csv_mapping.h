@@ -23,7 +23,9 @@ enum class FileUnit {
   weight_percent,
   volume_percent,
   ppm,  // by volume
+  pascal,
   hectopascal,
+  kilopascal,
   bar,
   count
 };

@@ -7,7 +7,7 @@
 namespace hearthfront::server {
 namespace {
 
-constexpr std::array<std::pair<FileUnit, std::string_view>, 12> words{{
+constexpr std::array<std::pair<FileUnit, std::string_view>, 14> words{{
     {FileUnit::degc, "degC"},
     {FileUnit::degf, "degF"},
     {FileUnit::kelvin, "K"},
@@ -17,7 +17,9 @@ constexpr std::array<std::pair<FileUnit, std::string_view>, 12> words{{
     {FileUnit::weight_percent, "wt_pct"},
     {FileUnit::volume_percent, "vol_pct"},
     {FileUnit::ppm, "ppm"},
+    {FileUnit::pascal, "Pa"},
     {FileUnit::hectopascal, "hPa"},
+    {FileUnit::kilopascal, "kPa"},
     {FileUnit::bar, "bar"},
     {FileUnit::count, "count"},
 }};
@@ -95,10 +97,13 @@ std::optional<FileUnit> unit_of_token(const std::string& token, Role role) {
       if (one_of(token, {"ppm", "ppmv", "vpm"})) return FileUnit::ppm;
       return {};
     case Role::pressure:
+      if (token == "pa") return FileUnit::pascal;
       if (one_of(token, {"hpa", "mbar"})) return FileUnit::hectopascal;
+      if (token == "kpa") return FileUnit::kilopascal;
       if (token == "bar") return FileUnit::bar;
       return {};
     case Role::push:
+      if (one_of(token, {"count", "counts", "pushes"})) return FileUnit::count;
       return {};
   }
   return {};
@@ -111,6 +116,13 @@ std::string_view text(FileUnit unit) {
     if (known == unit) return word;
   }
   throw std::logic_error("file_unit: a unit without a word");
+}
+
+std::string all_file_units() {
+  std::string list;
+  for (std::size_t i = 0; i < words.size(); ++i)
+    list.append(i == 0 ? "" : i + 1 == words.size() ? " or " : ", ").append(words[i].second);
+  return list;
 }
 
 std::optional<FileUnit> file_unit_from(std::string_view word) {
@@ -155,7 +167,9 @@ bool unit_fits(Role role, FileUnit unit) {
     case FileUnit::volume_percent:
     case FileUnit::ppm:
       return unit_fits(role, Unit::volume_percent);
+    case FileUnit::pascal:
     case FileUnit::hectopascal:
+    case FileUnit::kilopascal:
     case FileUnit::bar:
       return unit_fits(role, Unit::hectopascal);
     case FileUnit::count:
@@ -192,8 +206,12 @@ double convert(double value, FileUnit from, Unit to) {
       return convert(value, Unit::volume_percent, to);
     case FileUnit::ppm:
       return convert(value / 10'000, Unit::volume_percent, to);
+    case FileUnit::pascal:
+      return convert(value / 100, Unit::hectopascal, to);
     case FileUnit::hectopascal:
       return convert(value, Unit::hectopascal, to);
+    case FileUnit::kilopascal:
+      return convert(value * 10, Unit::hectopascal, to);
     case FileUnit::bar:
       return convert(value * 1000, Unit::hectopascal, to);
     case FileUnit::count:
@@ -218,7 +236,8 @@ std::optional<FileUnit> unit_in_words(std::string_view header, Role role) {
 bool is_unit_word(std::string_view cell) {
   const std::vector<std::string> tokens = tokens_of(plain(cell));
   const auto is_unit = [](const std::string& token) {
-    for (const Role role : {Role::temperature, Role::probe_emf, Role::carbon_potential, Role::co}) {
+    for (const Role role :
+         {Role::temperature, Role::probe_emf, Role::carbon_potential, Role::co, Role::pressure}) {
       if (unit_of_token(token, role)) return true;
     }
     return one_of(token,

@@ -1,6 +1,6 @@
 // Units of logger files: their words, where they fit, conversion into the units of channels. Pure, any
 // thread. Scales by definition: degC = K - 273.15, degF = 1.8 degC + 32 (BIPM, SI Brochure, 9th
-// edition, 2.3.1 for the first); 1 vol% = 10 000 ppm by volume.
+// edition, 2.3.1 for the first); 1 vol% = 10 000 ppm by volume; 1 hPa = 1 mbar = 100 Pa.
 #pragma once
 
 #include <optional>
@@ -13,6 +13,7 @@
 namespace hearthfront::server {
 
 std::string_view text(FileUnit unit);  // "degC", "degF", "K", "mV", "V", "uV", "wt_pct", "vol_pct", "ppm"
+std::string all_file_units();          // their words, for messages: "degC, degF, ... or count"
 std::optional<FileUnit> file_unit_from(std::string_view word);
 FileUnit file_unit_of(Unit unit);
 bool unit_fits(Role role, FileUnit unit);

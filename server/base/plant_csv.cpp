@@ -13,9 +13,8 @@ void read_unit(ConfigTable& table, CsvColumn& column) {
   if (column.unit_from_header) return;
   column.unit = file_unit_from(word);
   if (!column.unit) {
-    table.fault("unit", "\"" + word +
-                            "\" is no unit of a logger file; expected \"from header\", degC, degF, K, mV, "
-                            "V, uV, wt_pct, vol_pct or ppm");
+    table.fault("unit", "\"" + word + "\" is no unit of a logger file; expected \"from header\", " +
+                            all_file_units());
   }
 }
 
@@ -55,7 +54,7 @@ void read_signs(ConfigTable& table, CsvMapping& mapping) {
       table.fault("thousands", "expected \".\", \",\", \"'\" or \" \"");
   }
   table.text("comment", mapping.comment, 0, 5);
-  table.texts("no_value", mapping.no_value, 100, 40);
+  table.texts("no_value", mapping.no_value);
 }
 
 void read_times(ConfigTable& table, CsvMapping& mapping) {

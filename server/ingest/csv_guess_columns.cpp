@@ -98,24 +98,27 @@ bool speaks_of(const std::set<std::string>& words, Role role) {
     case Role::co2:
       return any_of_words(words, {"co2", "kohlendioxid"});
     case Role::dew_point:
-      return any_of_words(words, {"dew", "dewpoint", "taupunkt", "dp"});
+      return any_of_words(words, {"dew", "dewpoint", "taupunkt"});
     case Role::pressure:
-      return any_of_words(words, {"pressure", "druck"});
+      return any_of_words(words, {"pressure", "druck", "ofendruck"});
     case Role::push:
-      return any_of_words(words, {"push", "pushes", "stoss", "stößel"});
+      return any_of_words(words, {"push", "pushes", "pusher", "takt"});
   }
   return false;
 }
 
-// Set points and outputs are no measurement, nor is what another instrument shows.
-bool is_something_else(const std::set<std::string>& words, Role role) {
-  for (const auto& [word, of] : {std::pair{"co2", Role::co2}, std::pair{"h2", Role::h2},
-                                 std::pair{"dew", Role::dew_point}, std::pair{"dewpoint", Role::dew_point},
-                                 std::pair{"taupunkt", Role::dew_point}})
-    if (words.contains(word) && of != role) return true;
-  return any_of_words(
-      words, {"setpoint", "sp",  "set", "soll", "sollwert", "target",   "output",   "out", "power",  "alarm",
-              "status",   "ch4", "oil", "quench", "öl"});
+// A gas or a pressure is never another one's channel, whatever the unit.
+bool speaks_of_another(const std::set<std::string>& words, Role role) {
+  for (const Role other : {Role::co, Role::h2, Role::co2, Role::dew_point, Role::pressure, Role::push}) {
+    if (other != role && speaks_of(words, other)) return true;
+  }
+  return false;
+}
+
+// Set points, outputs and what is measured elsewhere.
+bool is_something_else(const std::set<std::string>& words) {
+  return any_of_words(words, {"setpoint", "sp", "set", "soll", "sollwert", "target", "output", "out", "power",
+                              "alarm", "status", "ch4", "oil", "quench", "öl"});
 }
 
 struct Column {
@@ -170,11 +173,12 @@ int score_of(const Column& column, const Channel& channel, const Furnace& furnac
   else
     for (const std::string& word : wanted) score += words.contains(word) ? 25 : 0;
   if (speaks_of(words, channel.role)) score += 30;
-  if (is_something_else(words, channel.role)) score -= 80;
+  if (is_something_else(words) || speaks_of_another(words, channel.role)) score -= 80;
   const auto unit = column.unit_for(channel.role);
   if (unit) score += 20;
   if (!unit) {
-    for (const Role role : {Role::temperature, Role::probe_emf, Role::carbon_potential, Role::co, Role::pressure})
+    for (const Role role :
+         {Role::temperature, Role::probe_emf, Role::carbon_potential, Role::co, Role::pressure})
       if (column.unit_for(role)) return 0;  // it names a unit, of something else
   }
   const double within = column.share_within(channel, unit.value_or(likely_unit(column, channel)));

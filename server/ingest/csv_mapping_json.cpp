@@ -28,12 +28,6 @@ std::string raw(JsonFields& fields, std::string_view name) {
   return value.get<std::string>();
 }
 
-bool truth(JsonFields& fields, std::string_view name) {
-  const Json& value = fields.any(name);
-  if (!value.is_boolean()) fields.fail(name, "expected true or false.");
-  return value.get<bool>();
-}
-
 void read_signs(JsonFields& fields, CsvMapping& mapping) {
   if (fields.has("encoding")) {
     const auto encoding = encoding_from(fields.word("encoding", 40));
@@ -59,8 +53,7 @@ void read_signs(JsonFields& fields, CsvMapping& mapping) {
   if (fields.has("no_value")) {
     mapping.no_value.clear();
     for (const Json& word : fields.array("no_value", 0, 100)) {
-      if (!word.is_string() || word.get_ref<const std::string&>().size() > 40)
-        fields.fail("no_value", "expected texts of at most 40 bytes.");
+      if (!word.is_string()) fields.fail("no_value", "expected texts in quotes.");
       mapping.no_value.push_back(word.get<std::string>());
     }
   }
@@ -68,7 +61,7 @@ void read_signs(JsonFields& fields, CsvMapping& mapping) {
 
 void read_times(JsonFields& fields, CsvMapping& mapping) {
   if (fields.has("header_lines")) mapping.header_lines = fields.integer("header_lines", 0, 100);
-  if (fields.has("units_line")) mapping.units_line = truth(fields, "units_line");
+  if (fields.has("units_line")) mapping.units_line = fields.flag("units_line");
   mapping.time_column = plain_name(fields.word("time_column", 100));
   if (fields.has("date_column")) mapping.date_column = plain_name(fields.word("date_column", 100));
   if (fields.has("time_format")) mapping.time_format = fields.word("time_format", 100);
@@ -86,7 +79,7 @@ CsvColumn read_column(const Json& json, const std::string& path) {
     column.unit_from_header = word == "from header";
     if (!column.unit_from_header) column.unit = file_unit_from(word);
     if (!column.unit_from_header && !column.unit)
-      fields.fail("unit", "expected \"from header\", degC, degF, K, mV, V, uV, wt_pct, vol_pct, ppm, hPa, bar or count.");
+      fields.fail("unit", "expected \"from header\", " + all_file_units() + ".");
   }
   if (fields.has("factor")) column.factor = fields.number("factor", -1e9, 1e9, "");
   fields.finish();
