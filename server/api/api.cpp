@@ -32,11 +32,17 @@ Api::FoundLoad Api::find_load(const Request& request) {
   std::int64_t id = 0;
   const auto [end, error] = std::from_chars(text.data(), text.data() + text.size(), id);
   auto reader = readers_.take();
-  auto row = error == std::errc{} && end == text.data() + text.size() ? reader->load(id) : std::nullopt;
-  if (!row)
+  auto found = error == std::errc{} && end == text.data() + text.size() ? load_of(id, *reader) : std::nullopt;
+  if (!found)
     throw Problem{404, "unknown-load", "There is no such load", "No load has the id \"" + text + "\".", ""};
+  return std::move(*found);
+}
+
+std::optional<Api::FoundLoad> Api::load_of(std::int64_t id, storage::Reader& reader) const {
+  auto row = reader.load(id);
+  if (!row) return std::nullopt;
   auto definition = std::make_shared<const LoadDefinition>(read_stored_definition(row->definition_json));
-  return {std::move(*row), std::move(definition)};
+  return FoundLoad{std::move(*row), std::move(definition)};
 }
 
 const Furnace& Api::find_furnace(const Request& request) const {

@@ -103,6 +103,7 @@ class Api {
     std::int64_t id;
   };
   FoundLoad find_load(const Request& request);
+  std::optional<FoundLoad> load_of(std::int64_t id, storage::Reader& reader) const;
   const Furnace& find_furnace(const Request& request) const;
   FoundChannel find_channel(const Furnace& furnace, const std::string& name) const;
   void check_times(const LoadDefinition& load) const;
@@ -118,6 +119,8 @@ class Api {
   ChannelHealth health_of(const Furnace& furnace, const Channel& channel, storage::Reader& reader) const;
   // The view of an open load as published; of an ended load derived again from its readings.
   std::shared_ptr<const LoadView> view_of(const FoundLoad& found);
+  // The stored result of an ended load's present revision, or the same worked out now.
+  std::string final_result(const FoundLoad& found, storage::Reader& reader);
   std::shared_ptr<LoadView> derive_view(const FoundLoad& found, storage::Reader& reader);
 
   ApiParts parts_;

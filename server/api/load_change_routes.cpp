@@ -95,10 +95,10 @@ std::string Api::with_rework(const std::string& body) {
     const std::int64_t earlier = fields.integer("load", 1, 2'000'000'000);
     const std::string name = fields.word("item", 40);
     fields.finish();
-    const auto stored = reader->result(earlier);
-    if (!stored)
+    const auto before = load_of(earlier, *reader);
+    if (!before || !before->row.ended_us || before->row.cancelled)
       fields.fail("load", "load " + std::to_string(earlier) + " has no final result; it must have ended.");
-    const Json result = Json::parse(stored->result_json);
+    const Json result = Json::parse(final_result(*before, *reader));
     const Json* found = nullptr;
     for (const Json& each : result.at("items"))
       if (each.at("name") == name) found = &each;

@@ -84,11 +84,15 @@ Response Api::result(const Request& request) {
   const FoundLoad found = find_load(request);
   if (!found.row.ended_us) return {200, "application/json", result_json(view_of(found)->result), {}};
   auto reader = readers_.take();
-  const auto stored = reader->result(found.row.id);
-  // Just ended: the engine stores the same document in a moment.
+  return {200, "application/json", final_result(found, *reader), {}};
+}
+
+std::string Api::final_result(const FoundLoad& found, storage::Reader& reader) {
+  const auto stored = reader.result(found.row.id);
+  // Just ended or corrected: the engine stores the same document in a moment.
   if (!stored || stored->revision != found.row.revision)
-    return {200, "application/json", result_json(derive_view(found, *reader)->result), {}};
-  return {200, "application/json", stored->result_json, {}};
+    return result_json(derive_view(found, reader)->result);
+  return stored->result_json;
 }
 
 Response Api::history(const Request& request) {
