@@ -27,6 +27,8 @@ const browser = await openBrowser(base, folder);
 for (const size of sizes) {
   await attempt(`${size.name}: floor and load`, () => look(size));
 }
+const line = floor.furnaces.find((furnace) => furnace.line && furnace.loads.length > 0);
+if (line) for (const size of sizes) await attempt(`${size.name}: a line`, () => lineRow(size));
 await attempt('units and theme', preferences);
 await attempt('two tabs', twoTabs);
 await attempt('lost contact', lostContact);
@@ -85,6 +87,22 @@ async function look(size) {
   await browser.photo(dark.page, `${size.name}-floor-dark`);
   await sound(`${size.name} dark`, dark);
   await dark.context.close();
+}
+
+// A line's trays are one row that opens their list; the worst of them stands below in full.
+async function lineRow(size) {
+  const seen = await browser.page(size);
+  const { page } = seen;
+  await page.goto(new URL('/#/', base).href);
+  const card = page.locator(`[data-furnace-card="${line.id}"]`);
+  await card.locator('summary').click({ timeout: 60_000 });
+  const places = line.chambers.reduce((sum, chamber) => sum + chamber.places, 0);
+  check(`${size.name} line: a shape for each place`, await card.locator('.tray').count() === places, await card.locator('.tray').count());
+  check(`${size.name} line: the row says its figures in words`, / trays on \d+ places/.test(await card.locator('.line-row').getAttribute('aria-label')));
+  check(`${size.name} line: the list names every load`, await card.locator('.tray-list a').count() === (await api('floor')).furnaces.find((each) => each.id === line.id).loads.length);
+  await sound(`${size.name} line`, seen);
+  await browser.photo(page, `${size.name}-line`);
+  await seen.context.close();
 }
 
 async function moving(label, page) {
