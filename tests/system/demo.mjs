@@ -4,7 +4,7 @@
 import { spawn } from 'node:child_process';
 import { readFileSync, readdirSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
-import { FURNACES, SOURCE, binary, check, expect, finish, freePort, sleep, temporaryFolder, waitFor } from './support.mjs';
+import { FURNACES, MOVING, SOURCE, binary, check, expect, finish, freePort, sleep, temporaryFolder, waitFor } from './support.mjs';
 
 const BIN = binary();
 const port = await freePort();
@@ -41,13 +41,15 @@ await check('it says where to look and how to stop', async () => {
   expect(first.out.includes(url), first.out);
 });
 
-await check('every furnace has a live load in mid-cycle, and the floor says that it is a demo', async () => {
-  const document = await waitFor('three live loads', 30000, async () => {
+await check('every furnace has live loads in mid-cycle, the line thirty; the floor says that it is a demo', async () => {
+  const fill = { 'twin-6': 2, 'line-7': 30 };
+  const document = await waitFor('live loads everywhere', 60000, async () => {
     const now = await floor();
-    return now.furnaces.every((furnace) => furnace.loads.length === 1 && furnace.loads[0].condition === 'live') && now;
+    return now.furnaces.every((furnace) =>
+      furnace.loads.length === (fill[furnace.id] ?? 1) && furnace.loads.every((load) => load.condition === 'live')) && now;
   }).catch((error) => Promise.reject(new Error(`${error.message}\n${logs()}`)));
   expect(document.demo === true && document.clock_speed === 60, `demo ${document.demo}, speed ${document.clock_speed}`);
-  expect(document.furnaces.map((furnace) => furnace.id).sort().join() === [...FURNACES].sort().join(), 'other furnaces');
+  expect(document.furnaces.map((furnace) => furnace.id).sort().join() === [...FURNACES, ...MOVING].sort().join(), 'other furnaces');
 });
 
 await check('within half a minute the case of a load has grown by more than 0.01 mm', async () => {
