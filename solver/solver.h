@@ -7,6 +7,7 @@
 
 #include "solver/atmosphere/carbon_gas.h"
 #include "solver/diffusion/field.h"
+#include "solver/diffusion/kernel_choice.h"
 #include "solver/diffusion/mesh.h"
 #include "solver/material/activity.h"
 #include "solver/material/alloy.h"

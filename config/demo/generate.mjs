@@ -32,7 +32,7 @@ export function readLoads() {
 }
 
 // The stays of a load as its file tells them: where it began and where it moved.
-function pathOf(entry, start_ms) {
+export function pathOf(entry, start_ms) {
   if (entry.body.furnace === LINE) return linePath(entry, start_ms);
   const begin = { from: entry.body.started_at, furnace: entry.body.furnace, chamber: entry.body.chamber ?? 'main' };
   return [begin, ...entry.moves.map((move) => ({ from: move.at, furnace: entry.body.furnace, chamber: move.chamber }))];

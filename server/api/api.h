@@ -104,8 +104,6 @@ class Api {
   };
   FoundLoad find_load(const Request& request);
   const Furnace& find_furnace(const Request& request) const;
-  // The one that ?mapping= names, or the only one that the furnace knows.
-  CsvMapping mapping_of(const Request& request, const Furnace& furnace);
   FoundChannel find_channel(const Furnace& furnace, const std::string& name) const;
   void check_times(const LoadDefinition& load) const;
   // The body with each "rework_of" replaced by the final profile of the item it names.
@@ -114,6 +112,8 @@ class Api {
   // Stores `load` as the next revision and answers with it.
   Response changed(const FoundLoad& found, const LoadDefinition& load, storage::AuditRow audit,
                    bool cancelled = false);
+  // The one that ?mapping= names, or the only one that the furnace knows.
+  CsvMapping mapping_of(const Request& request, const Furnace& furnace);
   FurnaceState state_of(const Furnace& furnace);
   ChannelHealth health_of(const Furnace& furnace, const Channel& channel, storage::Reader& reader) const;
   // The view of an open load as published; of an ended load derived again from its readings.

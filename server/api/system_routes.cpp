@@ -47,6 +47,7 @@ Response Api::status(const Request&) const {
   const std::string reason = not_ready_reason(state, poisoned);
   const Json json{{"version", version},
                   {"model_version", solver::model_version},
+                  {"kernel", solver::kernel_name()},
                   {"now", format_time(parts_.clock.now_us())},
                   {"demo", parts_.plant.demo},
                   {"clock_speed", parts_.clock.speed()},

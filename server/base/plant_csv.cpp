@@ -54,7 +54,7 @@ void read_signs(ConfigTable& table, CsvMapping& mapping) {
       table.fault("thousands", "expected \".\", \",\", \"'\" or \" \"");
   }
   table.text("comment", mapping.comment, 0, 5);
-  table.texts("no_value", mapping.no_value);
+  table.texts("no_value", mapping.no_value, 100, 40);
 }
 
 void read_times(ConfigTable& table, CsvMapping& mapping) {

@@ -86,7 +86,7 @@ void read_sources(ConfigTable& table, Furnace& furnace) {
   furnace.dew_over_frost = surface == "frost";
   table.number("source_tolerance_wt_pct", furnace.source_tolerance_wt_pct, 0.01, 1);
   std::vector<std::string> words;
-  if (!table.texts("carbon_sources", words)) return;
+  if (!table.texts("carbon_sources", words, 4, 20)) return;
   std::vector<CarbonSource> order;
   std::vector<std::string> known;
   for (const CarbonSource source : Furnace{}.carbon_sources) known.emplace_back(key(source));

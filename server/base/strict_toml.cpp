@@ -211,6 +211,27 @@ bool ConfigTable::raw_text(std::string_view key, std::string& into) {
   return true;
 }
 
+bool ConfigTable::texts(std::string_view key, std::vector<std::string>& into, std::size_t most,
+                        std::size_t max_length) {
+  const ConfigMember* member = find_of(key, Kind::array, "an array of strings");
+  if (member == nullptr) return false;
+  std::vector<std::string> found;
+  for (const ConfigValue& element : member->value.array) {
+    if (element.kind != Kind::text || element.text.size() > max_length || has_control(element.text)) {
+      report(element.place, std::string(key) + ": expected strings of at most " + std::to_string(max_length) +
+                                " bytes without control characters");
+      return false;
+    }
+    found.push_back(element.text);
+  }
+  if (found.size() > most) {
+    report(member->value.place, std::string(key) + ": expected at most " + std::to_string(most) + " strings");
+    return false;
+  }
+  into = std::move(found);
+  return true;
+}
+
 bool ConfigTable::numbers(std::string_view key, std::vector<double>& into, std::size_t count, double low,
                           double high) {
   const std::string expected = "an array of " + std::to_string(count) + " numbers";
@@ -243,21 +264,6 @@ std::optional<ConfigTable> ConfigTable::table(std::string_view key) {
   const ConfigMember* member = find_of(key, Kind::table, "a table");
   if (member == nullptr) return {};
   return ConfigTable(file_, member->value, "[" + std::string(key) + "]", errors_);
-}
-
-bool ConfigTable::texts(std::string_view key, std::vector<std::string>& into) {
-  const ConfigMember* member = find_of(key, Kind::array, "an array of words, [\"...\"]");
-  if (member == nullptr) return false;
-  std::vector<std::string> words;
-  for (const ConfigValue& element : member->value.array) {
-    if (element.kind != Kind::text) {
-      report(element.place, std::string(key) + ": expected words, got " + std::string(name_of(element.kind)));
-      return false;
-    }
-    words.push_back(element.text);
-  }
-  into = std::move(words);
-  return true;
 }
 
 std::vector<ConfigTable> ConfigTable::tables(std::string_view key) {

@@ -53,8 +53,9 @@ class ConfigTable {
   bool number(std::string_view key, double& into, double low, double high);  // an integer will do
   bool number(std::string_view key, std::optional<double>& into, double low, double high);
   bool raw_text(std::string_view key, std::string& into);  // any string, control characters included
+  bool texts(std::string_view key, std::vector<std::string>& into, std::size_t most,
+             std::size_t max_length);  // an array of strings without control characters
   bool numbers(std::string_view key, std::vector<double>& into, std::size_t count, double low, double high);
-  bool texts(std::string_view key, std::vector<std::string>& into);
   std::optional<ConfigTable> table(std::string_view key);
   std::vector<ConfigTable> tables(std::string_view key);  // [[key]] or key = [{...}, {...}]
 

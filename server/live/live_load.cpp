@@ -7,6 +7,17 @@
 namespace hearthfront::server {
 namespace {
 
+// How deep the carbon that a rework item brings along reaches: lengths of diffusion add as squares.
+double brought_length_m(const Item& item) {
+  constexpr double above_core_wt_pct = 0.04;
+  if (!item.initial) return 0;
+  const double core = item.initial->carbon_wt_pct.back();
+  double deepest_mm = 0;
+  for (std::size_t i = 0; i < item.initial->depth_mm.size(); ++i)
+    if (item.initial->carbon_wt_pct[i] > core + above_core_wt_pct) deepest_mm = item.initial->depth_mm[i];
+  return deepest_mm * 1e-3;
+}
+
 solver::GasCarburizing make_model(const LoadDefinition& load, const Item& item) {
   solver::CarburizingPart part;
   part.section = item.section.in_metres();
@@ -21,7 +32,8 @@ solver::GasCarburizing make_model(const LoadDefinition& load, const Item& item) 
   for (const Segment& segment : load.recipe.segments)
     pieces.push_back({segment.duration_min * 60.0, segment.temperature_degc});
   solver::MeshDensity density;
-  density.diffusion_length_m = solver::expected_diffusion_length_m(part.law, pieces);
+  density.diffusion_length_m =
+      std::hypot(solver::expected_diffusion_length_m(part.law, pieces), brought_length_m(item));
   return solver::GasCarburizing(part, density);
 }
 

@@ -30,35 +30,46 @@ double CarbonField::inventory_wt_pct_m(std::size_t lane) const {
   return sum;
 }
 
-DiffusionStepper::DiffusionStepper(std::size_t nodes, std::size_t lanes) {
+DiffusionStepper::DiffusionStepper(std::size_t nodes, std::size_t lanes) : kernel_(&chosen_kernel()) {
   const std::size_t width = lanes == 1 ? 1 : CarbonField::block;
-  for (auto* v : {&lower_, &upper_, &pivot_, &diffusivity_, &phi_, &k1_, &k2_}) v->assign(nodes * width, 0.0);
+  scratch_.assign(kernel_scratch_arrays * nodes * width + kernel_alignment / sizeof(double), 0.0);
 }
 
 void DiffusionStepper::step(CarbonField& field, std::span<const LaneConditions> conditions, double dt_s,
                             bool damped) {
   assert(conditions.size() == field.lanes);
   const Mesh& mesh = *field.mesh;
-  const kernel::Scratch scratch{lower_.data(), upper_.data(), pivot_.data(), diffusivity_.data(),
-                                phi_.data(),   k1_.data(),    k2_.data()};
+  void* scratch = scratch_.data();
+  std::size_t space = scratch_.size() * sizeof(double);
+  std::align(kernel_alignment, kernel_scratch_arrays * mesh.nodes() * field.width * sizeof(double), scratch,
+             space);
+  BlockStep block{mesh.nodes(),
+                  mesh.conductance_per_m.data(),
+                  mesh.mass_lower_m.data(),
+                  mesh.mass_diagonal_m.data(),
+                  mesh.mass_upper_m.data(),
+                  mesh.depth_m[1],
+                  nullptr,
+                  0,
+                  dt_s,
+                  damped,
+                  nullptr,
+                  nullptr,
+                  static_cast<double*>(scratch)};
   for (std::size_t first = 0; first < field.lanes; first += field.width) {
-    double* u = field.values.data() + first * mesh.nodes();
-    double* crossed = field.crossed_wt_pct_m.data() + first;
-    if (field.width == 1)
-      kernel::advance_block<1>(mesh, conditions.subspan(first), dt_s, damped, u, crossed, scratch);
-    else
-      kernel::advance_block<CarbonField::block>(mesh, conditions.subspan(first), dt_s, damped, u, crossed,
-                                                scratch);
+    block.conditions = conditions.data() + first;
+    block.lanes = std::min(field.width, field.lanes - first);
+    block.carbon_wt_pct = field.values.data() + first * mesh.nodes();
+    block.crossed_wt_pct_m = field.crossed_wt_pct_m.data() + first;
+    (field.width == 1 ? kernel_->step_one : kernel_->step_eight)(block);
   }
   ++work_.steps;
   work_.node_evaluations += (damped ? 1 : 2) * mesh.nodes() * field.lanes;
 }
 
 double surface_transfer_m_per_s(const Mesh& mesh, const LaneConditions& c) {
-  // A film of a hundred-thousandth of the first spacing stands in for resistance 0: it lowers the carbon of a
-  // fixed surface by that share of the drop to the next node.
-  constexpr double film = 1e-5;
-  const double floor = film * mesh.depth_m[1] / diffusivity_m2_s(c.diffusivity, c.surface.equilibrium_wt_pct);
+  const double floor =
+      least_film * mesh.depth_m[1] / diffusivity_m2_s(c.diffusivity, c.surface.equilibrium_wt_pct);
   return 1.0 / (c.surface.resistance_s_per_m + floor);
 }
 

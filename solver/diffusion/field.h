@@ -9,7 +9,8 @@
 // et al., SIAM J. Sci. Comput. 20 (1999) 1456, "ROS2"), analytic Jacobian, one factorisation a step.
 //
 // Every lane's arithmetic is the same whether it runs alone or beside others, so a member's result does
-// not depend on how members are grouped. No allocation, I/O, clock or exception after construction.
+// not depend on how members are grouped; it does depend, within 1e-9, on the kernel chosen for the processor
+// (kernel_choice.h). No allocation, I/O, clock or exception after construction.
 #pragma once
 
 #include <cstddef>
@@ -18,8 +19,8 @@
 #include <span>
 #include <vector>
 
+#include "solver/diffusion/lane_conditions.h"
 #include "solver/diffusion/mesh.h"
-#include "solver/material/diffusivity.h"
 
 namespace hearthfront::solver {
 
@@ -45,17 +46,6 @@ struct CarbonField {
   std::vector<double> crossed_wt_pct_m;  // carbon that crossed the surface since the start, positive inward
 };
 
-struct SurfaceCondition {
-  double equilibrium_wt_pct = 0;
-  double resistance_s_per_m = 0;
-  double forced_wt_pct_m_per_s = 0;
-};
-
-struct LaneConditions {
-  DiffusivityForm diffusivity;
-  SurfaceCondition surface;
-};
-
 // The step to take when `left_s` of an interval remains and the inputs last jumped `settled_s` ago. The first
 // 2 s go in short damped steps (bounds hold through a jump of any size); then steps grow with the time since:
 // the profile near the surface has the time scale of its own age. What is left is divided into equal parts.
@@ -65,6 +55,8 @@ struct SettlingStep {
 };
 SettlingStep settling_step(double settled_s, double left_s);
 
+struct Kernel;  // kernel.h
+
 struct WorkCounters {
   std::uint64_t steps = 0;             // time steps, of two stages or one where damped
   std::uint64_t node_evaluations = 0;  // potentials computed, over all lanes
@@ -72,6 +64,7 @@ struct WorkCounters {
 
 class DiffusionStepper {
  public:
+  // Uses the kernel that is chosen now (kernel_choice.h) for all its life.
   DiffusionStepper(std::size_t nodes, std::size_t lanes);
   // One step of dt_s > 0. `conditions` has one entry for each lane; all lanes share the law's rise and fold.
   // A damped step is of first order in time and never reaches beyond the solution.
@@ -79,7 +72,8 @@ class DiffusionStepper {
   const WorkCounters& work() const { return work_; }
 
  private:
-  std::vector<double> lower_, upper_, pivot_, diffusivity_, phi_, k1_, k2_;
+  const Kernel* kernel_;
+  std::vector<double> scratch_;
   WorkCounters work_;
 };
 

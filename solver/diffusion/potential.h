@@ -6,7 +6,6 @@
 // exponential at every node, and the same bits alone or in a lane.
 #pragma once
 
-#include <array>
 #include <cstddef>
 
 #include "solver/diffusion/fast_exp.h"
@@ -14,6 +13,7 @@
 #include "solver/material/diffusivity.h"
 
 namespace hearthfront::solver {
+inline namespace HF_KERNEL_BUILD {
 
 inline constexpr double potential_centre_wt_pct = 0.8;
 inline constexpr double potential_half_range_wt_pct = 0.8;
@@ -21,14 +21,34 @@ inline constexpr double potential_half_range_wt_pct = 0.8;
 namespace potential_detail {
 
 // The points come in pairs +-s; even and odd part are each a polynomial of degree 4 in t = s^2.
-inline constexpr std::array<double, 5> point{0.15643446504023087, 0.45399049973954680, 0.70710678118654752,
-                                             0.89100652418836787, 0.98768834059513773};  // cos((2k+1) pi/20)
+inline constexpr double point[5]{0.15643446504023087, 0.45399049973954680, 0.70710678118654752,
+                                 0.89100652418836787, 0.98768834059513773};  // cos((2k+1) pi/20)
+
+// The carbons at which the law is asked, those above the centre first, and 1 / (high - low) of each pair.
+struct Points {
+  double carbon_wt_pct[10], inverse_distance[5];
+};
+constexpr Points points_of_law() {
+  Points result{};
+  for (std::size_t k = 0; k < 5; ++k) {
+    const double step = potential_half_range_wt_pct * point[k];
+    result.carbon_wt_pct[k] = potential_centre_wt_pct + step;
+    result.carbon_wt_pct[k + 5] = potential_centre_wt_pct - step;
+    result.inverse_distance[k] = 0.5 / step;
+  }
+  return result;
+}
+inline constexpr Points points = points_of_law();
+
+struct Matrix {
+  double row[5][5];
+};
 
 // Column k: the coefficients in t of the Lagrange polynomial that is 1 at point k and 0 at the others.
-constexpr std::array<std::array<double, 5>, 5> lagrange_coefficients() {
-  std::array<std::array<double, 5>, 5> result{};
+constexpr Matrix lagrange_coefficients() {
+  Matrix result{};
   for (std::size_t k = 0; k < 5; ++k) {
-    std::array<double, 5> poly{1.0};
+    double poly[5]{1.0};
     std::size_t degree = 0;
     const double here = point[k] * point[k];
     for (std::size_t other = 0; other < 5; ++other) {
@@ -41,94 +61,127 @@ constexpr std::array<std::array<double, 5>, 5> lagrange_coefficients() {
         poly[m] = (shifted - root * kept) / (here - root);
       }
     }
-    for (std::size_t m = 0; m < 5; ++m) result[m][k] = poly[m];
+    for (std::size_t m = 0; m < 5; ++m) result.row[m][k] = poly[m];
   }
   return result;
 }
-inline constexpr auto lagrange = lagrange_coefficients();
+inline constexpr Matrix lagrange = lagrange_coefficients();
 
 }  // namespace potential_detail
 
-// Phi = sum c[k] s^k with s = C - centre, for W lanes. All forms share rise and fold. Values are computed on
-// chunks: one node of several lanes, or two nodes of one.
+// The law itself for W lanes (diffusivity.h says the form), which share rise and fold.
+template <std::size_t W>
+struct LawOfLanes {
+  using P = Pack<W>;
+
+  // `form(l)` gives the diffusivity form of lane l.
+  template <class FormOfLane>
+  HF_INLINE explicit LawOfLanes(FormOfLane form)
+      : rise(form(0).rise),
+        fold(form(0).fold),
+        hump(P::from([&](std::size_t l) { return form(l).hump; })),
+        scale(P::from([&](std::size_t l) { return form(l).scale; })),
+        exponent(P::from([&](std::size_t l) { return form(l).exponent; })),
+        slope(P::from([&](std::size_t l) { return form(l).slope; })) {}
+
+  template <std::size_t V>
+  HF_INLINE Pack<V> at(const Pack<V>& carbon) const {
+    const Pack<V> one = Pack<V>::all(1.0);
+    const Pack<V> z = (rise * carbon) / fused(-fold, carbon, one);
+    const Pack<V> bulge = z * (one - z);
+    return spread<V>(scale) * fused(spread<V>(hump), bulge, one) *
+           fast_exp(fused(spread<V>(slope), z, spread<V>(exponent)));
+  }
+
+  // One lane may be asked at several carbons at once.
+  template <std::size_t V>
+  HF_INLINE static Pack<V> spread(const P& quantity) {
+    static_assert(V == W || W == 1);
+    if constexpr (V == W)
+      return quantity;
+    else
+      return Pack<V>::all(quantity.unit);
+  }
+
+  double rise, fold;
+  P hump, scale, exponent, slope;
+};
+
+// Phi = sum c[k] s^k with s = C - centre, for W lanes. Values are computed for one node of W lanes, or for
+// several nodes of one lane at once.
 template <std::size_t W>
 class Potential {
   using P = Pack<W>;
 
  public:
-  using Chunk = Pack<(W > 1 ? W : 2)>;
-
-  // `form(l)` gives the diffusivity form of lane l.
   template <class FormOfLane>
-  explicit Potential(FormOfLane form) {
+  HF_INLINE explicit Potential(FormOfLane form) : Potential(LawOfLanes<W>(form)) {}
+
+  HF_INLINE explicit Potential(const LawOfLanes<W>& law) {
     using namespace potential_detail;
-    std::array<double, W> hump, scale, exponent, slope;
-    for (std::size_t l = 0; l < W; ++l) {
-      hump[l] = form(l).hump;
-      scale[l] = form(l).scale;
-      exponent[l] = form(l).exponent;
-      slope[l] = form(l).slope;
-    }
-    const double rise = form(0).rise, fold = form(0).fold;
-    std::array<P, 5> even, odd;
+    alignas(W * sizeof(double)) double d[10 * W];
+    in_packs<W>(10, [&](std::size_t at, auto width) {
+      using C = Pack<decltype(width)::value>;
+      const C carbon = W == 1 ? C::load(points.carbon_wt_pct + at) : C::all(points.carbon_wt_pct[at / W]);
+      law.template at<C::size>(carbon).store(d + at);
+    });
+    P even[5], odd[5];
     for (std::size_t k = 0; k < 5; ++k) {
-      const double step = potential_half_range_wt_pct * point[k];
-      std::array<double, W> high, low;
-      const auto fill = [&](double carbon, std::array<double, W>& d) {
-        const double z = rise * carbon / (1.0 - fold * carbon);
-        const double bulge = z * (1.0 - z);
-        for (std::size_t l = 0; l < W; ++l)
-          d[l] = scale[l] * (1.0 + hump[l] * bulge) * fast_exp(exponent[l] + slope[l] * z);
-      };
-      fill(potential_centre_wt_pct + step, high);
-      fill(potential_centre_wt_pct - step, low);
-      const P d_high = P::from([&](std::size_t l) { return high[l]; });
-      const P d_low = P::from([&](std::size_t l) { return low[l]; });
-      even[k] = 0.5 * (d_high + d_low);
-      odd[k] = (0.5 / step) * (d_high - d_low);
+      const P high = P::load(d + k * W), low = P::load(d + (k + 5) * W);
+      even[k] = 0.5 * (high + low);
+      odd[k] = points.inverse_distance[k] * (high - low);
     }
-    std::array<P, terms> c;
-    c[0] = P::all(0.0);
+    set(0, P::all(0.0));
     double unit = 1.0;  // half range to the power -2m
     for (std::size_t m = 0; m < 5; ++m) {
-      P e = lagrange[m][0] * even[0], o = lagrange[m][0] * odd[0];
+      P e = lagrange.row[m][0] * even[0], o = lagrange.row[m][0] * odd[0];
       for (std::size_t k = 1; k < 5; ++k) {
-        e += lagrange[m][k] * even[k];
-        o += lagrange[m][k] * odd[k];
+        e = fused(lagrange.row[m][k], even[k], e);
+        o = fused(lagrange.row[m][k], odd[k], o);
       }
-      c[2 * m + 1] = (unit / static_cast<double>(2 * m + 1)) * e;
-      c[2 * m + 2] = (unit / static_cast<double>(2 * m + 2)) * o;
+      set(2 * m + 1, (unit / static_cast<double>(2 * m + 1)) * e);
+      set(2 * m + 2, (unit / static_cast<double>(2 * m + 2)) * o);
       unit /= potential_half_range_wt_pct * potential_half_range_wt_pct;
-    }
-    for (std::size_t k = 0; k < terms; ++k) {
-      std::array<double, W> lane;
-      c[k].store(lane.data());
-      c_[k] = Chunk::from([&](std::size_t i) { return lane[i % W]; });
     }
   }
 
-  Chunk value(const Chunk& carbon) const {
-    const Chunk s = carbon - Chunk::all(potential_centre_wt_pct);
-    Chunk p = c_[terms - 1];
-    for (std::size_t k = terms - 1; k-- > 0;) p = p * s + c_[k];
+  template <std::size_t V>
+  HF_INLINE Pack<V> value(const Pack<V>& carbon) const {
+    const Pack<V> s = carbon - Pack<V>::all(potential_centre_wt_pct);
+    Pack<V> p = coefficient<V>(terms - 1);
+    for (std::size_t k = terms - 1; k-- > 0;) p = fused(p, s, coefficient<V>(k));
     return p;
   }
 
   // Phi, and D beside it.
-  Chunk value(const Chunk& carbon, Chunk& diffusivity) const {
-    const Chunk s = carbon - Chunk::all(potential_centre_wt_pct);
-    Chunk p = c_[terms - 1], d = p;
+  template <std::size_t V>
+  HF_INLINE Pack<V> value(const Pack<V>& carbon, Pack<V>& diffusivity) const {
+    const Pack<V> s = carbon - Pack<V>::all(potential_centre_wt_pct);
+    Pack<V> p = coefficient<V>(terms - 1), d = p;
     for (std::size_t k = terms - 1; k-- > 1;) {
-      p = p * s + c_[k];
-      d = d * s + p;
+      p = fused(p, s, coefficient<V>(k));
+      d = fused(d, s, p);
     }
     diffusivity = d;
-    return p * s + c_[0];
+    return fused(p, s, coefficient<V>(0));
   }
 
  private:
   static constexpr std::size_t terms = 11;
-  std::array<Chunk, terms> c_;
+  // The coefficient of one lane is kept as often as the widest unit has doubles.
+  static constexpr std::size_t kept = W == 1 ? widest : W;
+
+  HF_INLINE void set(std::size_t k, const P& coefficient) {
+    LawOfLanes<W>::template spread<kept>(coefficient).store(c_[k]);
+  }
+  template <std::size_t V>
+  HF_INLINE Pack<V> coefficient(std::size_t k) const {
+    static_assert(V == W || (W == 1 && V <= kept));
+    return Pack<V>::load(c_[k]);
+  }
+
+  alignas(kept * sizeof(double)) double c_[terms][kept];
 };
 
+}  // namespace HF_KERNEL_BUILD
 }  // namespace hearthfront::solver

@@ -102,6 +102,69 @@ await check('a load from its start to its end', async () => {
   expect(list.body.loads.length === 1, 'one ended load');
 });
 
+const get = (path, url) => call(daemon, path, 'get', url);
+const post = (path, url, value) => call(daemon, path, 'post', url, json(value));
+const put = (path, url, value) => call(daemon, path, 'put', url, json(value));
+
+await check('correcting, moving and cancelling a load', async () => {
+  const twin = { ...body, name: 'twin', furnace: 'twin-6', chamber: 'heating' };
+  const made = await post('/api/v1/loads', '/api/v1/loads', twin);
+  const moving = made.body.id;
+  const moved = await post('/api/v1/loads/{load}/move', `/api/v1/loads/${moving}/move`,
+    { person: 'Test', chamber: 'second', at: iso(start_ms + 40 * MINUTE_MS) });
+  expect(moved.status === 200 && moved.body.definition.path.length === 2, JSON.stringify(moved.body).slice(0, 300));
+  const definition = { ...moved.body.definition, name: 'twin corrected' };
+  const wanted = { person: 'Test', reason: 'Wrong number', expected_revision: 2, load: definition };
+  expect((await put('/api/v1/loads/{load}', `/api/v1/loads/${moving}`, wanted)).body.name === 'twin corrected', 'corrected');
+  expect((await put('/api/v1/loads/{load}', `/api/v1/loads/${moving}`, wanted)).status === 409, 'a second time it is stale');
+  const steps = (await get('/api/v1/loads/{load}/revisions', `/api/v1/loads/${moving}/revisions`)).body.revisions;
+  expect(steps[0].reason === 'Wrong number' && steps[0].changes[0].field === 'name', JSON.stringify(steps[0]));
+  await get('/api/v1/loads/{load}/snapshot', `/api/v1/loads/${moving}/snapshot`);
+  const gone = await post('/api/v1/loads/{load}/cancel', `/api/v1/loads/${moving}/cancel`, { person: 'Test', reason: 'Never went in' });
+  expect(gone.body.state === 'cancelled', JSON.stringify(gone.body).slice(0, 200));
+  const recent = await get('/api/v1/furnaces/{furnace}/recent', '/api/v1/furnaces/pit-2/recent');
+  expect(recent.body.loads.length === 1, 'one to start again');
+});
+
+await check('a line that is pushed', async () => {
+  const tray = { ...body, name: 'T1', furnace: 'line-7', chamber: 'heat' };
+  expect((await post('/api/v1/loads', '/api/v1/loads', tray)).status === 201, 'tray in');
+  const pushed = await post('/api/v1/furnaces/{furnace}/push', '/api/v1/furnaces/line-7/push', { person: 'Test' });
+  expect(pushed.status === 200 && pushed.body.moved.length === 0, JSON.stringify(pushed.body));
+  expect((await post('/api/v1/furnaces/{furnace}/push', '/api/v1/furnaces/pit-2/push', { person: 'Test' })).status === 422, 'no line');
+  await get('/api/v1/floor', '/api/v1/floor');
+});
+
+await check('conflicts, marks, refusals', async () => {
+  const path = '/api/v1/furnaces/{furnace}/channels/{channel}/conflicts', url = '/api/v1/furnaces/pit-2/channels/temperature/conflicts';
+  const at = iso(start_ms + 10 * MINUTE_MS);
+  await post('/api/v1/readings', '/api/v1/readings', { readings: [{ furnace: 'pit-2', channel: 'temperature', time: at, value: 900 }] });
+  const open = await get(path, url);
+  expect(open.body.undecided === 1 && open.body.conflicts[0].values.length === 2, JSON.stringify(open.body));
+  const done = await post(path, url, { person: 'Test', choices: [{ at, value: 925 }] });
+  expect(done.body.undecided === 0, JSON.stringify(done.body));
+  expect((await post(path, url, { person: 'Test', choices: [{ at, value: 1 }] })).status === 409, 'not there');
+  const mark = await post('/api/v1/furnaces/{furnace}/masks', '/api/v1/furnaces/pit-2/masks',
+    { person: 'Test', channel: 'probe_emf', from: at, to: iso(start_ms + 14 * MINUTE_MS), reason: 'burn-off' });
+  expect(mark.status === 201, JSON.stringify(mark.body));
+  await get('/api/v1/furnaces/{furnace}/masks', '/api/v1/furnaces/pit-2/masks');
+  const withdrawn = await post('/api/v1/furnaces/{furnace}/masks/{mask}/withdraw', `/api/v1/furnaces/pit-2/masks/${mark.body.id}/withdraw`, { person: 'Test' });
+  expect(withdrawn.body.withdrawn === true, JSON.stringify(withdrawn.body));
+  const refused = await get('/api/v1/furnaces/{furnace}/refused', '/api/v1/furnaces/pit-2/refused');
+  expect(refused.body.refused.length > 0, 'some');
+});
+
+await check('the library', async () => {
+  const { name, quantity, ...part } = body.items[0];
+  const first = await put('/api/v1/library/{kind}/{key}', '/api/v1/library/parts/pinion', { person: 'Test', name: 'Pinion', expected_version: 0, body: part });
+  expect(first.status === 201, JSON.stringify(first.body));
+  const { segments } = body.recipe;
+  expect((await put('/api/v1/library/{kind}/{key}', '/api/v1/library/recipes/one', { person: 'Test', name: 'One', expected_version: 0, body: { segments } })).status === 201, 'recipe');
+  expect((await put('/api/v1/library/{kind}/{key}', '/api/v1/library/parts/pinion', { person: 'Test', name: 'Pinion', expected_version: 0, body: part })).status === 409, 'stale');
+  expect((await get('/api/v1/library/{kind}', '/api/v1/library/parts')).body.entries.length === 1, 'listed');
+  expect((await get('/api/v1/library/{kind}/{key}', '/api/v1/library/parts/pinion')).body.versions.length === 1, 'versions');
+});
+
 await check('the definition that comes back starts the same load again', async () => {
   const again = { ...(await (await fetch(`${daemon.url}/api/v1/loads/${id}`)).json()).definition };
   const validate = ajv.compile(rooted(description.components.schemas.LoadBody));

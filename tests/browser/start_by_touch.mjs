@@ -24,7 +24,7 @@ export async function startByTouch({ base, browser, furnace }) {
   const name = `T${String(Date.now()).slice(-6)}`;
 
   await page.goto(new URL('/#/', base).href);
-  await page.locator(`[data-furnace="${furnace.id}"] a`).tap();
+  await page.locator(`[data-furnace="${furnace.id}"] a.button`).tap();
   await page.locator('[data-testid="start-form"]').waitFor();
   await field('furnace').locator('option').nth(1).waitFor({ state: 'attached' });
   check('start: the furnace is chosen already', await field('furnace').inputValue() === furnace.id);
@@ -84,9 +84,9 @@ export async function startByTouch({ base, browser, furnace }) {
   await browser.photo(page, 'tablet-loads');
 
   await page.goto(new URL(`/#/start?furnace=${furnace.id}`, base).href);
-  await page.locator('[data-testid="same"]').tap();
-  await page.locator('.same [role="status"]', { hasText: name }).waitFor({ timeout: 60_000 });
-  check('same as last: recipe and item are taken over', await field('recipe.segments[1].duration_min').inputValue() === '60' && await field('items[0].part').inputValue() === 'test piece');
-  check('same as last: the number is asked anew', await field('name').inputValue() === '');
+  await page.locator('[data-testid="again"]', { hasText: name }).tap();
+  await page.locator('[data-testid="again-taken"]', { hasText: name }).waitFor({ timeout: 60_000 });
+  check('start again: recipe and item are taken over', await field('recipe.segments[1].duration_min').inputValue() === '60' && await field('items[0].part').inputValue() === 'test piece');
+  check('start again: the number is asked anew', await field('name').inputValue() === '');
   await seen.context.close();
 }

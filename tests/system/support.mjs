@@ -9,11 +9,13 @@ import { tmpdir } from 'node:os';
 import { dirname, join, resolve } from 'node:path';
 import { setTimeout as sleep } from 'node:timers/promises';
 import { fileURLToPath } from 'node:url';
-import { furnaceLog, schedule } from '../../config/demo/generate.mjs';
+import { furnaceLog, pathOf, schedule } from '../../config/demo/generate.mjs';
 
 export { sleep };
 export const SOURCE = resolve(dirname(fileURLToPath(import.meta.url)), '../..');
+// Those with one chamber; loads of the others move.
 export const FURNACES = ['pit-2', 'batch-4', 'batch-5'];
+export const MOVING = ['twin-6', 'line-7'];
 export const PLANT = join(SOURCE, 'config/demo/plant.toml');
 export const STEELS = join(SOURCE, 'config/steels.toml');
 export const MINUTE_MS = 60000;
@@ -190,12 +192,14 @@ export class Daemon {
 }
 
 // --- Invented logs and loads, as of `start_ms`.
-const HEADER_LINES = { 'pit-2': 1, 'batch-4': 2, 'batch-5': 1 };
+const HEADER_LINES = { 'pit-2': 1, 'batch-4': 2, 'batch-5': 1, 'twin-6': 1, 'line-7': 1 };
 
-export function demoDay(start_ms, hours) {
-  const loads = schedule(start_ms, hours);
+export function demoDay(start_ms, hours, furnaces = FURNACES) {
+  const loads = schedule(start_ms, hours)
+    .filter((entry) => furnaces.includes(entry.body.furnace))
+    .map((entry) => ({ ...entry, path: pathOf(entry, start_ms) }));
   const logs = {};
-  for (const furnace of FURNACES) {
+  for (const furnace of furnaces) {
     const lines = furnaceLog(furnace, loads, start_ms, hours, 2606).trimEnd().split('\n');
     const header = lines.splice(0, HEADER_LINES[furnace]).join('\n') + '\n';
     logs[furnace] = { header, rows: lines, text: header + lines.join('\n') + '\n' };
@@ -206,7 +210,7 @@ export function demoDay(start_ms, hours) {
 export function replay(folder, entry, log_text) {
   const load = join(folder, `${entry.body.furnace}-${entry.body.name}.json`);
   const log = join(folder, `${entry.body.furnace}.csv`);
-  writeFileSync(load, JSON.stringify({ ...entry.body, ended_at: entry.ended_at }));
+  writeFileSync(load, JSON.stringify({ ...entry.body, ended_at: entry.ended_at, path: entry.path }));
   writeFileSync(log, log_text);
   const words = ['replay', '--plant', PLANT, '--steels', STEELS, '--load', load, '--log', log, '--mapping', 'logger', '--json'];
   const answer = spawnSync(binary(), words, { encoding: 'utf8', maxBuffer: 1 << 26, timeout: 60000 });

@@ -1,12 +1,13 @@
 // DEVELOPMENT ONLY: answers the routes of /api/v1 with the invented plant of mock_plant.mjs and serves
 // dist/, so that the dashboard can be worked on and photographed without the daemon. Loopback only.
-//   node dev/mock_server.mjs [--port 8090] [--speed 60] [--loads 6]
+//   node dev/mock_server.mjs [--port 8090] [--speed 60] [--loads 35]
 //   POST /dev/away?seconds=20   answers nothing for so long;   POST /dev/unready?seconds=20   answers 503
 import { createReadStream, existsSync } from 'node:fs';
 import { createServer } from 'node:http';
 import { dirname, extname, join, normalize } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import { conditionOf, furnaces, inputsAt, itemsAt, messageOf, openingLoads, plannedMinutes, segmentAt, steels } from './mock_plant.mjs';
+import { answerPlant, pathOf } from './mock_desk.mjs';
+import { chamberOf, conditionOf, furnaceOf, furnaces, inputsAt, itemsAt, messageOf, openingLoads, plannedMinutes, segmentAt, steels } from './mock_plant.mjs';
 
 const argument = (name, otherwise) => { const i = process.argv.indexOf(`--${name}`); return i > 0 ? Number(process.argv[i + 1]) : otherwise; };
 const port = argument('port', 8090), speed = argument('speed', 60);
@@ -14,8 +15,8 @@ const dist = join(dirname(fileURLToPath(import.meta.url)), '../dist');
 const begun = Date.now();
 const nowMs = () => begun + (Date.now() - begun) * speed;
 const stamp = (ms) => `${new Date(ms).toISOString().slice(0, 19)}Z`;
-const loads = openingLoads(nowMs()).slice(-argument('loads', 6));
-let sequence = 1, nextId = 7, awayUntil = 0, unreadyUntil = 0;
+const loads = openingLoads(nowMs()).slice(-argument('loads', 35));
+let sequence = 1, nextId = 200, awayUntil = 0, unreadyUntil = 0;
 const band = 'band not computed';
 const rank = { stale: 0, 'no data yet': 1, live: 2, 'no load': 9 };
 
@@ -28,23 +29,28 @@ function live(load) {
   const now = nowMs();
   return { inputs: inputsAt(load, now), segment: load.ended_at ? null : segmentAt(load, now), minutes_left: plannedMinutes(load) - (now - Date.parse(load.definition.started_at)) / 60_000 };
 }
+const worst = (load) => ({ stale: 0, 'no data yet': 1, overdue: 2, planned: 3, held: 4, disagree: 5, doubt: 5 }[load.trouble] ?? 9);
+const positionOf = (load) => (load.place ? { place: load.place, places: 30 } : null);
 function floor() {
   const rows = furnaces.map((furnace) => {
     const open = loads.filter((load) => load.definition.furnace === furnace.id && !load.ended_at);
     const condition = open.length ? conditionOf(open[0]) : 'no load';
     return { id: furnace.id, name: furnace.name, process: furnace.process, condition, data_time: stamp(nowMs() - 20_000), data_age_s: open.length ? dataAge(open[0]) : 20,
-      loads: open.map((load) => { const { profile, ...item } = controllingOf(load);
+      chambers: furnace.chambers, line: furnace.line,
+      loads: open.sort((a, b) => worst(a) - worst(b)).map((load, i) => { const { profile, hardness, ...item } = controllingOf(load);
         return { id: load.id, name: load.definition.name, chamber: load.definition.chamber, person: load.definition.person, started_at: load.definition.started_at,
-          condition: conditionOf(load), message: messageOf(load), ...live(load), item_count: load.definition.items.length, item: { ...item, strip: profile } }; }) };
+          condition: conditionOf(load), message: messageOf(load), ...live(load), item_count: load.definition.items.length, position: positionOf(load), data_age_s: dataAge(load), item: { ...item, strip: i < 4 ? profile : null } }; }) };
   });
   rows.sort((a, b) => rank[a.condition] - rank[b.condition]);
   return { sequence, now: stamp(nowMs()), plant: 'Invented demo plant', demo: true, clock_speed: speed, band, furnaces: rows };
 }
 const rowOf = (load) => ({ id: load.id, name: load.definition.name, furnace: load.definition.furnace, furnace_name: furnaces.find((each) => each.id === load.definition.furnace).name, chamber: load.definition.chamber ?? 'main',
-  person: load.definition.person, started_at: load.definition.started_at, ended_at: load.ended_at, state: load.ended_at ? 'ended' : 'open', recipe: load.definition.recipe, revision: load.revision });
+  person: load.definition.person, started_at: load.definition.started_at, ended_at: load.ended_at, state: load.cancelled ? 'cancelled' : load.ended_at ? 'ended' : 'open', path: pathOf(load), recipe: load.definition.recipe, revision: load.revision });
 function snapshot(load) {
   const now = nowMs(), begin = Date.parse(load.definition.started_at), at = (min) => stamp(begin + min * 60_000);
-  return { load: rowOf(load), sequence, now: stamp(now), data_time: stamp(now - (dataAge(load) ?? 0) * 1000), data_age_s: dataAge(load), state_time: stamp(now), condition: conditionOf(load), message: messageOf(load), band,
+  const here = pathOf(load).at(-1);
+  const place = here.outside ? null : { furnace: here.furnace, furnace_name: here.furnace_name, chamber: here.chamber, chamber_name: here.chamber_name, since: here.from, position: positionOf(load) };
+  return { load: rowOf(load), sequence, place, now: stamp(now), data_time: stamp(now - (dataAge(load) ?? 0) * 1000), data_age_s: dataAge(load), state_time: stamp(now), condition: conditionOf(load), message: messageOf(load), band,
     ...live(load), items: itemsAt(load, now), controlling_item: controllingOf(load).name,
     notes: load.trouble === 'held' ? [{ kind: 'capped at carbide limit', item: 'A', from: at(60), to: at(75), text: 'The gas would form carbide at this temperature: the surface is held at the carbide limit.' }] : [],
     gaps: load.trouble === 'none' ? [] : [{ input: 'carbon_potential', basis: 'held', from: at(60), to: at(72) }, { input: 'temperature', basis: 'planned', from: at(80), to: at(95) }], shift_notes: load.notes };
@@ -98,7 +104,8 @@ async function answer(request, response) {
   if (Date.now() < unreadyUntil) return problem(response, 503, 'Starting', 'hearthfront is starting: it re-derives the open loads from their readings.');
   if (path === '/api/v1/floor') return send(response, 200, floor());
   if (path === '/api/v1/steels') return send(response, 200, { steels });
-  if (path === '/api/v1/furnaces') return send(response, 200, { furnaces });
+  const plant = { path, url, request, response, send, problem, bodyOf, loads, rowOf, nowMs, stamp, bump: () => ++sequence };
+  if (await answerPlant(plant)) return undefined;
   if (path === '/api/v1/events') {
     response.writeHead(200, { 'content-type': 'text/event-stream', 'cache-control': 'no-store' });
     response.write(`event: floor\nid: ${sequence}\ndata: ${JSON.stringify(floor())}\n\n`);
@@ -114,9 +121,11 @@ async function answer(request, response) {
     const body = await bodyOf(request), bad = complaint(body);
     if (bad) return problem(response, 422, 'Load not accepted', bad[1], bad[0]);
     const load = { id: nextId++, trouble: 'none', ended_at: null, revision: 1, notes: [], definition: { chamber: 'main', ...body } };
+    if (furnaceOf(body.furnace).line) load.place = 1;
     loads.push(load);
     return send(response, 201, rowOf(load), { location: `/api/v1/loads/${load.id}` });
   }
+  if (!/^\/api\/v1\/loads\//.test(path)) return problem(response, 404, 'Unknown', `There is no ${path}.`);
   const [, id, rest] = /^\/api\/v1\/loads\/(\d+)(?:\/(\w+))?$/.exec(path) ?? [];
   const load = loads.find((each) => each.id === Number(id));
   if (!load) return problem(response, 404, 'Unknown load', 'There is no load with this number. It may have been opened from an old link.');
@@ -125,9 +134,33 @@ async function answer(request, response) {
     if (request.headers['if-none-match'] === etag) return response.writeHead(304).end();
     return send(response, 200, snapshot(load), { etag });
   }
+  if (rest === 'revisions') return send(response, 200, { revisions: load.revisions ?? [] });
   if (rest === 'history') return send(response, 200, history(load));
   const body = await bodyOf(request);
   if (rest && !String(body.person ?? '').trim()) return problem(response, 422, 'Name missing', 'The name of the person is empty.', 'person');
+  const revise = (what, reason, changes) => {
+    load.revision += 1;
+    (load.revisions ??= []).unshift({ revision: load.revision, at: stamp(nowMs()), person: body.person, what, reason, changes });
+    ++sequence;
+    return send(response, 200, { ...rowOf(load), definition: load.definition });
+  };
+  if (request.method === 'PUT') {
+    if (body.expected_revision !== load.revision) return problem(response, 409, 'Load changed', 'Somebody changed this load while you typed.', 'expected_revision');
+    const bad = complaint(body.load);
+    if (bad) return problem(response, 422, 'Load not accepted', bad[1], bad[0]);
+    if (!String(body.reason ?? '').trim()) return problem(response, 422, 'Reason missing', 'The reason is empty. Say in a few words why the load is corrected.', 'reason');
+    const before = JSON.stringify(load.definition.items.map((each) => each.steel.name ?? each.steel)), after = JSON.stringify(body.load.items.map((each) => each.steel.name ?? each.steel));
+    load.definition = body.load;
+    return revise('corrected', body.reason, before === after ? [{ field: 'recipe', before: 'as it was', after: 'as it is' }] : [{ field: 'items[0].steel', before, after }]);
+  }
+  if (rest === 'move') {
+    const at = body.at ?? stamp(nowMs()), last = (load.definition.path ??= [{ from: load.definition.started_at, furnace: load.definition.furnace, chamber: load.definition.chamber }]).at(-1);
+    load.definition.path.push(body.outside ? { from: at, outside: true } : { from: at, furnace: body.furnace ?? last.furnace, chamber: body.chamber });
+    if (!body.outside && !chamberOf(body.furnace ?? last.furnace, body.chamber)) return problem(response, 422, 'No such chamber', 'There is no such chamber.', 'chamber');
+    if (!body.outside) { load.definition.furnace = body.furnace ?? last.furnace; load.definition.chamber = body.chamber; }
+    return revise('moved', null, [{ field: 'path', before: last.chamber ?? 'outside', after: body.outside ? 'outside' : body.chamber }]);
+  }
+  if (rest === 'cancel') { load.cancelled = true; load.ended_at = stamp(nowMs()); return revise('cancelled', body.reason, []); }
   if (rest === 'notes') { load.notes.push({ at: stamp(nowMs()), person: body.person, text: body.text }); ++sequence; return send(response, 201, {}); }
   if (rest === 'end') { load.ended_at = body.ended_at ?? stamp(nowMs()); ++sequence; return send(response, 200, rowOf(load)); }
   return send(response, 200, { ...rowOf(load), definition: load.definition });

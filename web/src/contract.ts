@@ -1,13 +1,23 @@
 // What the daemon says and takes: one type per document of /api/v1, field for field, units in the names.
 // Nothing is converted here; units.ts does that at the last moment before a figure is shown.
 
-export type Basis = 'measured' | 'held' | 'planned';
+export type Basis = 'measured' | 'held' | 'planned' | 'masked';
+export type LoadState = 'open' | 'ended' | 'cancelled';
 export type Condition = 'no load' | 'no data yet' | 'live' | 'stale' | 'ended';
 export type Outcome = 'reached' | 'reached with note' | 'outside range' | 'failed';
 export type Window2 = [number, number];
 
 export interface InputTemperature { value_degc: number | null; basis: Basis; age_s: number | null }
-export interface InputCarbon { value_wt_pct: number | null; basis: Basis; age_s: number | null; source?: string }
+export interface CarbonSource { source: string; channels: string[]; value_wt_pct: number | null; basis: Basis; leads: boolean }
+export interface InputCarbon {
+  value_wt_pct: number | null;
+  basis: Basis;
+  age_s: number | null;
+  source?: string;
+  sources?: CarbonSource[];
+  disagreement_wt_pct?: number | null;
+  disagree?: boolean;
+}
 export interface Inputs { temperature: InputTemperature; carbon_potential: InputCarbon }
 
 export interface SegmentNow {
@@ -16,6 +26,10 @@ export interface SegmentNow {
   elapsed_min: number;
   minutes_left: number;
   overdue: boolean;
+  started_at?: string;
+  by?: 'readings' | 'recipe time' | 'model';
+  doubt?: string | null;
+  long_by_min?: number;
 }
 
 export interface Profile { depth_mm: number[]; carbon_wt_pct: number[] }
@@ -30,8 +44,12 @@ export interface FloorItem {
   case_depth_window_mm: Window2;
   surface_carbon_wt_pct: number | null;
   surface_carbon_window_wt_pct: Window2 | null;
-  strip: Profile;
+  finished_case_depth_mm?: number | null;
+  grinding_stock_mm?: number;
+  strip: Profile | null;  // null beyond the first four loads of a furnace
 }
+
+export interface Position { place: number; places: number }  // a tray's place on a line
 
 export interface FloorLoad {
   id: number;
@@ -46,6 +64,8 @@ export interface FloorLoad {
   minutes_left: number | null;
   item_count: number;
   item: FloorItem | null;
+  position?: Position | null;
+  data_age_s?: number | null;
 }
 
 export interface FloorFurnace {
@@ -55,8 +75,11 @@ export interface FloorFurnace {
   condition: Condition;
   data_time: string | null;
   data_age_s: number | null;
-  loads: FloorLoad[];
+  chambers?: Chamber[];
+  line?: boolean;         // chambers are the zones of a pusher line, in order
+  loads: FloorLoad[];     // worst first
 }
+export interface Chamber { id: string; name: string; places?: number }
 
 export interface Floor {
   sequence: number;
@@ -68,13 +91,27 @@ export interface Floor {
   furnaces: FloorFurnace[];
 }
 
+export type Until =
+  | { kind: 'case_depth'; item: string; depth_mm: number }
+  | { kind: 'surface_carbon'; item: string; wt_pct: number }
+  | { kind: 'part_temperature'; within_k: number };
+
 export interface RecipeSegment {
   name: string;
   duration_min: number;
   temperature_degc: number;
   carbon_potential_wt_pct: number;
+  ramp_min?: number;
+  tolerance_min?: number;
+  until?: Until | null;
+  longest_min?: number;
 }
-export interface Recipe { name: string; segments: RecipeSegment[] }
+export interface CopiedFrom { key: string; version: number }
+export interface Recipe { name: string; segments: RecipeSegment[]; library?: CopiedFrom | null }
+export interface Quench { temperature_degc?: number; tempering?: { temperature_degc: number; hours: number } | null }
+export type Stay =
+  | { from: string; furnace: string; chamber: string; outside?: undefined }
+  | { from: string; outside: true };
 
 export type Section =
   | { shape: 'plate'; thickness_mm: number }
@@ -98,8 +135,12 @@ export interface ItemDefinition {
   section: Section;
   criterion?: Criterion;
   case_depth_window_mm: Window2;
-  surface_carbon_window_wt_pct?: Window2;
+  surface_carbon_window_wt_pct?: Window2 | null;
   lag_min?: number;
+  grinding_stock_mm?: number;
+  library?: CopiedFrom | null;
+  rework_of?: { load: number; item: string } | null;
+  initial_profile?: unknown;  // the server's copy of the earlier load's last profile
 }
 
 export interface LoadDefinition {
@@ -110,9 +151,14 @@ export interface LoadDefinition {
   started_at: string;
   charge_temperature_degc?: number;
   lattice_s?: number;
+  path?: Stay[];
+  film_min?: number;
+  quench?: Quench | null;
+  masks?: unknown[];
   recipe: Recipe;
   items: ItemDefinition[];
 }
+export type LoadBody = Omit<LoadDefinition, 'name' | 'person' | 'started_at' | 'path'>;
 
 export interface Item {
   name: string;
@@ -120,9 +166,12 @@ export interface Item {
   quantity: number;
   steel: string;
   shape: string;
-  criterion: { text: string; carbon_limit_wt_pct: number | null };
+  criterion: { text: string; carbon_limit_wt_pct: number | null; kind?: Criterion['kind']; limit_hv?: number; limit_hrc?: number };
   case_depth_mm: number | null;
   case_depth_window_mm: Window2;
+  finished_case_depth_mm?: number | null;
+  grinding_stock_mm?: number;
+  hardness?: Hardness | null;
   surface_carbon_wt_pct: number | null;
   surface_carbon_window_wt_pct: Window2 | null;
   total_depth_mm: number | null;
@@ -134,6 +183,18 @@ export interface Item {
   part_temperature_degc: number | null;
   outcome: Outcome;
   profile: Profile;
+}
+
+export interface ComparedValue { quantity: string; unit: string; values: { source: string; value: number | null; used: boolean }[] }
+export interface Hardness {
+  surface_hv: number | null;
+  surface_hrc: number | null;
+  surface_retained_austenite_pct: number | null;
+  depth_mm: number[];
+  hv: number[];
+  retained_austenite_pct: number[];
+  as: string;
+  sources?: ComparedValue[];
 }
 
 export interface ModelNote { kind: string; item: string | null; from: string; to: string; text: string }
@@ -149,10 +210,16 @@ export interface SnapshotLoad {
   person: string;
   started_at: string;
   ended_at: string | null;
-  state: 'open' | 'ended';
+  state: LoadState;
   recipe: Recipe;
   revision: number;
+  path?: PathStay[];
 }
+export interface PathStay { from: string; to: string | null; furnace?: string; furnace_name?: string; chamber?: string; chamber_name?: string; outside?: boolean }
+export interface Place { furnace: string; furnace_name: string; chamber: string; chamber_name: string; since: string; position: Position | null }
+
+export interface Change { field: string; before: string | null; after: string | null }
+export interface Revision { revision: number; at: string; person: string; what: string; reason: string | null; changes: Change[] }
 
 export interface Snapshot {
   load: SnapshotLoad;
@@ -164,6 +231,7 @@ export interface Snapshot {
   condition: Condition;
   message: string | null;
   band: string;
+  place?: Place | null;   // null outside any furnace
   inputs: Inputs;
   segment: SegmentNow | null;
   minutes_left: number | null;
@@ -189,15 +257,6 @@ export interface History {
   items: HistoryItem[];
 }
 
-export interface Furnace {
-  id: string;
-  name: string;
-  process: string;
-  chambers: { id: string; name: string }[];
-  lag_min: number;
-  open_loads: number[];
-}
-
 export interface Steel { id: string; standard: string; composition_wt_pct: Composition }
 
 export interface LoadRow {
@@ -208,7 +267,7 @@ export interface LoadRow {
   person: string;
   started_at: string;
   ended_at: string | null;
-  state: 'open' | 'ended';
+  state: LoadState;
 }
 
 export interface Problem { type?: string; title?: string; status: number; detail?: string; field?: string }

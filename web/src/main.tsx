@@ -4,6 +4,7 @@ import './styles/shell.css';
 import './styles/floor.css';
 import './styles/load.css';
 import './styles/form.css';
+import './styles/desk.css';
 import 'uplot/dist/uPlot.min.css';
 import './styles/plot.css';
 import { render } from 'preact';

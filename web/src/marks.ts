@@ -3,31 +3,41 @@
 //   guess - an input of the model is not measured
 //   metal - the plan or the part itself
 // Nothing to say gives an empty list, and the screen stays quiet.
-import type { Condition, FloorItem, Inputs, SegmentNow } from './contract.ts';
-import { type LengthUnit, depthText, leastDepthMm } from './units.ts';
+import type { Basis, Condition, FloorItem, Inputs, SegmentNow } from './contract.ts';
+import type { HealthState } from './contract_plant.ts';
+import { type LengthUnit, carbonText, depthText, leastDepthMm } from './units.ts';
 import { ageText, minutesText } from './words.ts';
 
 export type MarkColour = 'link' | 'guess' | 'metal' | 'quiet';
-export type MarkShape = 'no load' | 'no data yet' | 'stale' | 'held' | 'planned' | 'past window' | 'overdue' | 'outside range' | 'ended' | 'away' | 'note' | 'demo';
+export type MarkShape = 'no load' | 'no data yet' | 'stale' | 'held' | 'planned' | 'past window' | 'overdue' | 'outside range' | 'ended' | 'away' | 'note' | 'demo' | 'masked' | 'unsure' | 'disagree' | 'cancelled' | HealthState;
 export interface Mark { shape: MarkShape; colour: MarkColour; word: string; sentence: string }
+
+export type Judged = Pick<FloorItem, 'case_depth_mm' | 'case_depth_window_mm' | 'finished_case_depth_mm' | 'grinding_stock_mm'>;
+
+// The depth that the window is for: what grinding leaves, where something is ground off.
+export const judgedDepthMm = (item: Judged): number | null =>
+  (item.grinding_stock_mm && item.finished_case_depth_mm !== undefined ? item.finished_case_depth_mm : item.case_depth_mm);
 
 export interface Marked {
   condition: Condition;
   message: string | null;
   inputs: Inputs;
   segment: SegmentNow | null;
-  item: Pick<FloorItem, 'case_depth_mm' | 'case_depth_window_mm'> & { outcome?: string } | null;
+  item: Judged & { outcome?: string } | null;
   dataAgeS: number | null;
 }
 
-export function guessedInputs(inputs: Inputs, basis: 'held' | 'planned'): string[] {
+export function guessedInputs(inputs: Inputs, basis: Basis): string[] {
   const names: string[] = [];
   if (inputs.temperature.basis === basis) names.push('temperature');
   if (inputs.carbon_potential.basis === basis) names.push('carbon potential');
   return names;
 }
 
-const inputsWord = (basis: 'held' | 'planned', names: readonly string[]): string =>
+// Whether any figure rests on an input that is not measured now.
+export const anyGuess = (inputs: Inputs): boolean => inputs.temperature.basis !== 'measured' || inputs.carbon_potential.basis !== 'measured';
+
+const inputsWord = (basis: string, names: readonly string[]): string =>
   (names.length > 1 ? `${basis} inputs` : `${basis}: ${names[0]}`);
 
 export function marksOf(on: Marked): Mark[] {
@@ -54,22 +64,42 @@ export function marksOf(on: Marked): Mark[] {
   if (held.length > 0) {
     marks.push({ shape: 'held', colour: 'guess', word: inputsWord('held', held), sentence: say(marks.length > 0 ? '' : 'The last reading is carried on.') });
   }
+  const masked = guessedInputs(on.inputs, 'masked');
+  if (masked.length > 0) {
+    marks.push({ shape: 'masked', colour: 'guess', word: inputsWord('marked stretch', masked), sentence: say('Its readings are left out until the stretch ends.') });
+  }
+  if (on.inputs.carbon_potential.disagree) {
+    const apart = on.inputs.carbon_potential.disagreement_wt_pct;
+    marks.push({ shape: 'disagree', colour: 'guess', word: 'carbon sources disagree', sentence: `${apart ? `By ${carbonText(apart)}. ` : ''}Check probe and gas analysis.` });
+  }
+  if (on.segment?.doubt) {
+    marks.push({ shape: 'unsure', colour: 'guess', word: 'unsure where the recipe is', sentence: afterColon(on.segment.doubt, 'Unsure where the recipe is') });
+  }
   if (item?.outcome === 'outside range' || item?.outcome === 'failed') {
     marks.push({ shape: 'outside range', colour: 'metal', word: item.outcome === 'failed' ? 'calculation failed' : 'outside the law’s range', sentence: 'Do not rely on this depth. The model notes say why.' });
   }
-  if (item && item.case_depth_mm !== null && item.case_depth_mm > item.case_depth_window_mm[1]) {
+  const depth = item && judgedDepthMm(item);
+  if (item && depth !== null && depth > item.case_depth_window_mm[1]) {
     marks.push({ shape: 'past window', colour: 'metal', word: 'past the window', sentence: 'Depth cannot go back: tell the supervisor.' });
   }
-  if (on.segment?.overdue) {
-    marks.push({ shape: 'overdue', colour: 'metal', word: 'over plan', sentence: `By ${minutesText(-on.segment.minutes_left)}. End the load here once it is out.` });
+  const long = on.segment?.long_by_min ?? 0;
+  if (on.segment && (on.segment.overdue || long > 0)) {
+    const by = long > 0 ? long : -on.segment.minutes_left;
+    marks.push({ shape: 'overdue', colour: 'metal', word: 'runs long', sentence: `${on.segment.name} by ${minutesText(by)}. ${on.segment.overdue ? 'End the load here once it is out.' : 'Correct the recipe if that is meant.'}` });
   }
   return marks;
 }
 
+// The daemon's sentence without the words that stand in front of it already.
+function afterColon(sentence: string, head: string): string {
+  const rest = sentence.startsWith(`${head}:`) ? sentence.slice(head.length + 1).trim() : sentence;
+  return rest.charAt(0).toUpperCase() + rest.slice(1);
+}
+
 // Where the depth stands against the drawing, as plain arithmetic: no forecast and no chance.
-export function reachText(item: Pick<FloorItem, 'case_depth_mm' | 'case_depth_window_mm'>, unit: LengthUnit, ended = false): string {
+export function reachText(item: Judged, unit: LengthUnit, ended = false): string {
   const [low, high] = item.case_depth_window_mm;
-  const depth = item.case_depth_mm;
+  const depth = judgedDepthMm(item);
   if (depth === null) return ended ? 'no case' : 'no case yet';
   if (depth < low) return `${depthText(Math.max(low - depth, leastDepthMm(unit)), unit)} ${ended ? 'short' : 'to go'}`;
   if (depth <= high) return 'in the window';

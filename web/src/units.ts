@@ -11,6 +11,11 @@ export const toMm = (shown: number, unit: LengthUnit): number => (unit === 'mm' 
 export const fromDegc = (degc: number, unit: TemperatureUnit): number => (unit === 'degc' ? degc : degc * 1.8 + 32);
 export const toDegc = (shown: number, unit: TemperatureUnit): number => (unit === 'degc' ? shown : (shown - 32) / 1.8);
 
+// A difference of temperatures.
+export const fromKelvins = (k: number, unit: TemperatureUnit): number => (unit === 'degc' ? k : k * 1.8);
+export const toKelvins = (shown: number, unit: TemperatureUnit): number => (unit === 'degc' ? shown : shown / 1.8);
+export const differenceName = (unit: TemperatureUnit): string => (unit === 'degc' ? 'K' : '°F');
+
 export const lengthName = (unit: LengthUnit): string => (unit === 'mm' ? 'mm' : 'in');
 export const temperatureName = (unit: TemperatureUnit): string => (unit === 'degc' ? '°C' : '°F');
 
@@ -38,6 +43,21 @@ export const carbonNumber = (wtPct: number | null): string => (wtPct === null ? 
 export const carbonText = (wtPct: number | null): string => (wtPct === null ? '–' : `${fixed(wtPct, 2)} % C`);
 export const carbonWindowText = (window: readonly [number, number]): string =>
   `${fixed(window[0], 2)} – ${fixed(window[1], 2)} % C`;
+
+// A channel's value in the channel's own unit, temperatures as this screen shows them; fine enough to tell two
+// readings apart.
+export function channelText(value: number, unit: string, shown: TemperatureUnit): string {
+  const degc = unit === 'degC' ? value : unit === 'degF' ? toDegc(value, 'degf') : unit === 'K' ? value - 273.15 : null;
+  if (degc !== null) return `${fixed(fromDegc(degc, shown), 1)} ${temperatureName(shown)}`;
+  if (unit === 'wt_pct') return `${fixed(value, 3)} % C`;
+  return `${plainNumber(value, 3)} ${unitName(unit)}`;
+}
+export const unitName = (unit: string): string => ({ degC: '°C', degF: '°F', wt_pct: '% C', vol_pct: '%', uV: 'µV' } as Record<string, string>)[unit] ?? unit;
+
+// A sentence of the daemon's with its temperatures as this screen shows them: "60 degC" becomes "60 °C" or "140 °F".
+export const withTemperatures = (text: string, shown: TemperatureUnit): string =>
+  text.replace(/(-?\d+(?:\.\d+)?) degC\b/g, (_, value: string) => temperatureText(Number(value), shown));
+export const capital = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
 
 // What a person types: decimal comma or point, blanks around. null when it is no number.
 export function numberFrom(text: string): number | null {

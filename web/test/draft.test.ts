@@ -2,7 +2,10 @@
 import assert from 'node:assert/strict';
 import { test } from 'node:test';
 import type { LoadDefinition } from '../src/contract.ts';
-import { definitionOf, newDraft, placeOf, plainDetail, sameAs, whichOf, withLibrarySteels } from '../src/pages/start_draft.ts';
+import { definitionOf } from '../src/draft/build.ts';
+import { placeOf, plainDetail, whichOf } from '../src/draft/complaint.ts';
+import { newDraft } from '../src/draft/draft.ts';
+import { sameAs, withLibrarySteels } from '../src/draft/take.ts';
 
 const earlier: LoadDefinition = {
   name: '2291', furnace: 'pit-2', chamber: 'main', person: 'Morning shift', started_at: '2026-03-02T06:05:00Z', charge_temperature_degc: 25, lattice_s: 60,
@@ -14,14 +17,14 @@ const earlier: LoadDefinition = {
 };
 
 test('a load taken over and sent again is the same load with a new number, person and time', () => {
-  const draft = { ...sameAs(earlier, newDraft('pit-2', 'Night shift')), name: '2301' };
+  const draft = { ...sameAs(earlier, '2291', newDraft('pit-2', 'Night shift')), name: '2301' };
   const built = definitionOf(draft, '2026-03-03T00:00:00Z');
   assert.ok('definition' in built);
   assert.deepEqual(JSON.parse(JSON.stringify(built.definition)), { ...earlier, name: '2301', person: 'Night shift', started_at: '2026-03-03T00:00:00Z' });
 });
 
 test('an empty number and one that is no number are named by their place, in words', () => {
-  const draft = sameAs(earlier, newDraft('pit-2', 'x'));
+  const draft = sameAs(earlier, '2291', newDraft('pit-2', 'x'));
   draft.segments[0]!.temperature_degc = null;
   const empty = definitionOf(draft, '2026-03-03T00:00:00Z');
   assert.ok('said' in empty && empty.said.field === 'recipe.segments[0].temperature_degc' && empty.said.detail.includes('empty'));
@@ -37,7 +40,7 @@ test('an incomplete time is said, not sent', () => {
 });
 
 test('half a surface-carbon window is not silently dropped', () => {
-  const draft = sameAs(earlier, newDraft('pit-2', 'x'));
+  const draft = sameAs(earlier, '2291', newDraft('pit-2', 'x'));
   draft.items[0]!.surface_high = null;
   const built = definitionOf(draft, '2026-03-03T00:00:00Z');
   assert.ok('said' in built && built.said.field === 'items[0].surface_carbon_window_wt_pct');
@@ -56,7 +59,7 @@ test('a complaint lands on its own field or on the nearest one around it', () =>
 test('a steel spelled out is the library’s again only when it is the same steel', () => {
   const steel = (mn: number) => ({ id: '20MnCr5', standard: 'EN 10084', composition_wt_pct: { C: 0.2, Mn: mn } });
   const stored = { ...earlier, items: [{ ...earlier.items[0]!, steel: { name: '20MnCr5', composition_wt_pct: { C: 0.2, Mn: 1.25 } } }] };
-  const draft = sameAs(stored, newDraft('pit-2', 'x'));
+  const draft = sameAs(stored, '2291', newDraft('pit-2', 'x'));
   assert.equal(withLibrarySteels(draft, [steel(1.25)]).items[0]?.steel, '20MnCr5');
   assert.equal(withLibrarySteels(draft, [steel(1.25)]).items[0]?.ownSteel, null);
   assert.equal(withLibrarySteels(draft, [steel(1.3)]).items[0]?.ownSteel?.name, '20MnCr5');

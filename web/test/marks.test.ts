@@ -1,6 +1,6 @@
 import assert from 'node:assert/strict';
 import { test } from 'node:test';
-import { type Marked, marksOf, reachText } from '../src/marks.ts';
+import { type Marked, judgedDepthMm, marksOf, reachText } from '../src/marks.ts';
 
 const fine: Marked = {
   condition: 'live', message: null, dataAgeS: 20,
@@ -46,4 +46,23 @@ test('reach is plain arithmetic and never rounds a shortfall to nothing', () => 
   assert.equal(reachText({ case_depth_mm: 1.25, case_depth_window_mm: window }, 'mm'), '0.05 mm too deep');
   assert.equal(reachText({ case_depth_mm: null, case_depth_window_mm: window }, 'mm'), 'no case yet');
   assert.equal(reachText({ case_depth_mm: 0.8, case_depth_window_mm: window }, 'mm', true), '0.10 mm short', 'an ended load goes no further');
+});
+
+test('the window is for the finished part where something is ground off', () => {
+  const ground = { case_depth_mm: 1.3, finished_case_depth_mm: 1.15, grinding_stock_mm: 0.15, case_depth_window_mm: [0.9, 1.2] as [number, number] };
+  assert.equal(judgedDepthMm(ground), 1.15);
+  assert.equal(reachText(ground, 'mm'), 'in the window');
+  assert.deepEqual(shapes({ ...fine, item: ground }), []);
+  assert.equal(judgedDepthMm({ ...ground, grinding_stock_mm: 0 }), 1.3);
+  assert.equal(judgedDepthMm({ ...ground, finished_case_depth_mm: null }), null, 'ground away altogether');
+});
+
+test('doubt, disagreement, a marked stretch and a segment that runs long are each said', () => {
+  const carbon = { ...fine.inputs.carbon_potential, disagree: true, disagreement_wt_pct: 0.12 };
+  assert.equal(marksOf({ ...fine, inputs: { ...fine.inputs, carbon_potential: carbon } })[0]?.sentence, 'By 0.12 % C. Check probe and gas analysis.');
+  const doubt = marksOf({ ...fine, segment: { ...fine.segment!, doubt: 'Unsure where the recipe is: the readings fit two segments.' } })[0];
+  assert.deepEqual([doubt?.word, doubt?.sentence], ['unsure where the recipe is', 'The readings fit two segments.']);
+  assert.deepEqual(shapes({ ...fine, inputs: { ...fine.inputs, temperature: { ...fine.inputs.temperature, basis: 'masked' } } }), ['masked']);
+  assert.equal(marksOf({ ...fine, segment: { ...fine.segment!, long_by_min: 14 } })[0]?.sentence, 'boost by 14 min. Correct the recipe if that is meant.');
+  assert.deepEqual(shapes({ ...fine, segment: { ...fine.segment!, long_by_min: 0 } }), []);
 });

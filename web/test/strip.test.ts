@@ -62,3 +62,10 @@ test('a label keeps inside its edges', () => {
   assert.equal(clampLabel(199, 40, 0, 200), 180);
   assert.equal(clampLabel(100, 40, 0, 200), 100);
 });
+
+test('what is ground off moves the window inward, and the words say so', () => {
+  const ground = { ...item, stock_mm: 0.2 };
+  assert.equal(axisEndMm({ ...ground, window_mm: [0.9, 1.3] }), 2.5);
+  assert.ok(stripText(ground, 'mm', false).includes('0.20 mm are ground off before that is measured.'));
+  assert.ok(!stripText(item, 'mm', false).includes('ground off'));
+});

@@ -4,7 +4,8 @@ import { live } from '../live.ts';
 import { Shape } from '../pictures/mark_shape.tsx';
 import { startLink } from '../routes.ts';
 import { useStore } from '../store.ts';
-import { FloorCard } from './floor_card.tsx';
+import { FloorCard, FurnaceName } from './floor_card.tsx';
+import { GroupCard, LineCard } from './floor_group.tsx';
 
 export function Floor() {
   const { floor, link } = useStore(live);
@@ -12,11 +13,12 @@ export function Floor() {
   const loads = floor.furnaces.reduce((sum, furnace) => sum + furnace.loads.length, 0);
   const idle = floor.furnaces.filter((furnace) => furnace.loads.length === 0);
   const busy = floor.furnaces.filter((furnace) => furnace.loads.length > 0);
+  const cards = busy.flatMap((furnace) => (furnace.line ? <LineCard key={furnace.id} furnace={furnace} band={floor.band} />
+    : (furnace.chambers?.length ?? 1) > 1 ? <GroupCard key={furnace.id} furnace={furnace} band={floor.band} />
+      : furnace.loads.map((load) => <FloorCard key={load.id} furnace={furnace} load={load} band={floor.band} />)));
   return <>
     <h1 class="title">Floor <small>{count(floor.furnaces.length, 'furnace')}, {count(loads, 'load')} · worst first</small></h1>
-    <div class={`cards ${loads > 4 ? 'many' : ''}`}>
-      {busy.flatMap((furnace) => furnace.loads.map((load) => <FloorCard key={load.id} furnace={furnace} load={load} band={floor.band} />))}
-    </div>
+    <div class={`cards ${cards.length > 4 ? 'many' : ''}`}>{cards}</div>
     {idle.length > 0 && <div class="idles">{idle.map((furnace) => <Idle key={furnace.id} furnace={furnace} />)}</div>}
     {floor.furnaces.length === 0 && <p class="waiting">The plant file names no furnace yet.</p>}
   </>;
@@ -27,7 +29,7 @@ const count = (many: number, word: string): string => `${many} ${word}${many ===
 // A furnace without a load takes no attention: one quiet line and the way to start one.
 function Idle({ furnace }: { furnace: FloorFurnace }) {
   return <article class="idle" data-testid="idle" data-furnace={furnace.id}>
-    <h2>{furnace.name}</h2>
+    <h2><FurnaceName furnace={furnace} /></h2>
     <p class="mark quiet" data-mark="no load"><Shape name="no load" /><b>no load</b></p>
     <a class="button plain" href={startLink(furnace.id)} aria-label={`Start a load in ${furnace.name}`}>Start a load</a>
   </article>;

@@ -3,23 +3,27 @@ import { useState } from 'preact/hooks';
 import type { Item, Snapshot } from '../api.ts';
 import { msSince } from '../elapsed.ts';
 import { isCurrent, live, pulse } from '../live.ts';
-import { guessedInputs, marksOf, reachText } from '../marks.ts';
+import { anyGuess, judgedDepthMm, marksOf, reachText } from '../marks.ts';
+import { HardnessPlot } from '../pictures/hardness_plot.tsx';
 import { HistoryPlots } from '../pictures/history_plots.tsx';
 import { Shape } from '../pictures/mark_shape.tsx';
 import { ProfilePlot } from '../pictures/profile_plot.tsx';
 import { Strip } from '../pictures/strip.tsx';
+import { stripOf } from '../pictures/strip_geometry.ts';
 import { prefs } from '../prefs.ts';
-import { floorLink } from '../routes.ts';
+import { floorLink, furnaceLink } from '../routes.ts';
 import { MarkRow } from '../shell/mark_row.tsx';
 import { useStore } from '../store.ts';
-import { depthNumber, lengthName, windowText } from '../units.ts';
+import { depthNumber, depthText, lengthName, windowText } from '../units.ts';
 import { type LoadView, useLoad } from '../use_load.ts';
 import { ageText, clockText, dayClockText, minutesText } from '../words.ts';
-import { EndLoad } from './load_end.tsx';
+import { Actions } from './load_actions.tsx';
 import { Facts } from './load_facts.tsx';
 import { Items } from './load_items.tsx';
 import { GapList, ModelNotes, ShiftNotes } from './load_notes.tsx';
 import { Plan } from './load_plan.tsx';
+import { Revisions } from './load_revisions.tsx';
+import { CarbonSources, Where } from './load_where.tsx';
 
 const oldAfterMs = 10_000;
 
@@ -38,17 +42,21 @@ export function Load({ id }: { id: number }) {
     <Title snapshot={snapshot} again={again} />
     {old && feed.link !== 'away' && <p class="catching" role="status">These figures are from {clockText(view.confirmed.wallMs, true)}. {view.problem ?? 'Asking again …'}</p>}
     {item && <Present view={view} snapshot={snapshot} item={item} old={old} speed={feed.floor?.clock_speed ?? 1} />}
-    {items.length > 1 && item && <Items items={items} chosen={item.name} controlling={snapshot.controlling_item} unit={length} ended={snapshot.load.state === 'ended'} guessed={guessedNow(snapshot)} choose={setChosen} />}
+    {items.length > 1 && item && <Items items={items} chosen={item.name} controlling={snapshot.controlling_item} unit={length} ended={snapshot.load.state !== 'open'} guessed={guessedNow(snapshot)} choose={setChosen} />}
     <div class="plots">
       {item && <ProfilePlot item={item} unit={length} />}
+      {item?.hardness && <HardnessPlot item={item} hardness={item.hardness} unit={length} temperature={temperature} />}
       {item && history && history.time_s.length > 1 && <HistoryPlots snapshot={snapshot} history={history} item={item} length={length} temperature={temperature} />}
     </div>
     <div class="columns">
-      <div class="stack"><Plan recipe={snapshot.load.recipe} segment={snapshot.segment} minutesLeft={snapshot.minutes_left} open={snapshot.load.state === 'open'} temperature={temperature} />
+      <div class="stack"><Plan recipe={snapshot.load.recipe} segment={snapshot.segment} minutesLeft={snapshot.minutes_left} open={snapshot.load.state === 'open'} now={snapshot.now} />
+        <Where snapshot={snapshot} />
+        <CarbonSources snapshot={snapshot} />
         <ModelNotes snapshot={snapshot} />
         <GapList snapshot={snapshot} /></div>
       <div class="stack">{item && <Facts item={item} band={snapshot.band} length={length} temperature={temperature} />}
-        <ShiftNotes snapshot={snapshot} again={again} /></div>
+        <ShiftNotes snapshot={snapshot} again={again} />
+        <Revisions id={id} revision={snapshot.load.revision} /></div>
     </div>
   </div>;
 }
@@ -60,17 +68,22 @@ function ordered(snapshot: Snapshot): Item[] {
 }
 
 function Title({ snapshot, again }: { snapshot: Snapshot; again: () => void }) {
-  const { load } = snapshot;
+  const { load, place } = snapshot;
   return <div class="load-title">
-    <h1 class="title">Load {load.name} · {load.furnace_name}{load.chamber && load.chamber !== 'main' ? ` · ${load.chamber}` : ''}
+    <h1 class="title">Load {load.name} · <a class="in-title" href={furnaceLink(place?.furnace ?? load.furnace)}>{placeName(snapshot)}</a>
       <small>started {dayClockText(Date.parse(load.started_at))} by {load.person}</small></h1>
-    {load.state === 'open' ? <EndLoad snapshot={snapshot} again={again} />
-      : <p class="mark quiet"><Shape name="ended" /><b>ended {load.ended_at && dayClockText(Date.parse(load.ended_at))}</b></p>}
+    {load.state !== 'open' && <p class="mark quiet"><Shape name={load.state} /><b>{load.state} {load.ended_at && dayClockText(Date.parse(load.ended_at))}</b></p>}
+    <Actions snapshot={snapshot} again={again} />
   </div>;
 }
 
-const guessedNow = ({ load, inputs }: Snapshot): boolean =>
-  load.state === 'open' && guessedInputs(inputs, 'held').length + guessedInputs(inputs, 'planned').length > 0;
+function placeName({ load, place }: Snapshot): string {
+  if (place === null) return 'outside';
+  const [furnace, chamber, name] = place ? [place.furnace_name, place.chamber, place.chamber_name] : [load.furnace_name, load.chamber, load.chamber];
+  return chamber && chamber !== 'main' ? `${furnace} · ${name}` : furnace;
+}
+
+const guessedNow = ({ load, inputs }: Snapshot): boolean => load.state === 'open' && anyGuess(inputs);
 
 interface PresentProps { view: LoadView; snapshot: Snapshot; item: Item; old: boolean; speed: number }
 function Present({ view, snapshot, item, old, speed }: PresentProps) {
@@ -84,15 +97,16 @@ function Present({ view, snapshot, item, old, speed }: PresentProps) {
       <div class="depth">
         <h2>{item.part} <small>{item.name}{item.quantity > 1 ? ` · ${item.quantity} pieces` : ''} · {item.steel} · {item.shape}</small></h2>
         {old && <p class="then" data-testid="then"><span>old: {clockText(view.confirmed.wallMs, true)}</span></p>}
-        <p class="big"><span data-testid="depth">{depthNumber(item.case_depth_mm, length)}</span>{item.case_depth_mm !== null && <small>{lengthName(length)}</small>}</p>
+        <p class="big"><span data-testid="depth">{depthNumber(judgedDepthMm(item), length)}</span>{judgedDepthMm(item) !== null && <small>{lengthName(length)}</small>}</p>
         <p class="asked-line">asked <b>{windowText(item.case_depth_window_mm, length)}</b></p>
         <p class="reach">{reachText(item, length, !open)}</p>
+        {!!item.grinding_stock_mm && <p class="band">finished: {depthText(item.grinding_stock_mm, length)} ground off {depthText(item.case_depth_mm, length)}</p>}
         {open && snapshot.segment && <p class="asked-line now-line"><b>{snapshot.segment.name}</b>: {snapshot.segment.minutes_left >= 0 ? `${minutesText(snapshot.segment.minutes_left)} left` : `${minutesText(-snapshot.segment.minutes_left)} over`}</p>}
-        <p class="age" data-testid="data-age">{open ? (ageS === null ? 'no reading yet' : `data ${ageText(ageS)} old`) : 'final'}</p>
+        <p class="age" data-testid="data-age">{open ? (ageS === null ? 'no reading yet' : `data ${ageText(ageS)} old`) : snapshot.load.state === 'cancelled' ? 'cancelled: not a result' : 'final'}</p>
         <p class="band">{snapshot.band}</p>
       </div>
       <div class="picture">
-        <Strip item={{ ...item.profile, case_depth_mm: item.case_depth_mm, window_mm: item.case_depth_window_mm, turnover_mm: item.turnover_depth_mm, ended: !open }} unit={length} metalPx={120} fontPx={17} guessed={guessed || old} labels="all" />
+        <Strip item={{ ...stripOf(item, item.profile), turnover_mm: item.turnover_depth_mm, ended: !open }} unit={length} metalPx={120} fontPx={17} guessed={guessed || old} labels="all" />
       </div>
     </div>
     {marks.length > 0 && <div class="marks">{marks.map((mark) => <MarkRow key={mark.shape} mark={mark} />)}</div>}

@@ -21,7 +21,7 @@ export function GapList({ snapshot }: { snapshot: Snapshot }) {
   return <section class="panel">
     <h2>Stretches without measurement</h2>
     {snapshot.gaps.length === 0 ? <p class="nothing">None: both inputs were measured throughout.</p> : <ul class="list">{snapshot.gaps.map((gap, i) => <li key={i} class="guess">
-      <Shape name={gap.basis === 'planned' ? 'planned' : 'held'} /><p><b>{inputName(gap.input)} {gap.basis}</b> {span(gap.from, gap.to)}, {minutesText((Date.parse(gap.to) - Date.parse(gap.from)) / 60_000)}</p></li>)}</ul>}
+      <Shape name={gap.basis === 'measured' ? 'held' : gap.basis} /><p><b>{inputName(gap.input)} {gap.basis}</b> {span(gap.from, gap.to)}, {minutesText((Date.parse(gap.to) - Date.parse(gap.from)) / 60_000)}</p></li>)}</ul>}
   </section>;
 }
 

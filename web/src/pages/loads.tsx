@@ -31,7 +31,7 @@ export function Loads() {
     {rows && rows.length > 0 && <ul class="loads">{rows.map((row) => <li key={row.id}><a href={loadLink(row.id)}>
       <b>{row.name}</b><span>{furnaceName(row.furnace)}</span>
       <span class="when">{dayClockText(Date.parse(row.started_at))}{row.ended_at && ` – ${dayClockText(Date.parse(row.ended_at))}`}</span>
-      <span class="state"><Shape name={row.state === 'open' ? 'no load' : 'ended'} />{row.state}</span>
+      <span class="state"><Shape name={row.state === 'open' ? 'no load' : row.state} />{row.state}</span>
       <span class="by">{row.person}</span></a></li>)}</ul>}
     {next !== null && <p><button type="button" class="button plain" onClick={() => void more(next)}>Older loads</button></p>}
   </>;

@@ -11,7 +11,7 @@ import { type Palette, Plot, axes, inside } from './plot.tsx';
 
 interface Props { snapshot: Snapshot; history: History; item: Item; length: LengthUnit; temperature: TemperatureUnit }
 
-interface Behind { stretches: Stretch[]; steps: { from_s: number; to_s: number; value: number }[]; band: [number, number] | null; now_s: number | null }
+interface Behind { stretches: Stretch[]; steps: { from_s: number; to_s: number; ramp_s: number; value: number }[]; band: [number, number] | null; now_s: number | null }
 
 export function HistoryPlots({ snapshot, history, item, length, temperature }: Props) {
   const steps = recipeSteps(snapshot.load.recipe, Date.parse(snapshot.load.started_at) / 1000);
@@ -24,31 +24,32 @@ export function HistoryPlots({ snapshot, history, item, length, temperature }: P
   const depth = series?.case_depth_mm.map((mm) => (mm === null ? null : fromMm(mm, length))) ?? [];
   const heat = history.temperature_degc.map((degc) => (degc === null ? null : fromDegc(degc, temperature)));
   const part = series?.part_temperature_degc.map((degc) => (degc === null ? null : fromDegc(degc, temperature))) ?? [];
-  const band = item.case_depth_window_mm.map((mm) => fromMm(mm, length)) as [number, number];
+  const band = item.case_depth_window_mm.map((mm) => fromMm(mm + (item.grinding_stock_mm ?? 0), length)) as [number, number];
   const at = (i: number) => clockText((times[i] ?? 0) * 1000);
-  const stepsOf = (pick: (step: RecipeStep) => number) => steps.map((step) => ({ from_s: step.from_s, to_s: step.to_s, value: pick(step) }));
+  const stepsOf = (pick: (step: RecipeStep) => number) => steps.map((step) => ({ from_s: step.from_s, to_s: step.to_s, ramp_s: step.ramp_s, value: pick(step) }));
   const heatSteps = stepsOf((step) => fromDegc(step.temperature_degc, temperature));
   const carbonSteps = stepsOf((step) => step.carbon_potential_wt_pct);
   return <div class="histories">
     <Timeline {...shared} title="Case depth over the cycle" text={`Case depth of ${item.part} over time, now ${depthText(item.case_depth_mm, length)}.`} unitName={lengthName(length)} lines={[depth]} range={[0, Math.max(extent([...depth, band[1]], band[1])[1], band[1] * 1.15)]}
-      behind={{ stretches: [], steps: [], band, now_s }} readout={(i) => `${at(i)}: ${depthText(series?.case_depth_mm[i] ?? null, length)}`} legend={<ul class="legend"><Key kind="line">computed depth</Key><Key kind="asked">asked</Key>{now_s !== null && <Key kind="now">now</Key>}</ul>} />
+      behind={{ stretches: [], steps: [], band, now_s }} readout={(i) => `${at(i)}: ${depthText(series?.case_depth_mm[i] ?? null, length)}`} legend={<ul class="legend"><Key kind="line">computed depth</Key><Key kind="asked">{item.grinding_stock_mm ? 'asked, before grinding' : 'asked'}</Key>{now_s !== null && <Key kind="now">now</Key>}</ul>} />
     <Timeline {...shared} title="Temperature" text="Measured temperature against the recipe." unitName={temperatureName(temperature)} lines={[heat, part]} range={nearRecipe(heat, heatSteps, temperature === 'degc' ? 100 : 180)}
       behind={{ stretches: stretchesOf(times, history.temperature_basis), steps: heatSteps, band: null, now_s }}
-      readout={(i) => `${at(i)}: ${temperatureText(history.temperature_degc[i] ?? null, temperature)}, ${history.temperature_basis[i] ?? ''}`} legend={<InputLegend thin="part" />} />
+      readout={(i) => `${at(i)}: ${temperatureText(history.temperature_degc[i] ?? null, temperature)}, ${history.temperature_basis[i] ?? ''}`} legend={<InputLegend thin="part" masked={history.temperature_basis.includes('masked')} />} />
     <Timeline {...shared} title="Carbon potential" text="Carbon potential against the recipe." unitName="% C" lines={[history.carbon_potential_wt_pct, series?.surface_carbon_wt_pct ?? []]} range={nearRecipe(history.carbon_potential_wt_pct, carbonSteps, 0.3)}
       behind={{ stretches: stretchesOf(times, history.carbon_potential_basis), steps: carbonSteps, band: null, now_s }}
-      readout={(i) => `${at(i)}: ${carbonNumber(history.carbon_potential_wt_pct[i] ?? null)} % C, ${history.carbon_potential_basis[i] ?? ''}`} legend={<InputLegend thin="surface of the part" />} />
+      readout={(i) => `${at(i)}: ${carbonNumber(history.carbon_potential_wt_pct[i] ?? null)} % C, ${history.carbon_potential_basis[i] ?? ''}`} legend={<InputLegend thin="surface of the part" masked={history.carbon_potential_basis.includes('masked')} />} />
   </div>;
 }
 
-function InputLegend({ thin }: { thin: string }) {
-  return <ul class="legend"><Key kind="line">furnace</Key><Key kind="thin">{thin}</Key><Key kind="dash">recipe</Key><Key kind="held">held</Key><Key kind="planned">planned</Key></ul>;
+function InputLegend({ thin, masked }: { thin: string; masked: boolean }) {
+  return <ul class="legend"><Key kind="line">furnace</Key><Key kind="thin">{thin}</Key><Key kind="dash">recipe</Key><Key kind="held">held</Key><Key kind="planned">planned</Key>{masked && <Key kind="masked">marked stretch</Key>}</ul>;
 }
 
 const keys = {
   line: <path class="k-line" d="M1 8h32" />, thin: <path class="k-thin" d="M1 8h32" />, dash: <path class="k-dash" d="M1 8h32" />, now: <path class="k-dash" d="M17 0v16" />,
   asked: <rect class="k-asked" x="1" y="1" width="32" height="14" />,
   held: <path class="k-guess" d="M1 3h32M1 8h32M1 13h32" />,
+  masked: <path class="k-guess" d="M3 1v14M10 1v14M17 1v14M24 1v14M31 1v14" />,
   planned: <path class="k-guess k-dots" d="M3 4h30M3 12h30M8 8h24" />,
 };
 const Key = ({ kind, children }: { kind: keyof typeof keys; children: string }) => <li><svg viewBox="0 0 34 16" aria-hidden="true">{keys[kind]}</svg>{children}</li>;
@@ -81,20 +82,21 @@ function drawBehind(plot: uPlot, behind: Behind, colours: Palette): void {
     ctx.lineWidth = 2 * ratio;
     ctx.setLineDash([7 * ratio, 5 * ratio]);
     ctx.beginPath();
-    for (const step of behind.steps) { ctx.lineTo(x(step.from_s), y(step.value)); ctx.lineTo(x(step.to_s), y(step.value)); }
+    for (const step of behind.steps) { ctx.lineTo(x(step.from_s + step.ramp_s), y(step.value)); ctx.lineTo(x(step.to_s), y(step.value)); }
     if (behind.now_s !== null) { ctx.moveTo(x(behind.now_s), top); ctx.lineTo(x(behind.now_s), top + height); }
     ctx.stroke();
   });
 }
 
-function pattern(ctx: CanvasRenderingContext2D, from: number, to: number, top: number, height: number, basis: 'held' | 'planned', colour: string, ratio: number): void {
+function pattern(ctx: CanvasRenderingContext2D, from: number, to: number, top: number, height: number, basis: Stretch['basis'], colour: string, ratio: number): void {
   ctx.save();
   ctx.fillStyle = colour;
   ctx.globalAlpha = 0.12;
   ctx.fillRect(from, top, to - from, height);
   ctx.globalAlpha = 0.85;
   const gap = 7 * ratio;
-  for (let y = top + gap, row = 0; y < top + height; y += gap, ++row) {
+  if (basis === 'masked') for (let x = from; x < to; x += gap) ctx.fillRect(x, top, ratio, height);
+  else for (let y = top + gap, row = 0; y < top + height; y += gap, ++row) {
     if (basis === 'held') ctx.fillRect(from, y, to - from, ratio);
     else for (let x = from + (row % 2) * gap / 2; x < to; x += gap) ctx.fillRect(x, y, 2 * ratio, 2 * ratio);
   }

@@ -1,14 +1,14 @@
 // The history document prepared for drawing: stretches of guessed input and the recipe as steps. Pure.
 import type { Basis, Recipe } from '../contract.ts';
 
-export interface Stretch { from_s: number; to_s: number; basis: 'held' | 'planned' }
+export interface Stretch { from_s: number; to_s: number; basis: Exclude<Basis, 'measured'> }
 
 // Stretches without measurement. A point's basis speaks for the time up to the next point.
 export function stretchesOf(time_s: readonly number[], basis: readonly Basis[]): Stretch[] {
   const stretches: Stretch[] = [];
   for (let i = 0; i < time_s.length; ++i) {
     const kind = basis[i];
-    if (kind !== 'held' && kind !== 'planned') continue;
+    if (kind === undefined || kind === 'measured') continue;
     const to_s = time_s[i + 1] ?? time_s[i]!;
     const last = stretches[stretches.length - 1];
     if (last && last.basis === kind && last.to_s === time_s[i]) last.to_s = to_s;
@@ -17,13 +17,13 @@ export function stretchesOf(time_s: readonly number[], basis: readonly Basis[]):
   return stretches;
 }
 
-export interface RecipeStep { from_s: number; to_s: number; name: string; temperature_degc: number; carbon_potential_wt_pct: number }
+export interface RecipeStep { from_s: number; to_s: number; ramp_s: number; name: string; temperature_degc: number; carbon_potential_wt_pct: number }
 export function recipeSteps(recipe: Recipe, startedS: number): RecipeStep[] {
   let at = startedS;
   return recipe.segments.map((segment) => {
     const from_s = at;
     at += segment.duration_min * 60;
-    return { from_s, to_s: at, name: segment.name, temperature_degc: segment.temperature_degc, carbon_potential_wt_pct: segment.carbon_potential_wt_pct };
+    return { from_s, to_s: at, ramp_s: Math.min(segment.ramp_min ?? 0, segment.duration_min) * 60, name: segment.name, temperature_degc: segment.temperature_degc, carbon_potential_wt_pct: segment.carbon_potential_wt_pct };
   });
 }
 

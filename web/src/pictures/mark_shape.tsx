@@ -13,6 +13,17 @@ const lines: Record<MarkShape, string> = {
   ended: 'M4 9v14h20V9zM9 16l4 4 7-9',                         // a closed tray
   away: 'M2 14h8M10 7v14M18 7v14M18 14h8',                     // a line pulled apart
   note: 'M5 4h13l5 5v15H5zM10 13h8M10 18h8',                   // a written sheet
+  masked: 'M6 4v20M13 4v20M20 4v20M2 24h24',                    // bars in front of a stretch
+  unsure: 'M9 9a5 5 0 1 1 7 5l-2 2v3M14 23v3',                 // a question
+  disagree: 'M2 14h6l16-9M8 14l16 9',                           // one trace that becomes two
+  cancelled: 'M4 9v14h20V9M8 5l12 12M20 5L8 17',               // a tray struck out
+  good: 'M2 16l6-4 6 3 6-4 6 2',                               // a trace
+  silent: 'M2 16l5-4 4 3M14 14h2.5M19 14h2.5M24 14h2.5',        // a trace that ends in dots
+  gap: 'M2 16l6-4M20 14l6-3M11 8v12M17 8v12',                  // a trace with a piece taken out
+  stuck: 'M2 9l5 5h19M26 9v10',                                // a trace gone flat
+  noisy: 'M2 14l3-8 3 16 4-18 4 19 4-15 3 9 3-6',              // a trace all over the place
+  jumping: 'M2 21h9V7h9v14h6',                                 // a trace in steps
+  drifting: 'M2 22l24-14M19 6h7v7M2 14h14',                    // a trace that leaves its line
   demo: 'M4 4h6M14 4h6M24 4v6M24 14v6M24 24h-6M14 24H8M4 24v-6M4 14V8',  // a dashed frame: not the real thing
 };
 

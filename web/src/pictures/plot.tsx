@@ -24,11 +24,12 @@ interface Props {
   make: PlotMake;
   makeKey: string;              // changes when `make` would give another make-up
   height: number;
+  note?: string;                // a quiet line below the title
   readout: (index: number) => string;
   legend?: ComponentChildren;
 }
 
-export function Plot({ title, text, data, make, makeKey, height, readout, legend }: Props) {
+export function Plot({ title, text, data, make, makeKey, height, note, readout, legend }: Props) {
   const [box, width] = useWidth<HTMLDivElement>();
   const theme = useStore(shownTheme);
   const plot = useRef<uPlot | null>(null);
@@ -48,7 +49,7 @@ export function Plot({ title, text, data, make, makeKey, height, readout, legend
   }, [width, theme, makeKey, height]);
   useEffect(() => { plot.current?.setData(data); }, [data]);
   return <section class="panel plot">
-    <header><h2>{title}</h2><p class="readout">{under === null ? '' : readout(under)}</p></header>
+    <header><h2>{title}{note && <small>{note}</small>}</h2><p class="readout">{under === null ? '' : readout(under)}</p></header>
     <div class="plot-box" ref={box} role="img" aria-label={`${title}. ${text}`} />
     {legend}
   </section>;

@@ -5,14 +5,14 @@ import type uPlot from 'uplot';
 import type { Item } from '../contract.ts';
 import { type LengthUnit, carbonNumber, depthNumber, depthText, fromMm, lengthName } from '../units.ts';
 import { type Palette, Plot, axes, inside } from './plot.tsx';
-import { axisEndMm } from './strip_geometry.ts';
+import { itemEndMm } from './strip_geometry.ts';
 
 interface Props { item: Item; unit: LengthUnit }
 
 export function ProfilePlot({ item, unit }: Props) {
   const seen = useRef({ item, unit });
   seen.current = { item, unit };
-  const end = fromMm(axisEndMm({ ...item.profile, case_depth_mm: item.case_depth_mm, window_mm: item.case_depth_window_mm }), unit);
+  const end = fromMm(itemEndMm(item), unit);
   const data = useMemo<uPlot.AlignedData>(() => [item.profile.depth_mm.map((mm) => fromMm(mm, unit)), item.profile.carbon_wt_pct], [item.profile, unit]);
   const limit = item.criterion.carbon_limit_wt_pct;
   const top = Math.max(1.2, Math.ceil(Math.max(...item.profile.carbon_wt_pct, 0) * 10 + 0.5) / 10);
@@ -36,7 +36,7 @@ export function ProfilePlot({ item, unit }: Props) {
 
 function behind(plot: uPlot, { item, unit }: Props, colours: Palette): void {
   inside(plot, (ctx) => {
-    const [low, high] = item.case_depth_window_mm.map((mm) => plot.valToPos(fromMm(mm, unit), 'x', true)) as [number, number];
+    const [low, high] = item.case_depth_window_mm.map((mm) => plot.valToPos(fromMm(mm + (item.grinding_stock_mm ?? 0), unit), 'x', true)) as [number, number];
     ctx.fillStyle = colours.asked;
     ctx.fillRect(low, plot.bbox.top, high - low, plot.bbox.height);
   });

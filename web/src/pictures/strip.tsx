@@ -29,15 +29,19 @@ function Drawing({ item, unit, metalPx, fontPx, guessed, labels, width }: Props 
   const top = fontPx + 26, bottom = top + metalPx;
   const axis = bottom + 13;
   const all = labels === 'all';
-  const height = axis + 14 + fontPx + (all ? (fontPx + 8) * (item.turnover_mm ? 2 : 1) : 0) + 4;
-  const [low, high] = item.window_mm;
+  const stock = item.stock_mm ?? 0;
+  const height = axis + 14 + fontPx + (all ? (fontPx + 8) * (1 + (item.turnover_mm ? 1 : 0) + (stock > 0 ? 1 : 0)) : 0) + 4;
+  const [low, high] = item.window_mm.map((mm) => mm + stock) as [number, number];
   const asked = windowText(item.window_mm, unit);
   return <svg width={width} height={height} font-size={fontPx} aria-hidden="true" focusable="false">
     <defs><linearGradient id={`${id}t`} gradientUnits="userSpaceOnUse" x1={x0} x2={x1} y1="0" y2="0">
       {toneStops(item, end).map((stop) => <stop offset={stop.offset.toFixed(4)} stop-color={stop.tone} />)}
-    </linearGradient></defs>
+    </linearGradient>
+      {stock > 0 && <pattern id={`${id}g`} width="7" height="7" patternUnits="userSpaceOnUse" patternTransform="rotate(45)"><path d="M0 0v7" stroke={pale} stroke-width="3" /></pattern>}
+    </defs>
     <Air top={top} bottom={bottom} />
     <rect class="metal" x={x0} y={top} width={Math.max(0, metalEnd - x0)} height={metalPx} fill={`url(#${id}t)`} />
+    {stock > 0 && <><rect x={x0} y={top} width={at(stock) - x0} height={metalPx} fill={`url(#${id}g)`} fill-opacity=".8" /><line x1={at(stock)} x2={at(stock)} y1={top} y2={bottom} stroke={pale} stroke-width="3" /></>}
     <Ask a={at(low)} b={at(high)} top={top} bottom={bottom} />
     <text class="asked" x={clampLabel((at(low) + at(high)) / 2, asked.length * fontPx * 0.56, x0, x1)} y={fontPx} text-anchor="middle">{asked}</text>
     {ticksOf(end, unit, x1 - x0).map((tick) => <line class="tick" x1={at(tick.mm)} x2={at(tick.mm)} y1={axis - 3} y2={axis + (tick.label ? 7 : 3)} />)}
@@ -88,8 +92,10 @@ function Names({ item, unit, at, x0, x1, y, fontPx, guessed }: NamesProps) {
   const now = item.case_depth_mm === null ? (item.ended ? 'no case' : 'no case yet') : `${roomy ? 'case depth ' : ''}${item.ended ? 'at the end' : 'now'} ${depthText(item.case_depth_mm, unit)}${guessed ? ' (guessed)' : ''}`;
   const turn = item.turnover_mm ? `turnover ${depthText(item.turnover_mm, unit)}${roomy ? ': gives carbon up ◂ ▸ gains' : ''}` : '';
   const place = (mm: number, text: string) => clampLabel(at(mm), text.length * fontPx * 0.56, x0, x1);
+  const ground = item.stock_mm ? `${depthText(item.stock_mm, unit)} ground off${roomy ? ' before the window is measured' : ''}` : '';
   return <g>
     <text class="now" x={place(item.case_depth_mm ?? 0, now)} y={y + line} text-anchor="middle">{now}</text>
     {item.turnover_mm ? <text class="turn" x={place(item.turnover_mm, turn)} y={y + 2 * line} text-anchor="middle">{turn}</text> : null}
+    {ground && <text x={place((item.stock_mm ?? 0) / 2, ground)} y={y + (item.turnover_mm ? 3 : 2) * line} text-anchor="middle">{ground}</text>}
   </g>;
 }

@@ -1,5 +1,6 @@
 // The section strip in numbers: tone of each carbon content, how far the axis reaches, where the ticks are.
 // Pure functions, millimetres in, pixels out; strip.tsx draws what these say.
+import type { Item, Profile } from '../contract.ts';
 import { type LengthUnit, carbonNumber, depthText, fromMm, lengthName, toMm, windowText } from '../units.ts';
 
 // Tone is absolute: the same carbon content has the same tone on every strip, whatever the load or theme.
@@ -25,18 +26,25 @@ export interface StripItem {
   case_depth_mm: number | null;
   window_mm: readonly [number, number];
   turnover_mm?: number | null;
+  stock_mm?: number;  // ground off after hardening: the window is for what is left
   ended?: boolean;  // the depth is the load's last, not "now"
 }
 
 // Round ends, so that the picture does not creep as the case grows.
 const ends = [0.2, 0.3, 0.4, 0.5, 0.6, 0.8, 1, 1.25, 1.5, 2, 2.5, 3, 4, 5, 6, 8, 10, 12, 16, 20];
 export function axisEndMm(item: StripItem): number {
-  const reach = Math.max(item.window_mm[1] * 1.5, (item.case_depth_mm ?? 0) * 1.15, 0.15);
+  const highest = item.window_mm[1] + (item.stock_mm ?? 0);
+  const reach = Math.max(highest * 1.5, (item.case_depth_mm ?? 0) * 1.15, 0.15);
   const round = ends.find((end) => end >= reach) ?? reach;
   const metal = item.depth_mm[item.depth_mm.length - 1] ?? round;
   // A thin part ends before the round figure: its centre is the end of the picture.
-  return Math.min(round, Math.max(metal, item.window_mm[1] * 1.04, (item.case_depth_mm ?? 0) * 1.02));
+  return Math.min(round, Math.max(metal, highest * 1.04, (item.case_depth_mm ?? 0) * 1.02));
 }
+
+// An item of the contract as the strip takes it.
+export const stripOf = (item: { case_depth_mm: number | null; case_depth_window_mm: readonly [number, number]; grinding_stock_mm?: number }, profile: Profile): StripItem =>
+  ({ ...profile, case_depth_mm: item.case_depth_mm, window_mm: item.case_depth_window_mm, stock_mm: item.grinding_stock_mm ?? 0 });
+export const itemEndMm = (item: Item): number => axisEndMm(stripOf(item, item.profile));
 
 export interface Tick { mm: number; label: string | null }
 export function ticksOf(endMm: number, unit: LengthUnit, widthPx: number): Tick[] {
@@ -92,6 +100,7 @@ export function stripText(item: StripItem, unit: LengthUnit, guessed: boolean): 
   const words = [`Section from the surface inward to ${depthText(end, unit)}.`];
   words.push(item.case_depth_mm === null ? (item.ended ? 'No case.' : 'No case yet.') : `Case depth ${item.ended ? 'at the end' : 'now'} ${depthText(item.case_depth_mm, unit)}${guessed ? ', computed from inputs that are not measured' : ''}.`);
   words.push(`The drawing asks ${windowText(item.window_mm, unit).replace('–', 'to')}.`);
+  if (item.stock_mm) words.push(`${depthText(item.stock_mm, unit)} are ground off before that is measured.`);
   if (surface !== null) words.push(`Carbon ${carbonNumber(surface)} % at the surface, ${carbonNumber(carbonAt(item, end))} % at ${depthText(end, unit)}.`);
   if (item.turnover_mm) words.push(`Turnover at ${depthText(item.turnover_mm, unit)}: nearer the surface the steel gives carbon up.`);
   return words.join(' ');

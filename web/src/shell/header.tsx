@@ -2,7 +2,7 @@
 import { daemonNowMs, live, pulse } from '../live.ts';
 import { Shape } from '../pictures/mark_shape.tsx';
 import { type Prefs, type Theme, prefer, prefs } from '../prefs.ts';
-import { type Route, floorLink, loadsLink, startLink } from '../routes.ts';
+import { type Route, floorLink, libraryLink, loadsLink, startLink } from '../routes.ts';
 import { useStore } from '../store.ts';
 import { clockText, dayText } from '../words.ts';
 
@@ -17,8 +17,9 @@ export function Header({ on }: { on: Route }) {
       <p class="plant"><span class="brand">hearthfront</span><span class="plant-name">{floor?.plant ?? ''}</span></p>
       {invented && <p class="demo" data-testid="demo"><Shape name="demo" />{demoText(floor.demo, floor.clock_speed)}</p>}
       <nav aria-label="Pages">
-        <PageLink to={floorLink} here={on.page === 'floor'}>Floor</PageLink>
-        <PageLink to={loadsLink} here={on.page === 'loads' || on.page === 'load'}>Loads</PageLink>
+        <PageLink to={floorLink} here={on.page === 'floor' || on.page === 'furnace' || on.page === 'files'}>Floor</PageLink>
+        <PageLink to={loadsLink} here={on.page === 'loads' || on.page === 'load' || on.page === 'correct'}>Loads</PageLink>
+        <PageLink to={libraryLink('parts')} here={on.page === 'library'}>Library</PageLink>
         <PageLink to={startLink()} here={on.page === 'start'}>Start a load</PageLink>
       </nav>
       <Choices />
