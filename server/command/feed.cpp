@@ -126,7 +126,7 @@ class Feed {
     client_.set_keep_alive(true);
     client_.set_tcp_nodelay(true);
     log_path_ = "/api/v1/furnaces/" + furnace.id +
-                "/log?part=true&mapping=" + httplib::detail::encode_query_param(mapping.name);
+                "/log?mapping=" + httplib::detail::encode_query_param(mapping.name) + "&part=true";
   }
 
   int run() {

@@ -91,7 +91,7 @@ await scene('--at-once sends all rows in batches, header with each, and ends wit
   const feed = startFeed(daemon, logFile(list), ['--at-once']);
   expect((await within(feed.over, 10000, 'end')) === 0, feed.out);
   expect(daemon.got.map((one) => one.text).join() === list.join(), `got ${daemon.got.length} rows`);
-  expect(daemon.header === HEADER && daemon.url === '/api/v1/furnaces/pit-2/log?mapping=logger', `${daemon.header} ${daemon.url}`);
+  expect(daemon.header === HEADER && daemon.url === '/api/v1/furnaces/pit-2/log?mapping=logger&part=true', `${daemon.header} ${daemon.url}`);
   expect(daemon.posts < 10 && daemon.largest <= 1000, `${daemon.posts} posts, the largest of ${daemon.largest} rows`);
   expect(feed.out.includes('2500 rows') && feed.out.includes('7500 readings stored'), feed.out);
 });
