@@ -42,7 +42,9 @@ int main(int argc, char** argv) {
   replay->add_option("--load", replay_options.load_path, "Load file (JSON), as posted to /api/v1/loads")
       ->required()
       ->check(CLI::ExistingFile);
-  replay->add_option("--log", replay_options.log_path, "The furnace's log file (CSV)")
+  replay
+      ->add_option("--log", replay_options.logs,
+                   "The furnace's log file; FURNACE=FILE for another furnace that the load went through")
       ->required()
       ->check(CLI::ExistingFile);
   replay->add_option("--mapping", replay_options.mapping,

@@ -217,7 +217,11 @@ bool ConfigTable::texts(std::string_view key, std::vector<std::string>& into, st
   if (member == nullptr) return false;
   std::vector<std::string> found;
   for (const ConfigValue& element : member->value.array) {
-    if (element.kind != Kind::text || element.text.size() > max_length || has_control(element.text)) {
+    if (element.kind != Kind::text) {
+      report(element.place, std::string(key) + ": expected words, got " + std::string(name_of(element.kind)));
+      return false;
+    }
+    if (element.text.size() > max_length || has_control(element.text)) {
       report(element.place, std::string(key) + ": expected strings of at most " + std::to_string(max_length) +
                                 " bytes without control characters");
       return false;

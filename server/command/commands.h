@@ -3,6 +3,7 @@
 #pragma once
 
 #include <string>
+#include <vector>
 
 namespace hearthfront::server {
 
@@ -17,10 +18,12 @@ int run_serve(const std::string& settings_path);
 int run_check(const std::string& settings_path);
 
 struct ReplayOptions {
-  std::string plant_path, steels_path, load_path, log_path, mapping;
+  std::string plant_path, steels_path, load_path, mapping;
+  // "FILE" for the furnace where the load began, "FURNACE=FILE" for another on its path.
+  std::vector<std::string> logs;
   bool json = false;
 };
-// Runs a load on a log file, without daemon or database, and prints its result.
+// Runs a load on its log files, without daemon or database, and prints its result.
 int run_replay(const ReplayOptions& options);
 
 // Fills in what the daemon's own settings say (address, port, plant and steel files), then run_feed.

@@ -77,6 +77,36 @@ class FileReadings {
   std::size_t refused_ = 0, conflicts_ = 0;
 };
 
+const CsvMapping& mapping_of(const Furnace& furnace, const ReplayOptions& options) {
+  if (options.mapping.empty() && furnace.csv_mappings.size() == 1) return furnace.csv_mappings.front();
+  if (const CsvMapping* mapping = furnace.csv_mapping(options.mapping)) return *mapping;
+  throw Problem{422, "unknown-mapping", options.plant_path,
+                "furnace " + furnace.id + " has no CSV mapping \"" + options.mapping +
+                    "\"; name one of its [[furnace.csv]] with --mapping.",
+                "mapping"};
+}
+
+// Which furnace a --log is of, and its file.
+std::pair<const Furnace*, std::string> log_of(const std::string& word, const LoadDefinition& load) {
+  const auto equals = word.find('=');
+  if (equals != std::string::npos)
+    if (const Furnace* furnace = load.furnace(word.substr(0, equals)))
+      return {furnace, word.substr(equals + 1)};
+  return {&load.first_furnace(), word};
+}
+
+FileReadings read_log(const Furnace& furnace, const std::string& path, const ReplayOptions& options) {
+  const DecodedCsv decoded = decode_csv(read_file(path), furnace, mapping_of(furnace, options));
+  if (decoded.problem) throw Problem(*decoded.problem);
+  if (decoded.misfit) throw Problem(*decoded.misfit);
+  FileReadings readings(decoded, furnace);
+  if (readings.refused() + readings.conflicts() > 0)
+    std::fprintf(stderr,
+                 "%s: %zu readings refused, %zu set aside because another value stands at their time.\n",
+                 path.c_str(), readings.refused(), readings.conflicts());
+  return readings;
+}
+
 int replay(const ReplayOptions& options) {
   ConfigErrors errors;
   const Plant plant = read_plant(options.plant_path, options.steels_path, errors);
@@ -85,33 +115,22 @@ int replay(const ReplayOptions& options) {
 
   const auto definition =
       std::make_shared<const LoadDefinition>(read_load_body(read_file(options.load_path), plant));
-  const Furnace& furnace = definition->first_furnace();
-  const CsvMapping* mapping = nullptr;
-  if (!options.mapping.empty())
-    mapping = furnace.csv_mapping(options.mapping);
-  else if (furnace.csv_mappings.size() == 1)
-    mapping = &furnace.csv_mappings.front();
-  if (!mapping) {
-    std::fprintf(
-        stderr, "%s: furnace %s has no CSV mapping \"%s\"; name one of its [[furnace.csv]] with --mapping.\n",
-        options.plant_path.c_str(), furnace.id.c_str(), options.mapping.c_str());
-    return exit_bad_input;
+  std::map<std::string, FileReadings> readings;  // by furnace
+  std::int64_t newest_us = definition->started_us;
+  for (const std::string& word : options.logs) {
+    const auto [furnace, path] = log_of(word, *definition);
+    const auto [place, added] = readings.emplace(furnace->id, read_log(*furnace, path, options));
+    if (!added)
+      throw Problem{422, "two-logs", path, "furnace " + furnace->id + " has a log already; join the files.",
+                    "log"};
+    newest_us = std::max(newest_us, place->second.newest_us(definition->started_us));
   }
-  const std::string log = read_file(options.log_path);
-  const DecodedCsv decoded = decode_csv(log, furnace, *mapping);
-  if (decoded.problem) throw Problem(*decoded.problem);
-  if (decoded.misfit) throw Problem(*decoded.misfit);
-  const FileReadings readings(decoded, furnace);
-  if (readings.refused() + readings.conflicts() > 0)
-    std::fprintf(stderr,
-                 "%s: %zu readings refused, %zu set aside because another value stands at their time.\n",
-                 options.log_path.c_str(), readings.refused(), readings.conflicts());
-
-  const std::int64_t until = definition->ended_us.value_or(readings.newest_us(definition->started_us));
   ReadingSource source;
   source.readings = [&](const LoadChannels::Used& used, std::int64_t from, std::int64_t to) {
-    return used.furnace == furnace.id ? readings.in(used.name, from, to) : std::vector<Sample>{};
+    const auto found = readings.find(used.furnace);
+    return found == readings.end() ? std::vector<Sample>{} : found->second.in(used.name, from, to);
   };
+  const std::int64_t until = definition->ended_us.value_or(newest_us);
   const RunResult result = read_result(*derive(definition, source, until), definition);
   std::printf("%s\n", (options.json ? result_json(result) : result_table(result)).c_str());
   return exit_done;

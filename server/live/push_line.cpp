@@ -64,7 +64,8 @@ bool follow_line(LoadDefinition& load, storage::Reader& reader, std::int64_t unt
   if (!line || !line->line) return false;
   bool moved = false;
   int position = 1;
-  for (const storage::PushRow& push : reader.pushes(place.furnace, *came_us(load, place.from_us) + 1, until_us)) {
+  for (const storage::PushRow& push :
+       reader.pushes(place.furnace, *came_us(load, place.from_us) + 1, until_us)) {
     if (load.ended_us && push.at_us >= *load.ended_us) break;
     const auto zone = zone_at(*line, ++position);
     if (push.at_us <= load.last_place().from_us || zone == load.last_place().chamber) continue;

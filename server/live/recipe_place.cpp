@@ -82,6 +82,7 @@ std::int64_t RecipePlace::planned_end_us(const Recipe& recipe) const {
 
 void RecipePlace::enter(std::size_t index, std::int64_t from_us, PlacedBy by) {
   runs_.push_back({index, from_us, by});
+  been_here_ = false;
   due_us_.reset();
   left_us_.reset();
   next_us_.reset();
@@ -101,8 +102,11 @@ void RecipePlace::step(const Recipe& recipe, const FurnaceSight& sight, bool due
     const bool last = index + 1 == recipe.segments.size();
     const bool told_apart = !last && seen && apart(segment, recipe.segments[index + 1]);
     const bool there = told_apart && reads_like(sight, end_points(recipe.segments[index + 1]));
+    been_here_ = been_here_ || here;
     since(left_us_, seen && !here, sight.from_us);
-    since(next_us_, there && !here, sight.from_us);
+    // On its way to this segment's set points a gas may pass those of the next.
+    const bool may_go_on = been_here_ || planned_end_us(recipe) <= sight.to_us;
+    since(next_us_, may_go_on && there && !here, sight.from_us);
     const bool heating =
         seen && last_degc_ &&
         *sight.temperature_degc<segment.temperature_degc&& * sight.temperature_degc - *last_degc_>

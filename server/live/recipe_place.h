@@ -57,6 +57,7 @@ class RecipePlace {
   void enter(std::size_t index, std::int64_t from_us, PlacedBy by);
 
   std::vector<SegmentRun> runs_;
+  bool been_here_ = false;                  // whether the furnace has read like this segment
   std::optional<std::int64_t> due_us_;      // since when `until` is reached
   std::optional<std::int64_t> left_us_;     // since when the furnace no longer reads like this segment
   std::optional<std::int64_t> next_us_;     // since when it reads like the next

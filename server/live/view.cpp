@@ -4,6 +4,8 @@
 #include <cmath>
 #include <cstdio>
 
+#include "server/live/channel_health.h"
+
 namespace hearthfront::server {
 namespace {
 
@@ -102,6 +104,35 @@ History read_history(const LiveLoad& load, std::size_t max_points) {
   return history;
 }
 
+// The first channel of where the load is that shows something odd: stuck, noisy, jumping, drifting apart.
+std::string channel_trouble(const LiveLoad& load, std::int64_t now_us) {
+  const LoadDefinition& def = load.definition();
+  const PathStep& place = def.place_at(load.state_us());
+  const Furnace* furnace = place.outside() ? nullptr : def.furnace(place.furnace);
+  if (!furnace) return "";
+  const auto recent = [&](Role role) {
+    std::vector<Sample> samples;
+    const ChannelSeries* series = load.channels().series(def, load.state_us(), role);
+    if (!series) return samples;
+    for (const Sample& sample : series->samples())
+      if (sample.time_us > now_us - health_window_us && sample.time_us <= now_us) samples.push_back(sample);
+    return samples;
+  };
+  for (const LoadChannels::Used& used : load.channels().used()) {
+    if (used.furnace != place.furnace || used.chamber != place.chamber) continue;
+    Channel channel = *furnace->channel(used.name);
+    if (channel.unit == Unit::degf) channel.unit = Unit::degc;  // as the series has it
+    std::optional<Partner> partner;
+    if (used.role == Role::load_temperature)
+      partner = Partner{"the furnace thermocouple", recent(Role::temperature)};
+    const ChannelHealth health = judge(channel, recent(used.role), {}, partner, now_us);
+    if (health.health == Health::stuck || health.health == Health::noisy ||
+        health.health == Health::jumping || health.health == Health::drifting)
+      return "Channel " + used.name + ": " + health.sentence;
+  }
+  return "";
+}
+
 LoadView make_view(const LiveLoad& load, std::shared_ptr<const LoadDefinition> definition,
                    std::int64_t now_us, double stale_after_s) {
   LoadView view;
@@ -151,6 +182,7 @@ LoadView make_view(const LiveLoad& load, std::shared_ptr<const LoadDefinition> d
   else
     view.condition = Condition::live;
   view.message = say_what_is_amiss(view);
+  if (view.message.empty() && view.condition == Condition::live) view.message = channel_trouble(load, now_us);
   return view;
 }
 

@@ -109,7 +109,8 @@ TEST_CASE("mistakes in a channel") {
           {"name = \"u\"\nrole = \"carbon potential\"\nunit = \"wt_pct\"\n",
            "p.toml:11:8: role: expected \"temperature\", \"load_temperature\", \"probe_temperature\", "
            "\"probe_emf\", "
-           "\"carbon_potential\", \"co\", \"h2\", \"co2\", \"dew_point\", \"pressure\" or \"push\", got \"carbon potential\" (did you mean \"carbon_potential\"?)"},
+           "\"carbon_potential\", \"co\", \"h2\", \"co2\", \"dew_point\", \"pressure\" or \"push\", got "
+           "\"carbon potential\" (did you mean \"carbon_potential\"?)"},
           {"name = \"u\"\nrole = \"co\"\nunit = \"wt_pct\"\n",
            "p.toml:12:8: unit: co is given in \"vol_pct\", not in \"wt_pct\""},
           {"name = \"u\"\nrole = \"load_temperature\"\nunit = \"K\"\n",
@@ -160,7 +161,7 @@ TEST_CASE("mistakes in a logger mapping") {
           {"date_column = \"Date\"\ntime_format = \"epoch_s\"\n",
            "p.toml:12:15: date_column: time_format = \"epoch_s\" holds the day already"},
           {"no_value = [\"---\", 5]\n",
-           "p.toml:12:20: no_value: expected strings of at most 40 bytes without control characters"},
+           "p.toml:12:20: no_value: expected words, got an integer"},
           {"decimal = \"'\"\n", "p.toml:12:11: decimal: expected \".\" or \",\""},
           {"decimal = \",\"\n",
            "p.toml:12:11: decimal: separator and decimal sign are the same, so a number cannot be told from "

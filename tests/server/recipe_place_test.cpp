@@ -87,6 +87,15 @@ TEST_CASE("segments that read alike are told apart by time alone") {
   CHECK(walk.place.now().by == PlacedBy::recipe_time);
 }
 
+TEST_CASE("a gas that passes the next segment's set point on its way up is not there yet") {
+  Walk walk(boost_diffuse());
+  walk.see(930, 0.6, 5);
+  walk.see(930, 0.8, 8);  // slowly through 0.8
+  walk.see(930, 1.1, 10);
+  CHECK(walk.now() == "boost");
+  CHECK(walk.place.doubt(walk.recipe).empty());
+}
+
 TEST_CASE("a short disturbance of the gas is no change of segment") {
   Walk walk(boost_diffuse());
   walk.see(930, 1.1, 40);

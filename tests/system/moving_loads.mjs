@@ -1,6 +1,8 @@
 // Loads that move, on the real daemon: a two-chamber furnace with overlapping loads that are moved over the API, a
 // pusher line with thirty trays moved by its push counter, restarts in between. Each ended load's result is that of
 // `hearthfront replay` on the same log and path, byte for byte (invariant 2).
+import { writeFileSync } from 'node:fs';
+import { join } from 'node:path';
 import { Daemon, MINUTE_MS, MOVING, binary, check, demoDay, expect, finish, iso, replay, seededRandom, temporaryFolder, waitFor } from './support.mjs';
 import { PLACES } from '../../config/demo/line.mjs';
 
@@ -114,6 +116,29 @@ await check(`a line of ${PLACES} trays follows its push counter, through a SIGKI
   expect(one.path.length === 5 && one.ended_at === trays.at(-1).ended_at, JSON.stringify(one.path));
   const pushes = daemon.sql('select count(*), count(distinct at_us) from push').split('|');
   expect(pushes[0] === pushes[1] && Number(pushes[0]) >= trays.length, `pushes: ${pushes}`);
+  expect((await daemon.stop()).code === 0, 'stop');
+});
+
+await check('quenched from another furnace: reheated there by way of the floor, as replay has it from both logs', async () => {
+  const daemon = await Daemon.fresh();
+  const pit = demoDay(start_ms, HOURS, ['pit-2']);
+  const entry = twins[0];
+  // Out of the two-chamber furnace after its boost, an hour on the floor, then into the pit furnace beside its log.
+  const out_ms = start_ms + 200 * MINUTE_MS, in_ms = start_ms + 260 * MINUTE_MS, end_ms = start_ms + 330 * MINUTE_MS;
+  const { id } = await daemon.must('POST', '/api/v1/loads', entry.body);
+  await daemon.sendLog('twin-6', logs['twin-6'].text);
+  await daemon.must('POST', `/api/v1/loads/${id}/move`, { person: 'Test', outside: true, at: iso(out_ms) });
+  await daemon.must('POST', `/api/v1/loads/${id}/move`, { person: 'Test', furnace: 'pit-2', at: iso(in_ms) });
+  await daemon.sendLog('pit-2', pit.logs['pit-2'].text);
+  await daemon.must('POST', `/api/v1/loads/${id}/end`, { person: 'Test', ended_at: iso(end_ms) });
+  const path = [{ from: entry.body.started_at, furnace: 'twin-6', chamber: 'heating' }, { from: iso(out_ms), outside: true },
+    { from: iso(in_ms), furnace: 'pit-2', chamber: 'main' }];
+  const other = join(folder, 'pit-2.csv');
+  writeFileSync(other, pit.logs['pit-2'].text);
+  const want = replay(folder, { ...entry, path, ended_at: iso(end_ms) }, logs['twin-6'].text, ['--log', `pit-2=${other}`]).trimEnd();
+  wanted.set(entry.body.name, want);
+  await sameAsReplay(daemon, [entry], new Map([[entry.body.name, id]]));
+  expect(JSON.parse(want).inputs.carbon_potential.channels.includes('probe_emf'), 'the pit furnace was not heard');
   expect((await daemon.stop()).code === 0, 'stop');
 });
 

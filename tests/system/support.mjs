@@ -207,12 +207,12 @@ export function demoDay(start_ms, hours, furnaces = FURNACES) {
   return { loads, logs };
 }
 
-export function replay(folder, entry, log_text) {
+export function replay(folder, entry, log_text, more = []) {
   const load = join(folder, `${entry.body.furnace}-${entry.body.name}.json`);
   const log = join(folder, `${entry.body.furnace}.csv`);
   writeFileSync(load, JSON.stringify({ ...entry.body, ended_at: entry.ended_at, path: entry.path }));
   writeFileSync(log, log_text);
-  const words = ['replay', '--plant', PLANT, '--steels', STEELS, '--load', load, '--log', log, '--mapping', 'logger', '--json'];
+  const words = ['replay', '--plant', PLANT, '--steels', STEELS, '--load', load, '--log', log, '--mapping', 'logger', '--json', ...more];
   const answer = spawnSync(binary(), words, { encoding: 'utf8', maxBuffer: 1 << 26, timeout: 60000 });
   expect(answer.status === 0, `replay ended with ${answer.status}: ${answer.stderr}`);
   return answer.stdout;
