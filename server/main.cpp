@@ -45,8 +45,7 @@ int main(int argc, char** argv) {
   replay
       ->add_option("--log", replay_options.logs,
                    "The furnace's log file; FURNACE=FILE for another furnace that the load went through")
-      ->required()
-      ->check(CLI::ExistingFile);
+      ->required();
   replay->add_option("--mapping", replay_options.mapping,
                      "Name of the [[furnace.csv]] that describes the log file");
   replay->add_flag("--json", replay_options.json, "Print the result document instead of a table");
