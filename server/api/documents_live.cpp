@@ -27,10 +27,29 @@ Json age_or_null(std::optional<std::int64_t> time_us, std::int64_t now_us) {
   return time_us ? Json(static_cast<double>(now_us - *time_us) * 1e-6) : Json(nullptr);
 }
 
+// The instruments of the chamber that speak for a source.
+Json source_channels(const LoadDefinition& load, const PathStep& place, CarbonSource source) {
+  const auto serves = [&](Role role) {
+    if (role == role_of(source)) return true;
+    if (source == CarbonSource::logged) return false;
+    return role == Role::co || role == Role::pressure ||
+           (role == Role::h2 && source == CarbonSource::dew_point) ||
+           (role == Role::probe_temperature && source == CarbonSource::probe_emf);
+  };
+  Json names = Json::array();
+  if (const Furnace* furnace = load.furnace(place.furnace))
+    for (const Channel& channel : furnace->channels)
+      if (channel.chamber == place.chamber && serves(channel.role)) names.push_back(channel.name);
+  return names;
+}
+
 Json sources_json(const LoadView& view) {
+  const LoadDefinition& load = *view.result.definition;
+  const PathStep& place = load.place_at(view.result.state_us);
   Json sources = Json::array();
   for (const SourceValue& each : view.result.sources)
     sources.push_back({{"source", text(each.source)},
+                       {"channels", source_channels(load, place, each.source)},
                        {"value_wt_pct", each.carbon_potential_wt_pct},
                        {"basis", text(each.basis)},
                        {"leads", each.leads}});

@@ -54,9 +54,14 @@ std::string say_what_is_amiss(const LoadView& view) {
   if (view.segment.long_by_min > 0)
     return "Segment \"" + view.result.definition->recipe.segments[view.segment.index].name + "\" has run " +
            std::to_string(std::lround(view.segment.long_by_min)) + " min longer than planned.";
-  for (const NoteSpan& note : view.result.notes)
-    if (note.to_us == view.result.state_us && note.note != solver::note_paused_below_austenite)
+  // A part that is still heating is below its furnace's carbide limit for some minutes: that is no trouble.
+  constexpr std::int64_t usual_us = 15 * 60'000'000LL;
+  for (const NoteSpan& note : view.result.notes) {
+    const bool passing =
+        note.note == solver::note_capped_at_carbide_limit && note.to_us - note.from_us < usual_us;
+    if (note.to_us == view.result.state_us && note.note != solver::note_paused_below_austenite && !passing)
       return note_sentence(note.note);
+  }
   return "";
 }
 

@@ -1,15 +1,18 @@
 // A shift at the two-chamber furnace of a demo plant, by touch on a tablet: start a load from "Start again",
 // correct its steel, move it to the other chamber, mark a burn-off, choose between conflicting values, end it.
 //
-//   node shop_by_touch.mjs [http://127.0.0.1:8473] [folder for screenshots]     or HEARTHFRONT_URL=...
+//   node shop_by_touch.mjs [http://127.0.0.1:8473] [folder for screenshots]
 //
-// Needs a DEMO plant with the furnace "twin-6": its open loads are ended, readings of the last hours are posted.
+// Without an address it starts a daemon of its own (HEARTHFRONT_BIN) on the demo plant. One that is named must be a
+// DEMO plant with the furnace "twin-6": its open loads are ended, readings of the last hours are posted.
 // Exit code 0 when every check passed; the last line counts them.
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
+import { Daemon } from '../system/support.mjs';
 import { attempt, check, openBrowser, sizes, sound, verdict } from './harness.mjs';
 
-const [base = process.env.HEARTHFRONT_URL ?? 'http://127.0.0.1:8473', folder = join(tmpdir(), 'hearthfront-screens')] = process.argv.slice(2);
+const own = process.argv[2] ? null : await Daemon.fresh();
+const [base = own.url, folder = join(tmpdir(), 'hearthfront-screens')] = process.argv.slice(2);
 const furnace = 'twin-6', person = 'Touch test', minuteMs = 60_000, patient = { timeout: 60_000 };
 const iso = (ms) => `${new Date(ms).toISOString().slice(0, 19)}Z`;
 async function api(path, body, method = body ? 'POST' : 'GET') {
@@ -147,4 +150,5 @@ await attempt('end', async () => {
 });
 
 await browser.close();
+await own?.stop();
 process.exit(verdict());

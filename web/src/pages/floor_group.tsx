@@ -56,6 +56,6 @@ export function LineCard({ furnace, band }: Props) {
         <span>{load.item ? `${depthText(judgedDepthMm(load.item), length)} · ${reachText(load.item, length)}` : ''}</span>
         <span class="tray-marks">{marks(load).map((mark) => <span class={`mark ${mark.colour}`} key={mark.shape}><Shape name={mark.shape} /><b>{mark.word}</b></span>)}</span></a></li>)}</ol>
     </details>
-    {worst && <Row furnace={furnace} load={worst} band={band} name="Worst of the line" colour={state(worst)} />}
+    {worst && <Row furnace={furnace} load={worst} band={band} name={state(worst) === 'fine' ? 'Next off the line' : 'Worst of the line'} colour={state(worst)} />}
   </article>;
 }
