@@ -42,7 +42,7 @@ const body = (name, started_ms) => ({
       steel: '20MnCr5',
       section: { shape: 'cylinder', diameter_mm: 32 },
       criterion: { kind: 'hardness_hv', limit_hv: 550, martensite_pct: 95 },
-      case_depth_window_mm: [0.95, 1.25],
+      case_depth_window_mm: [0.8, 1.05],
       surface_carbon_window_wt_pct: [0.65, 0.9],
       grinding_stock_mm: 0.1,
       lag_min: 25,
