@@ -247,7 +247,8 @@ class Store {
   void revise_load(std::int64_t id, std::int64_t expected_revision, std::string definition_json,
                    std::optional<std::int64_t> ended_us, AuditRow audit);
   // All or none, in one transaction; `audits` has one row for each change, and `push` is kept with them.
-  // Fails with misuse as above, where there is nothing to change and no push, and where the furnace was already pushed at that time.
+  // Fails with misuse as above, where there is nothing to change and no push, and where the furnace was
+  // already pushed at that time.
   void revise_loads(std::vector<LoadChange> changes, std::vector<AuditRow> audits,
                     std::optional<PushRow> push = std::nullopt);
   std::int64_t add_note(LoadNote note);

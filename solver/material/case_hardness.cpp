@@ -28,8 +28,8 @@ double case_hardness_hv(double carbon, const Composition& steel, const HardnessT
     martensite -= drop->hv;
   }
   if (!treatment.quench_temperature_degc) return martensite;
-  const double f = counted_share(carbon) *
-                   retained_austenite_fraction(steel, carbon, *treatment.quench_temperature_degc);
+  const double f =
+      counted_share(carbon) * retained_austenite_fraction(steel, carbon, *treatment.quench_temperature_degc);
   return (1.0 - f) * martensite + f * austenite_hardness_hv;
 }
 

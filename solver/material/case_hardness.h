@@ -4,10 +4,10 @@
 // HV_austenite 225 (200-250, from memory). The martensite share is that of the transformation during the
 // quench, the same for the whole case: a case is taken as fully martensitic (99 %) unless told otherwise. Not
 // in it: intergranular oxidation (the first 20-30 um of a gas-carburized case are softer), carbides, bainite.
-// The measured martensite table (to 0.60 wt% C) holds the austenite of its own steels, so none is counted up to
-// there; the plateau from 0.80 on is martensite alone, so all of it is; in between the share rises straight. A
-// drawing's limit at 0.3-0.5 wt% C is therefore read off the table alone. Leave the quench temperature empty
-// to count none at all.
+// The measured martensite table (to 0.60 wt% C) holds the austenite of its own steels, so none is counted up
+// to there; the plateau from 0.80 on is martensite alone, so all of it is; in between the share rises
+// straight. A drawing's limit at 0.3-0.5 wt% C is therefore read off the table alone. Leave the quench
+// temperature empty to count none at all.
 #pragma once
 
 #include <optional>

@@ -160,8 +160,7 @@ TEST_CASE("mistakes in a logger mapping") {
            "p.toml:12:15: date_column: is the time column as well; leave it out where one column holds both"},
           {"date_column = \"Date\"\ntime_format = \"epoch_s\"\n",
            "p.toml:12:15: date_column: time_format = \"epoch_s\" holds the day already"},
-          {"no_value = [\"---\", 5]\n",
-           "p.toml:12:20: no_value: expected words, got an integer"},
+          {"no_value = [\"---\", 5]\n", "p.toml:12:20: no_value: expected words, got an integer"},
           {"decimal = \"'\"\n", "p.toml:12:11: decimal: expected \".\" or \",\""},
           {"decimal = \",\"\n",
            "p.toml:12:11: decimal: separator and decimal sign are the same, so a number cannot be told from "
