@@ -25,7 +25,7 @@ std::vector<Neighbour> neighbours(Connection& connection, std::int64_t load, con
   auto& query = connection.statement(
       "SELECT s.load, s.from_us, s.to_us, l.name FROM load_stay s JOIN load l ON l.id = s.load "
       "WHERE s.furnace = ?1 AND s.chamber = ?2 AND s.load <> ?3 AND (?5 IS NULL OR s.from_us < ?5) "
-      "AND (s.to_us IS NULL OR s.to_us > ?4) ORDER BY s.from_us");
+      "AND coalesce(s.to_us, 9223372036854775807) > ?4 ORDER BY s.from_us");
   query.bind(1, stay.furnace);
   query.bind(2, stay.chamber);
   query.bind(3, load);

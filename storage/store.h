@@ -188,7 +188,9 @@ class Reader {
   std::optional<LibraryRow> library_item(std::string_view kind, std::string_view key,
                                          std::int64_t version = 0);                       // 0 = newest
   std::vector<LibraryRow> library_versions(std::string_view kind, std::string_view key);  // oldest first
-  // Ended loads of a furnace that were in it at some time of [from, to], oldest first.
+  // Ended loads to which a reading of a furnace in [from, to] can matter, oldest first: they came into it
+  // by `to`, and had not ended before `from`. Those that had moved on by then are among them: the reading
+  // after a move says where the line from the one before it led.
   std::vector<LoadRow> ended_touching(std::string_view furnace, std::int64_t from_us, std::int64_t to_us);
   std::vector<LoadRow> ended_without_result();             // none for their present revision; oldest first
   std::vector<LoadRevision> revisions(std::int64_t load);  // oldest first
