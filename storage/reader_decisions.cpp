@@ -44,6 +44,14 @@ std::vector<Stay> Reader::stays(std::int64_t load) {
   });
 }
 
+std::vector<LoadOn> Reader::loads_on(std::string_view furnace) {
+  return impl_->read("read who is on a furnace", [&] {
+    auto& query = impl_->statement(HF_LOADS_ON_FURNACE);
+    query.bind(1, std::string(furnace));
+    return loads_on_from(query);
+  });
+}
+
 std::vector<PushRow> Reader::pushes(std::string_view furnace, std::int64_t from_us, std::int64_t to_us) {
   return impl_->read("read the pushes of a furnace", [&] {
     auto& query = impl_->statement(

@@ -126,4 +126,25 @@ void insert_push(Connection& connection, const PushRow& push) {
                                                utc_text(push.at_us) + ". Nothing was moved a second time.");
 }
 
+void refuse_unseen(Connection& connection, const LineSeen& seen) {
+  auto& last = connection.statement("SELECT max(at_us) FROM push WHERE furnace = ?");
+  last.bind(1, seen.furnace);
+  last.executeStep();
+  const auto pushed_us = optional_column(last, 0);
+  last.tryReset();
+  if (pushed_us != seen.last_push_us)
+    throw StorageError(StorageFault::misuse, "Furnace " + seen.furnace +
+                                                 " was pushed at this very moment. Nothing was changed; look "
+                                                 "where the trays are now, then repeat it.");
+  if (!seen.loads) return;
+  auto& query = connection.statement(HF_LOADS_ON_FURNACE);
+  query.bind(1, seen.furnace);
+  const auto present = loads_on_from(query);
+  query.tryReset();
+  if (present != *seen.loads)
+    throw StorageError(StorageFault::misuse, "A load of furnace " + seen.furnace +
+                                                 " was changed at this very moment. Nothing was moved; look "
+                                                 "where the trays are now, then repeat it.");
+}
+
 }  // namespace hearthfront::storage
