@@ -183,6 +183,7 @@ void Engine::note_newest(const storage::ChangedSpan& span, storage::Reader& read
 void Engine::apply_changes(storage::Reader& reader) {
   // Kept until every one is applied: after a failure the next round has them still.
   for (const storage::ChangedSpan& span : parts_.store.take_changes()) pending_.push_back(span);
+  std::map<std::int64_t, storage::LoadRow> ended;
   for (const storage::ChangedSpan& span : pending_) {
     note_newest(span, reader);
     for (auto& [id, tracked] : tracked_) {
@@ -200,10 +201,12 @@ void Engine::apply_changes(storage::Reader& reader) {
         parts_.channel_id(furnace->second, line->second->name) == span.channel)
       pushes_may_wait_ = true;
     // A reading before a load came is the first of the line that leads into it.
-    for (const storage::LoadRow& row :
-         reader.ended_touching(furnace->second, span.from_us, span.to_us + reach_us_.at(furnace->second)))
-      finish(reader, row);
+    const std::int64_t until_us = span.to_us + reach_us_.at(furnace->second);
+    for (storage::LoadRow& row : reader.ended_touching(furnace->second, span.from_us, until_us))
+      ended.insert_or_assign(row.id, std::move(row));
   }
+  // Once each, however many channels a late file has.
+  for (const auto& [id, row] : ended) finish(reader, row);
   pending_.clear();
 }
 
