@@ -44,6 +44,14 @@ std::vector<Stay> Reader::stays(std::int64_t load) {
   });
 }
 
+std::vector<LoadOn> Reader::loads_on(std::string_view furnace) {
+  return impl_->read("read who is on a furnace", [&] {
+    auto& query = impl_->statement(HF_LOADS_ON_FURNACE);
+    query.bind(1, std::string(furnace));
+    return loads_on_from(query);
+  });
+}
+
 std::vector<PushRow> Reader::pushes(std::string_view furnace, std::int64_t from_us, std::int64_t to_us) {
   return impl_->read("read the pushes of a furnace", [&] {
     auto& query = impl_->statement(
@@ -113,6 +121,11 @@ std::vector<Conflict> Reader::conflicts(std::int64_t channel, std::int64_t from_
                                         int limit) {
   check_limit(limit);
   return impl_->read("read conflicting readings", [&] {
+    // The search ends with the last conflict there is: a channel without any is not read through.
+    auto& total = impl_->statement("SELECT conflicts FROM channel WHERE id = ?");
+    total.bind(1, channel);
+    const std::int64_t known = total.executeStep() ? total.getColumn(0).getInt64() : 0;
+    if (known == 0) return std::vector<Conflict>{};
     const auto chosen = impl_->choices(channel, from_us, to_us);
     auto& query = impl_->statement(
         "SELECT time_us, value FROM reading WHERE channel = ?1 AND time_us IN (SELECT time_us FROM reading "
@@ -121,7 +134,7 @@ std::vector<Conflict> Reader::conflicts(std::int64_t channel, std::int64_t from_
     query.bind(1, channel);
     query.bind(2, from_us);
     query.bind(3, to_us);
-    query.bind(4, limit);
+    query.bind(4, std::min<std::int64_t>(limit, known));
     std::vector<Conflict> rows;
     while (query.executeStep()) {
       const std::int64_t time_us = query.getColumn(0).getInt64();

@@ -63,9 +63,9 @@ std::vector<LoadRow> Reader::ended_touching(std::string_view furnace, std::int64
                                             std::int64_t to_us) {
   return impl_->read("list ended loads of a stretch of time", [&] {
     auto& query = impl_->statement("SELECT " HF_LOAD_COLUMNS
-                                   " FROM load WHERE ended_us IS NOT NULL AND id IN (SELECT load FROM "
-                                   "load_stay WHERE furnace = ?1 AND from_us <= ?3 AND to_us >= ?2) "
-                                   "ORDER BY id");
+                                   " FROM load WHERE ended_us >= ?2 AND EXISTS(SELECT 1 FROM load_stay s "
+                                   "WHERE s.load = load.id AND s.furnace = ?1 AND s.from_us <= ?3) "
+                                   "ORDER BY +id");
     query.bind(1, std::string(furnace));
     query.bind(2, from_us);
     query.bind(3, to_us);

@@ -43,4 +43,11 @@ Stay stay_from(SQLite::Statement& statement) {
           .places = statement.getColumn(4).getInt64()};
 }
 
+std::vector<LoadOn> loads_on_from(SQLite::Statement& statement) {
+  std::vector<LoadOn> rows;
+  while (statement.executeStep())
+    rows.push_back({statement.getColumn(0).getInt64(), statement.getColumn(1).getInt64()});
+  return rows;
+}
+
 }  // namespace hearthfront::storage

@@ -3,6 +3,7 @@
 
 #include <cstdint>
 #include <optional>
+#include <vector>
 
 #include "storage/store.h"
 
@@ -23,5 +24,10 @@ LoadRow load_from(SQLite::Statement& statement);
 
 #define HF_STAY_COLUMNS "furnace, chamber, from_us, to_us, places"
 Stay stay_from(SQLite::Statement& statement);
+
+#define HF_LOADS_ON_FURNACE                                                                          \
+  "SELECT id, revision FROM load WHERE ended_us IS NULL AND EXISTS(SELECT 1 FROM load_stay s WHERE " \
+  "s.load = load.id AND s.furnace = ? AND s.to_us IS NULL) ORDER BY id"
+std::vector<LoadOn> loads_on_from(SQLite::Statement& statement);
 
 }  // namespace hearthfront::storage

@@ -144,8 +144,20 @@ CREATE INDEX mask_channel ON mask(channel, from_us);
 CREATE TRIGGER mask_no_delete BEFORE DELETE ON mask BEGIN SELECT RAISE(ABORT, 'masks are withdrawn, never deleted'); END;
 )sql";
 
-constexpr std::array<Migration, 2> all_migrations{
-    {{1, "first tables", first_tables}, {2, "moving loads", moving_loads}}};
+// A chamber is asked who is in it now, and readings which ended loads they still reach: neither may take
+// longer the more past loads are stored, so both are found by when they end.
+constexpr const char* ends_found = R"sql(
+CREATE INDEX load_stay_end ON load_stay(furnace, chamber, coalesce(to_us, 9223372036854775807));
+CREATE INDEX load_ended ON load(ended_us) WHERE ended_us IS NOT NULL;
+DROP TRIGGER load_stay_no_overlap;
+CREATE TRIGGER load_stay_no_overlap BEFORE INSERT ON load_stay WHEN NEW.places = 1 AND EXISTS(
+  SELECT 1 FROM load_stay WHERE furnace = NEW.furnace AND chamber = NEW.chamber AND load <> NEW.load
+    AND (NEW.to_us IS NULL OR from_us < NEW.to_us) AND coalesce(to_us, 9223372036854775807) > NEW.from_us)
+  BEGIN SELECT RAISE(ABORT, 'another load is in this chamber at that time'); END;
+)sql";
+
+constexpr std::array<Migration, 3> all_migrations{
+    {{1, "first tables", first_tables}, {2, "moving loads", moving_loads}, {3, "ends found", ends_found}}};
 
 int pragma_number(Connection& connection, const char* pragma) {
   return connection.database().execAndGet(pragma).getInt();

@@ -25,7 +25,7 @@ std::vector<Neighbour> neighbours(Connection& connection, std::int64_t load, con
   auto& query = connection.statement(
       "SELECT s.load, s.from_us, s.to_us, l.name FROM load_stay s JOIN load l ON l.id = s.load "
       "WHERE s.furnace = ?1 AND s.chamber = ?2 AND s.load <> ?3 AND (?5 IS NULL OR s.from_us < ?5) "
-      "AND (s.to_us IS NULL OR s.to_us > ?4) ORDER BY s.from_us");
+      "AND coalesce(s.to_us, 9223372036854775807) > ?4 ORDER BY s.from_us");
   query.bind(1, stay.furnace);
   query.bind(2, stay.chamber);
   query.bind(3, load);
@@ -124,6 +124,27 @@ void insert_push(Connection& connection, const PushRow& push) {
   if (insert.exec() == 1) return;
   throw StorageError(StorageFault::misuse, "Furnace " + push.furnace + " was already pushed at " +
                                                utc_text(push.at_us) + ". Nothing was moved a second time.");
+}
+
+void refuse_unseen(Connection& connection, const LineSeen& seen) {
+  auto& last = connection.statement("SELECT max(at_us) FROM push WHERE furnace = ?");
+  last.bind(1, seen.furnace);
+  last.executeStep();
+  const auto pushed_us = optional_column(last, 0);
+  last.tryReset();
+  if (pushed_us != seen.last_push_us)
+    throw StorageError(StorageFault::misuse, "Furnace " + seen.furnace +
+                                                 " was pushed at this very moment. Nothing was changed; look "
+                                                 "where the trays are now, then repeat it.");
+  if (!seen.loads) return;
+  auto& query = connection.statement(HF_LOADS_ON_FURNACE);
+  query.bind(1, seen.furnace);
+  const auto present = loads_on_from(query);
+  query.tryReset();
+  if (present != *seen.loads)
+    throw StorageError(StorageFault::misuse, "A load of furnace " + seen.furnace +
+                                                 " was changed at this very moment. Nothing was moved; look "
+                                                 "where the trays are now, then repeat it.");
 }
 
 }  // namespace hearthfront::storage

@@ -20,5 +20,6 @@ std::vector<Stay> stays_of(Connection& connection, std::int64_t load);
 void remove_stays(Connection& connection, std::int64_t load);
 void insert_stays(Connection& connection, const LoadRow& load, const std::vector<Stay>& stays);
 void insert_push(Connection& connection, const PushRow& push);
+void refuse_unseen(Connection& connection, const LineSeen& seen);
 
 }  // namespace hearthfront::storage

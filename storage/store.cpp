@@ -15,6 +15,7 @@
 #include "storage/library.h"
 #include "storage/loads.h"
 #include "storage/schema.h"
+#include "storage/stays.h"
 #include "storage/writer.h"
 
 namespace hearthfront::storage {
@@ -213,22 +214,26 @@ std::int64_t Store::create_load(LoadRow row, AuditRow audit) {
   return create_load(std::move(row), {}, std::move(audit));
 }
 
-std::int64_t Store::create_load(LoadRow row, std::vector<Stay> stays, AuditRow audit) {
+std::int64_t Store::create_load(LoadRow row, std::vector<Stay> stays, AuditRow audit,
+                                std::optional<LineSeen> seen) {
   check_name("load", row.name);
   check_name("furnace", row.furnace);
   std::int64_t id = 0;
-  impl_->writer().run(0, Writer::Kind::fallible,
-                      [&](Tables& tables) { id = insert_load(tables.connection, row, stays, audit); });
+  impl_->writer().run(0, Writer::Kind::fallible, [&](Tables& tables) {
+    if (seen) refuse_unseen(tables.connection, *seen);
+    id = insert_load(tables.connection, row, stays, audit);
+  });
   return id;
 }
 
 void Store::revise_loads(std::vector<LoadChange> changes, std::vector<AuditRow> audits,
-                         std::optional<PushRow> push) {
+                         std::optional<PushRow> push, std::optional<LineSeen> seen) {
   for (const LoadChange& change : changes) {
     check_name("load", change.row.name);
     check_name("furnace", change.row.furnace);
   }
   impl_->writer().run(0, Writer::Kind::fallible, [&](Tables& tables) {
+    if (seen) refuse_unseen(tables.connection, *seen);
     storage::revise_loads(tables.connection, changes, audits, push);
   });
 }

@@ -81,6 +81,20 @@ struct LoadChange {
   std::vector<Stay> stays;
 };
 
+// A load that is on a furnace and has no end there yet.
+struct LoadOn {
+  std::int64_t load = 0, revision = 0;
+  bool operator==(const LoadOn&) const = default;
+};
+
+// What a change of a pusher line was worked out from. Between that look and the change others may push the
+// line, or put loads on it; then the change would miss a push, or the push a load.
+struct LineSeen {
+  std::string furnace;
+  std::optional<std::int64_t> last_push_us;
+  std::optional<std::vector<LoadOn>> loads;  // empty: it does not matter who is there
+};
+
 // A pusher line moved on by one tray.
 struct PushRow {
   std::string furnace;
@@ -179,8 +193,9 @@ class Reader {
   // counts for every furnace it was in.
   std::vector<LoadRow> loads(std::string_view furnace, std::optional<bool> open, std::int64_t before_id,
                              int limit);
-  std::vector<LoadRow> open_loads();           // oldest first
-  std::vector<Stay> stays(std::int64_t load);  // oldest first
+  std::vector<LoadRow> open_loads();                       // oldest first
+  std::vector<LoadOn> loads_on(std::string_view furnace);  // oldest first
+  std::vector<Stay> stays(std::int64_t load);              // oldest first
   std::vector<PushRow> pushes(std::string_view furnace, std::int64_t from_us, std::int64_t to_us);
   std::optional<PushRow> last_push(std::string_view furnace, std::string_view source);  // empty = any source
   // Newest version of each entry that is not retired, by name.
@@ -188,7 +203,9 @@ class Reader {
   std::optional<LibraryRow> library_item(std::string_view kind, std::string_view key,
                                          std::int64_t version = 0);                       // 0 = newest
   std::vector<LibraryRow> library_versions(std::string_view kind, std::string_view key);  // oldest first
-  // Ended loads of a furnace that were in it at some time of [from, to], oldest first.
+  // Ended loads to which a reading of a furnace in [from, to] can matter, oldest first: they came into it
+  // by `to`, and had not ended before `from`. Those that had moved on by then are among them: the reading
+  // after a move says where the line from the one before it led.
   std::vector<LoadRow> ended_touching(std::string_view furnace, std::int64_t from_us, std::int64_t to_us);
   std::vector<LoadRow> ended_without_result();             // none for their present revision; oldest first
   std::vector<LoadRevision> revisions(std::int64_t load);  // oldest first
@@ -241,7 +258,9 @@ class Store {
   // loads would be in a chamber at a time than it has places. `id` and `revision` of `row` are ignored;
   // created_us 0 and an empty audit subject are filled in: the audit's time, and "load <id>".
   std::int64_t create_load(LoadRow row, AuditRow audit);
-  std::int64_t create_load(LoadRow row, std::vector<Stay> stays, AuditRow audit);
+  // With `seen`: misuse where the line is no longer as it was seen; look again and repeat.
+  std::int64_t create_load(LoadRow row, std::vector<Stay> stays, AuditRow audit,
+                           std::optional<LineSeen> seen = std::nullopt);
   // A dated revision; revision + 1. An empty `definition_json` keeps the stored one; `ended_us` is the end
   // from now on (none = the load is open). Fails with misuse on a wrong `expected_revision` and on overlap.
   void revise_load(std::int64_t id, std::int64_t expected_revision, std::string definition_json,
@@ -250,7 +269,7 @@ class Store {
   // Fails with misuse as above, where there is nothing to change and no push, and where the furnace was
   // already pushed at that time.
   void revise_loads(std::vector<LoadChange> changes, std::vector<AuditRow> audits,
-                    std::optional<PushRow> push = std::nullopt);
+                    std::optional<PushRow> push = std::nullopt, std::optional<LineSeen> seen = std::nullopt);
   std::int64_t add_note(LoadNote note);
   // A new version of a library entry; returns its number. misuse: `expected_version` is not the newest (0 =
   // there is none yet).

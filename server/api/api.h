@@ -9,6 +9,7 @@
 #include <memory>
 #include <mutex>
 #include <string>
+#include <tuple>
 #include <utility>
 
 #include "server/api/documents.h"
@@ -126,8 +127,8 @@ class Api {
   ApiParts parts_;
   ReaderPool readers_;
   std::mutex past_mutex_;
-  std::map<std::pair<std::int64_t, std::int64_t>, std::shared_ptr<const LoadView>>
-      past_views_;  // by id and age of the stored result
+  // By load, its revision, and age of the stored result.
+  std::map<std::tuple<std::int64_t, std::int64_t, std::int64_t>, std::shared_ptr<const LoadView>> past_views_;
 };
 
 }  // namespace hearthfront::server

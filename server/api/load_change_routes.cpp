@@ -156,8 +156,11 @@ Response Api::move_load(const Request& request) {
     fields.fail("chamber", "the load is there already.");
   if (step.from_us <= last.from_us)
     fields.fail("at", "must be later than " + format_time(last.from_us) + ", when it came to where it is.");
+  const bool onto_line = !step.outside() && step.furnace != last.furnace;
   load.path.push_back(step);
   check_times(load);
+  // One that is entered late is where the line has carried it since.
+  if (onto_line) follow_line(load, *readers_.take(), now);
   const std::string where = step.outside() ? "outside" : step.furnace + " " + step.chamber;
   return changed(
       found, load,

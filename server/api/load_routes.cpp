@@ -71,15 +71,32 @@ void Api::check_times(const LoadDefinition& load) const {
 }
 
 Response Api::create_load(const Request& request) {
-  LoadDefinition load = read_load_body(with_rework(request.body), parts_.plant);
-  check_times(load);
+  const LoadDefinition wanted = read_load_body(with_rework(request.body), parts_.plant);
+  check_times(wanted);
   const std::int64_t now = parts_.clock.now_us();
-  if (load.path.size() == 1) follow_line(load, *readers_.take(), now);
-  storage::LoadRow row = row_of(load);
-  row.created_us = now;
-  const storage::AuditRow audit{now, load.person, "start load", "", "", load_body(load)};
-  row.id = as_conflict("chamber-in-use", "Another load is in this chamber",
-                       [&] { return parts_.store.create_load(row, stays_of(load), audit); });
+  LoadDefinition load;
+  storage::LoadRow row;
+  as_conflict("chamber-in-use", "Another load is in this chamber", [&] {
+    // A line that is pushed while its tray is entered carries that tray too.
+    for (int left = 3;; --left) {
+      load = wanted;
+      std::optional<storage::LineSeen> seen;
+      if (load.path.size() == 1 && load.first_furnace().line) {
+        auto reader = readers_.take();
+        seen = line_seen(load.first_furnace().id, *reader);
+        follow_line(load, *reader, now);
+      }
+      row = row_of(load);
+      row.created_us = now;
+      try {
+        row.id = parts_.store.create_load(row, stays_of(load),
+                                          {now, load.person, "start load", "", "", load_body(load)}, seen);
+        return 0;
+      } catch (const storage::StorageError& error) {
+        if (error.fault != storage::StorageFault::misuse || !seen || left == 1) throw;
+      }
+    }
+  });
   row.revision = 1;
   parts_.loads_changed();
   return {201,

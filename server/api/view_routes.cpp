@@ -13,6 +13,10 @@ namespace {
 
 constexpr std::size_t past_views_kept = 16;
 
+std::string view_tag(const LoadView& view) {
+  return std::to_string(view.row.revision) + "-" + std::to_string(view.sequence);
+}
+
 Response with_etag(const Request& request, const std::string& etag, const std::string& body) {
   const auto known = request.headers.find("if-none-match");
   const bool same = known != request.headers.end() && known->second == etag;
@@ -55,16 +59,17 @@ std::shared_ptr<const LoadView> Api::view_of(const FoundLoad& found) {
     // A load of this very second is not on the board yet; its run is short, so it is worked out here.
     return view && view->row.revision == found.row.revision ? view : derive_view(found, *reader);
   }
-  // A late reading changes a past result without a new revision of the load, so the stored result's time
-  // is part of the key.
+  // A late reading changes a past result without a new revision of the load, and a correction is a new
+  // revision before it has its result: both are part of the key.
   const auto stored = reader->result(found.row.id);
-  const auto key = std::make_pair(found.row.id, stored ? stored->computed_us : 0);
+  const std::int64_t computed_us = stored ? stored->computed_us : 0;
+  const auto key = std::make_tuple(found.row.id, found.row.revision, computed_us);
   {
     const std::scoped_lock lock(past_mutex_);
     if (const auto it = past_views_.find(key); it != past_views_.end()) return it->second;
   }
   auto view = derive_view(found, *reader);
-  view->sequence = static_cast<std::uint64_t>(key.second);
+  view->sequence = static_cast<std::uint64_t>(computed_us);
   const std::scoped_lock lock(past_mutex_);
   if (past_views_.size() >= past_views_kept) past_views_.erase(past_views_.begin());
   past_views_[key] = view;
@@ -76,12 +81,15 @@ Response Api::snapshot(const Request& request) {
   const auto view = view_of(found);
   auto reader = readers_.take();
   const auto notes = reader->notes(found.row.id);
-  const std::string etag = "\"" + std::to_string(view->sequence) + "-" + std::to_string(notes.size()) + "\"";
+  const std::string etag = "\"" + view_tag(*view) + "-" + std::to_string(notes.size()) + "\"";
   return with_etag(request, etag, snapshot_json(*view, notes));
 }
 
 Response Api::result(const Request& request) {
   const FoundLoad found = find_load(request);
+  if (found.row.cancelled)
+    throw Problem{409, "load-cancelled", "The load was cancelled",
+                  "Load " + found.row.name + " was never treated, so it has no result.", ""};
   if (!found.row.ended_us) return {200, "application/json", result_json(view_of(found)->result), {}};
   auto reader = readers_.take();
   return {200, "application/json", final_result(found, *reader), {}};
@@ -98,7 +106,7 @@ std::string Api::final_result(const FoundLoad& found, storage::Reader& reader) {
 Response Api::history(const Request& request) {
   const FoundLoad found = find_load(request);
   const auto view = view_of(found);
-  return with_etag(request, "\"" + std::to_string(view->sequence) + "\"", history_json(*view->history));
+  return with_etag(request, "\"" + view_tag(*view) + "\"", history_json(*view->history));
 }
 
 }  // namespace hearthfront::server

@@ -2,7 +2,9 @@
 
 #include <algorithm>
 #include <chrono>
+#include <cmath>
 #include <limits>
+#include <utility>
 
 #include "server/base/log.h"
 #include "server/base/time_text.h"
@@ -45,11 +47,15 @@ ReadingSource stored_readings(
 }
 
 Engine::Engine(EngineParts parts) : parts_(std::move(parts)) {
-  for (const Furnace& furnace : parts_.plant.furnaces)
+  for (const Furnace& furnace : parts_.plant.furnaces) {
+    std::int64_t& reach_us = reach_us_[furnace.id];
     for (const Channel& channel : furnace.channels) {
+      const double reach_s = std::max(channel.gap_limit_s, channel.hold_limit_s);
+      reach_us = std::max<std::int64_t>(reach_us, std::llround(reach_s * 1e6));
       furnace_of_channel_[parts_.channel_id(furnace.id, channel.name)] = furnace.id;
       if (furnace.line && channel.role == Role::push) push_channels_[furnace.id] = &channel;
     }
+  }
 }
 
 Engine::~Engine() {
@@ -136,6 +142,15 @@ void Engine::reconcile(storage::Reader& reader) {
     it = still ? std::next(it) : tracked_.erase(it);
   }
   for (const storage::LoadRow& row : reader.ended_without_result()) finish(reader, row);
+  for (const std::int64_t id : std::exchange(unfinished_, {}))
+    if (const auto row = reader.load(id); row && row->ended_us && !row->cancelled) finish(reader, *row);
+  // Also those that need no result any more: cancelled ones, and one that ended while its view was made.
+  for (const auto& view : parts_.board.loads()) {
+    const std::int64_t id = view->row.id;
+    if (std::any_of(open.begin(), open.end(), [&](const auto& row) { return row.id == id; })) continue;
+    parts_.board.remove(id);
+    fresh_views_.push_back(id);
+  }
   for (const storage::LoadRow& row : open) {
     if (tracked_.contains(row.id)) continue;
     try {
@@ -157,16 +172,20 @@ void Engine::reconcile(storage::Reader& reader) {
   }
 }
 
-void Engine::note_newest(const storage::ChangedSpan& span) {
+// A span may also be that of a mark, which reaches where there are no readings.
+void Engine::note_newest(const storage::ChangedSpan& span, storage::Reader& reader) {
   const auto furnace = furnace_of_channel_.find(span.channel);
-  if (furnace != furnace_of_channel_.end()) parts_.board.set_newest_reading(furnace->second, span.to_us);
+  if (furnace == furnace_of_channel_.end()) return;
+  if (const auto newest = reader.newest(span.channel, span.to_us))
+    parts_.board.set_newest_reading(furnace->second, newest->time_us);
 }
 
 void Engine::apply_changes(storage::Reader& reader) {
   // Kept until every one is applied: after a failure the next round has them still.
   for (const storage::ChangedSpan& span : parts_.store.take_changes()) pending_.push_back(span);
+  std::map<std::int64_t, storage::LoadRow> ended;
   for (const storage::ChangedSpan& span : pending_) {
-    note_newest(span);
+    note_newest(span, reader);
     for (auto& [id, tracked] : tracked_) {
       for (std::size_t used = 0; used < tracked.channels.size(); ++used) {
         const std::int64_t from = std::max(span.from_us, tracked.load->readings_from_us());
@@ -181,9 +200,13 @@ void Engine::apply_changes(storage::Reader& reader) {
         line != push_channels_.end() &&
         parts_.channel_id(furnace->second, line->second->name) == span.channel)
       pushes_may_wait_ = true;
-    for (const storage::LoadRow& row : reader.ended_touching(furnace->second, span.from_us, span.to_us))
-      finish(reader, row);
+    // A reading before a load came is the first of the line that leads into it.
+    const std::int64_t until_us = span.to_us + reach_us_.at(furnace->second);
+    for (storage::LoadRow& row : reader.ended_touching(furnace->second, span.from_us, until_us))
+      ended.insert_or_assign(row.id, std::move(row));
   }
+  // Once each, however many channels a late file has.
+  for (const auto& [id, row] : ended) finish(reader, row);
   pending_.clear();
 }
 
@@ -191,7 +214,6 @@ void Engine::apply_changes(storage::Reader& reader) {
 // late, the line has moved on since.
 void Engine::follow_pushes(storage::Reader& reader) {
   if (!pushes_may_wait_) return;
-  pushes_may_wait_ = false;
   for (const auto& [id, channel] : push_channels_) {
     const Furnace& line = *parts_.plant.furnace(id);
     const std::int64_t signal = parts_.channel_id(id, channel->name);
@@ -212,6 +234,7 @@ void Engine::follow_pushes(storage::Reader& reader) {
       }
     }
   }
+  pushes_may_wait_ = false;
   if (loads_dirty_) wake();
 }
 
@@ -254,11 +277,14 @@ void Engine::finish(storage::Reader& reader, const storage::LoadRow& row) {
     parts_.metrics.add(Total::engine_steps, static_cast<double>(load->steps()));
     const std::string json = result_json(read_result(*load, definition));
     const auto stored = reader.result(row.id);
-    if (!stored || stored->result_json != json)
+    // One for each revision, even where a correction changed nothing that the result shows.
+    if (!stored || stored->revision != row.revision || stored->result_json != json)
       parts_.store.save_result(
           {row.id, row.revision, parts_.clock.now_us(), definition->model_version, json, false});
   } catch (const storage::StorageError& error) {
+    // Remembered by number: one that a late reading changed has an older result, so nobody would miss it.
     log_warn("a result could not be stored yet", {{"load", row.id}, {"what", error.what()}});
+    unfinished_.insert(row.id);
     loads_dirty_ = true;
   } catch (const std::exception& error) {
     log_error("an ended load has no result", {{"load", row.id}, {"name", row.name}, {"what", error.what()}});

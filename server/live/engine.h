@@ -13,6 +13,7 @@
 #include <map>
 #include <memory>
 #include <mutex>
+#include <set>
 #include <string>
 #include <thread>
 #include <vector>
@@ -78,13 +79,15 @@ class Engine {
   void refresh_views(storage::Reader& reader);
   void refresh(Tracked& tracked, storage::Reader& reader, std::int64_t now_us);
   void finish(storage::Reader& reader, const storage::LoadRow& row);
-  void note_newest(const storage::ChangedSpan& span);
+  void note_newest(const storage::ChangedSpan& span, storage::Reader& reader);
   ReadingSource source(storage::Reader& reader) const { return stored_readings(reader, parts_.channel_id); }
 
   EngineParts parts_;
   std::map<std::int64_t, std::string> furnace_of_channel_;
+  std::map<std::string, std::int64_t> reach_us_;  // how far a reading of each furnace can speak
   std::map<std::int64_t, Tracked> tracked_;
   std::vector<storage::ChangedSpan> pending_;
+  std::set<std::int64_t> unfinished_;                    // ended loads whose result could not be stored
   std::map<std::string, const Channel*> push_channels_;  // of lines, by furnace
   bool pushes_may_wait_ = true;
   std::vector<std::int64_t> fresh_views_;

@@ -23,7 +23,8 @@ storage::LoadRow row_of(const LoadDefinition& load);
 
 // When the load came onto the furnace it is in at `at_us`, without leaving it since; empty outside.
 std::optional<std::int64_t> came_us(const LoadDefinition& load, std::int64_t at_us);
-// 1 is the first tray position. Empty where the load is on no line.
+// 1 is the first tray position: the pushes since the load came, from the first position of the zone that it
+// came into or was put into by hand. Empty where the load is on no line.
 std::optional<int> line_position(const LoadDefinition& load, storage::Reader& reader, std::int64_t at_us);
 // The zone that a position lies in; empty beyond the last.
 std::optional<std::string> zone_at(const Furnace& line, int position);
@@ -31,6 +32,10 @@ std::optional<std::string> zone_at(const Furnace& line, int position);
 // Takes a load through the pushes that happened since it came where it is: a tray that is entered late is
 // where the line has carried it. Returns whether anything changed.
 bool follow_line(LoadDefinition& load, storage::Reader& reader, std::int64_t until_us);
+
+// How the pushes of a line stand, to be looked at before follow_line: the store refuses a load that was put
+// on the line by it where the line was pushed meanwhile.
+storage::LineSeen line_seen(const std::string& furnace, storage::Reader& reader);
 
 struct MovedLoad {
   std::int64_t id = 0;

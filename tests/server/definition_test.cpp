@@ -107,3 +107,34 @@ TEST_CASE("defaults are filled in from the plant and kept with the load") {
   // Hodge & Orehoski's table with ASTM E140: 550 HV at 95 % martensite is 0.400 %C.
   CHECK(def->items[0].criterion.carbon_limit_wt_pct == doctest::Approx(0.400).epsilon(0.002));
 }
+
+TEST_CASE("what the first version stored with a load is still read, and runs") {
+  const std::string stored = R"({"model_version":"gas-carburizing 1",
+    "load":{"name":"2290","furnace":"pit-2","chamber":"main","person":"Day shift","started_at":"2026-03-02T06:00:00Z",
+      "ended_at":"2026-03-02T09:00:00Z","charge_temperature_degc":20.0,"lattice_s":60.0,
+      "recipe":{"name":"1.1 then 0.8","segments":[
+        {"name":"boost","duration_min":120.0,"temperature_degc":930.0,"carbon_potential_wt_pct":1.1},
+        {"name":"diffuse","duration_min":60.0,"temperature_degc":930.0,"carbon_potential_wt_pct":0.8}]},
+      "items":[{"name":"A","part":"Pinion","quantity":40,
+        "steel":{"name":"20MnCr5","composition_wt_pct":{"C":0.195,"Mn":1.25,"Cr":1.15,"Ni":0.0,"Mo":0.0,"Si":0.25}},
+        "core_carbon_wt_pct":0.195,"section":{"shape":"plate","thickness_mm":12.0},
+        "criterion":{"kind":"hardness_hv","limit_hv":550.0,"martensite_pct":95.0},
+        "case_depth_window_mm":[0.4,0.8],"lag_min":20.0}]},
+    "furnace":{"id":"pit-2","name":"Pit 2","process":"gas-carburizing","co_fraction":0.2,"h2_fraction":0.4,
+      "lag_min":20.0,"total_pressure_bar":1.01325,"diffusivity":"agren","chambers":[{"id":"main","name":"Main"}],
+      "channels":[{"name":"temperature","role":"temperature","unit":"degC","chamber":"main","low":0.0,"high":1100.0,
+        "expected_interval_s":60.0,"gap_limit_s":300.0,"hold_limit_s":600.0}]}})";
+  const auto load = std::make_shared<const LoadDefinition>(read_stored_definition(stored));
+  CHECK(load->model_version == "gas-carburizing 1");
+  CHECK(load->path == std::vector<PathStep>{{load->started_us, "pit-2", "main"}});
+  CHECK(load->first_furnace().chambers.front().places == 1);
+  CHECK_FALSE(load->first_furnace().line);
+  CHECK(load->recipe.segments[0].ramp_min == 0);
+  CHECK_FALSE(load->recipe.segments[0].until.has_value());
+  // A later change stores it in the present form, which says the same.
+  const auto again = std::make_shared<const LoadDefinition>(read_stored_definition(stored_definition(*load)));
+  CHECK(stored_definition(*again) == stored_definition(*load));
+  const test::Log nothing;
+  const std::string result = test::result_of(*derive(load, test::source_of(nothing), *load->ended_us), load);
+  CHECK(test::result_of(*derive(again, test::source_of(nothing), *load->ended_us), again) == result);
+}

@@ -122,3 +122,17 @@ TEST_CASE("a marked stretch is found by the times it touches, can be withdrawn, 
   CHECK(fault_of([&] { bench.store.withdraw_mask(id, by("Supervisor", "withdraw mark")); }) ==
         StorageFault::misuse);
 }
+
+TEST_CASE("conflicts are found newest first, all there are and no more than asked for") {
+  Bench bench;
+  CHECK(bench.reader.conflicts(bench.channel, 0, 1'000, 10).empty());
+  bench.store.append({{bench.channel, 100, 900}, {bench.channel, 200, 901}, {bench.channel, 300, 902}}, {});
+  CHECK(bench.reader.conflicts(bench.channel, 0, 1'000, 10).empty());
+  bench.store.append({{bench.channel, 100, 910}, {bench.channel, 300, 912}}, {});
+  const auto all = bench.reader.conflicts(bench.channel, 0, 1'000, 10);
+  REQUIRE(all.size() == 2);
+  CHECK(all[0].time_us == 300);
+  CHECK(all[1].values == std::vector<double>{900, 910});
+  CHECK(bench.reader.conflicts(bench.channel, 0, 1'000, 1).at(0).time_us == 300);
+  CHECK(bench.reader.conflicts(bench.channel, 0, 200, 10).at(0).time_us == 100);
+}

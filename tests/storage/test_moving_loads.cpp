@@ -114,12 +114,16 @@ TEST_CASE("a cancelled load gives its places back, waits for no result and stays
   bench.create(load("1 again", 100), {stay("heating", 100)});
 }
 
-TEST_CASE("an ended load is found by every furnace it was in, at the times it was there") {
+TEST_CASE("an ended load is found by every furnace it was in, from when it came there until it ended") {
   Bench bench;
   const auto id =
       bench.create(load("1", 100, 900), {stay("heating", 100, 400), {"pit-2", "main", 500, 900, 1}});
   CHECK(bench.reader.ended_touching("twin-6", 350, 380).size() == 1);
-  CHECK(bench.reader.ended_touching("twin-6", 450, 480).empty());
+  CHECK(bench.reader.ended_touching("twin-6", 50, 80).empty());
+  // It had left by then, but this reading ends the line that the last one before began.
+  CHECK(bench.reader.ended_touching("twin-6", 450, 480).size() == 1);
+  CHECK(bench.reader.ended_touching("twin-6", 901, 950).empty());
+  CHECK(bench.reader.ended_touching("pit-2", 450, 480).empty());
   CHECK(bench.reader.ended_touching("pit-2", 450, 520).size() == 1);
   CHECK(bench.reader.loads("twin-6", std::nullopt, 0, 10).at(0).id == id);
 }

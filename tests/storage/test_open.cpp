@@ -6,6 +6,8 @@
 #include <sys/wait.h>
 #include <unistd.h>
 
+#include <SQLiteCpp/Database.h>
+
 #include <array>
 #include <filesystem>
 #include <fstream>
@@ -30,6 +32,39 @@ TEST_CASE("every past schema version opens and is brought to the newest") {
     CHECK(Outside(folder.database()).number("PRAGMA user_version") == migrations().back().version);
     CHECK(Reader(folder.database()).open_loads().empty());
   }
+}
+
+TEST_CASE("loads of the first version keep their chambers when their file is brought up to date") {
+  const Folder folder;
+  {
+    Connection connection(folder.database(), Connection::Role::writer);
+    migrate(connection, migrations().first(1));
+    connection.database().exec(
+        "INSERT INTO load VALUES(1, '2290', 'pit-2', 'main', 'Day shift', 100, 200, 100, 2, '{}');"
+        "INSERT INTO load VALUES(2, '2291', 'pit-2', 'main', 'Day shift', 200, NULL, 200, 1, '{}');"
+        "INSERT INTO load_revision VALUES(1, 1, 100, 'Day shift', 'start load', '', '{}', NULL, NULL);"
+        "INSERT INTO load_revision VALUES(1, 2, 200, 'Day shift', 'end load', '{}', '{}', NULL, 200);"
+        "INSERT INTO load_revision VALUES(2, 1, 200, 'Day shift', 'start load', '', '{}', NULL, NULL);"
+        "INSERT INTO result VALUES(1, 1, 2, 210, 'model 1', '{\"a\":1}', 0)");
+  }
+  Store store(at(folder.database()));
+  Reader reader(folder.database());
+  REQUIRE(reader.stays(1).size() == 1);
+  CHECK(reader.stays(1)[0].to_us == 200);
+  REQUIRE(reader.open_loads().size() == 1);
+  CHECK(reader.open_loads()[0].id == 2);
+  CHECK_FALSE(reader.open_loads()[0].cancelled);
+  CHECK_FALSE(reader.stays(2)[0].to_us.has_value());
+  CHECK(reader.ended_touching("pit-2", 150, 160).size() == 1);
+  CHECK(reader.ended_without_result().empty());
+  CHECK(reader.result(1)->result_json == "{\"a\":1}");
+  CHECK(reader.revisions(1).size() == 2);
+  // The open one still holds its chamber, and is ended as ever.
+  CHECK(fault_of([&] { store.create_load(load("2292", 300), by("Day shift", "start load")); }) ==
+        StorageFault::misuse);
+  store.revise_load(2, 1, "", 300, by("Day shift", "end load"));
+  store.create_load(load("2292", 300), by("Day shift", "start load"));
+  CHECK(Outside(folder.database()).sound());
 }
 
 TEST_CASE("migrations are numbered one by one from 1, and named") {

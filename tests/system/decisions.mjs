@@ -100,5 +100,23 @@ await check('an earlier load reworked begins with its final profile', async () =
   expect(none.status === 422 && none.json.field === 'items[0].rework_of.load', none.text);
 });
 
+await check('a cancelled load leaves the floor and has no result; a corrected one is shown as corrected', async () => {
+  const { loads: [open] } = await daemon.must('GET', '/api/v1/loads?state=open');
+  const onFloor = async () => (await daemon.must('GET', '/api/v1/floor')).furnaces.some((f) => f.loads.some((l) => l.id === open.id));
+  await waitFor('it on the floor', 10000, onFloor);
+  await daemon.must('POST', `/api/v1/loads/${open.id}/cancel`, { person: 'Supervisor', reason: 'entered by mistake' });
+  await waitFor('it to leave the floor', 10000, async () => !(await onFloor()));
+  const answer = await daemon.request('GET', `/api/v1/loads/${open.id}/result`);
+  expect(answer.status === 409 && answer.json.type.includes('load-cancelled'), answer.text);
+  expect((await daemon.must('GET', `/api/v1/loads/${open.id}/snapshot`)).load.state === 'cancelled', 'not shown as cancelled');
+
+  const load = await daemon.must('GET', `/api/v1/loads/${id}`);
+  await daemon.must('GET', `/api/v1/loads/${id}/snapshot`);
+  const corrected = { person: 'Supervisor', reason: 'Misread', expected_revision: load.revision, load: { ...load.definition, name: 'As on the card' } };
+  await daemon.must('PUT', `/api/v1/loads/${id}`, corrected);
+  const shown = await daemon.must('GET', `/api/v1/loads/${id}/snapshot`);
+  expect(shown.load.name === 'As on the card', shown.load.name);
+});
+
 await daemon.stop();
 finish();
