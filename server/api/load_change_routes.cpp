@@ -41,9 +41,12 @@ void add_changes(const Json& before, const Json& after, const std::string& path,
   std::set<std::string> names;
   for (const auto& [name, value] : before.items()) names.insert(name);
   for (const auto& [name, value] : after.items()) names.insert(name);
-  for (const std::string& name : names)
-    add_changes(before.value(name, Json(nullptr)), after.value(name, Json(nullptr)),
-                path.empty() ? name : path + "." + name, changes);
+  const std::string prefix = path.empty() ? "" : path + ".";
+  for (const std::string& name : names) {
+    std::string inner = prefix;
+    inner += name;
+    add_changes(before.value(name, Json(nullptr)), after.value(name, Json(nullptr)), inner, changes);
+  }
 }
 
 Json load_part(const std::string& stored) {
@@ -125,6 +128,8 @@ Response Api::correct_load(const Request& request) {
   Plant plant = parts_.plant;
   for (Furnace& furnace : plant.furnaces)
     if (const Furnace* copy = found.definition->furnace(furnace.id)) furnace = *copy;
+  for (const Furnace& copy : found.definition->furnaces)
+    if (!plant.furnace(copy.id)) plant.furnaces.push_back(copy);
   const LoadDefinition load = read_load_body(with_rework(wanted.dump()), plant);
   check_times(load);
   return changed(found, load,

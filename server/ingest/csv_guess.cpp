@@ -104,7 +104,7 @@ Shape shape_by(const std::string& word, std::string_view text, CsvMapping by) {
 Shape guess_separator(std::string_view text, const CsvMapping& mapping, std::vector<Unsure>& unsure) {
   Shape best;
   for (const char* word : {";", "\t", "|", ",", "wide_spaces", "spaces"}) {
-    const Shape shape = shape_by(word, text, mapping);
+    Shape shape = shape_by(word, text, mapping);
     if (shape.width < 2) continue;
     if (shape.share >= most_rows_agree) return shape;
     if (shape.share > best.share) best = shape;

@@ -244,10 +244,9 @@ void guess_signs(const std::vector<Cells>& rows, const std::vector<std::size_t>&
     }
   }
   CsvMapping& mapping = guess.mapping;
-  if (comma.decimal > point.decimal || (point.grouping > 0 && comma.either > 0))
-    mapping.decimal = ',';
-  else if (point.decimal == 0 && comma.grouping == 0 && comma.either > point.either &&
-           mapping.separator != ',')
+  const bool unopposed =
+      point.decimal == 0 && comma.grouping == 0 && comma.either > point.either && mapping.separator != ',';
+  if (comma.decimal > point.decimal || (point.grouping > 0 && comma.either > 0) || unopposed)
     mapping.decimal = ',';
   const Signs& other = mapping.decimal == ',' ? point : comma;
   const char other_sign = mapping.decimal == ',' ? '.' : ',';

@@ -105,6 +105,10 @@ std::vector<Fit> fits_of(const std::vector<std::string>& texts, const std::vecto
   return fits;
 }
 
+std::string joined(std::string_view first, std::string_view between, std::string_view second) {
+  return std::string(first).append(between).append(second);
+}
+
 const std::vector<std::string>& full_formats() {
   static const std::vector<std::string> list = [] {
     std::vector<std::string> made;
@@ -112,10 +116,10 @@ const std::vector<std::string>& full_formats() {
       for (const std::string& clock : clocks()) {
         for (const char* between : {" ", "T", ", ", ""}) {
           if (*between == '\0' && (date != "%Y%m%d" || clock != "%H%M%S")) continue;
-          made.push_back(date + between + clock);
+          made.push_back(joined(date, between, clock));
         }
-        made.push_back(date + " " + clock + " %z");
-        made.push_back(clock + " " + date);
+        made.push_back(joined(date, " ", clock + " %z"));
+        made.push_back(joined(clock, " ", date));
       }
     }
     return made;
@@ -143,6 +147,7 @@ std::optional<GuessedTimes> two_columns(const std::vector<Cells>& rows, std::siz
   for (std::size_t d = 0; d < width; ++d) {
     const auto days = column_of(rows, d);
     std::vector<std::string> midnights;
+    midnights.reserve(days.size());
     for (const std::string& day : days) midnights.push_back(day + " 00:00");
     std::vector<std::string> day_formats;
     for (const std::string& date : dates()) {
@@ -156,7 +161,7 @@ std::optional<GuessedTimes> two_columns(const std::vector<Cells>& rows, std::siz
       }
       std::vector<std::string> formats;
       for (const std::string& date : day_formats) {
-        for (const std::string& clock : clocks()) formats.push_back(date + " " + clock);
+        for (const std::string& clock : clocks()) formats.push_back(joined(date, " ", clock));
       }
       auto times = best_of(fits_of(texts, formats, now_us), now_us);
       if (!times) continue;

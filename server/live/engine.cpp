@@ -26,7 +26,7 @@ constexpr std::int64_t view_refresh_us = 10'000'000;  // of data time
 
 ReadingSource stored_readings(
     storage::Reader& reader,
-    std::function<std::int64_t(const std::string& furnace, const std::string& channel)> channel_id) {
+    const std::function<std::int64_t(const std::string& furnace, const std::string& channel)>& channel_id) {
   ReadingSource source;
   source.readings = [&reader, channel_id](const LoadChannels::Used& used, std::int64_t from_us,
                                           std::int64_t to_us) {
@@ -129,8 +129,25 @@ void Engine::round(storage::Reader& reader) {
   apply_changes(reader);
   follow_pushes(reader);
   refresh_views(reader);
+  if (caught_up_) look_again(reader);
   caught_up_ = true;
   parts_.metrics.set(Level::open_loads, static_cast<double>(tracked_.size()));
+}
+
+// What changed is remembered in memory only: a late reading of an ended load that was committed just before
+// the process died would leave the load's old result for good. So after a start the newest ended loads are
+// derived once more, one a round.
+void Engine::look_again(storage::Reader& reader) {
+  constexpr int newest_ended = 200;
+  if (!doubted_) {
+    doubted_.emplace();
+    for (const storage::LoadRow& row : reader.loads("", false, 0, newest_ended))
+      if (!row.cancelled) doubted_->insert(doubted_->begin(), row.id);
+  }
+  if (doubted_->empty()) return;
+  const std::int64_t id = doubted_->back();
+  doubted_->pop_back();
+  if (const auto row = reader.load(id); row && row->ended_us && !row->cancelled) finish(reader, *row);
 }
 
 void Engine::reconcile(storage::Reader& reader) {
@@ -225,6 +242,7 @@ void Engine::follow_pushes(storage::Reader& reader) {
     const auto before = reader.newest(signal, from_us - 1);
     const auto samples = reader.accepted(signal, from_us, latest_time_us);
     for (const std::int64_t at_us : rises(samples, before)) {
+      if (is_echo(last, at_us)) continue;
       try {
         push_line(line, parts_.store, reader, {id, at_us, "Push signal", "signal"}, parts_.clock.now_us());
         loads_dirty_ = true;
@@ -280,7 +298,7 @@ void Engine::finish(storage::Reader& reader, const storage::LoadRow& row) {
     // One for each revision, even where a correction changed nothing that the result shows.
     if (!stored || stored->revision != row.revision || stored->result_json != json)
       parts_.store.save_result(
-          {row.id, row.revision, parts_.clock.now_us(), definition->model_version, json, false});
+          {row.id, row.revision, parts_.clock.now_us(), solver::model_version, json, false});
   } catch (const storage::StorageError& error) {
     // Remembered by number: one that a late reading changed has an older result, so nobody would miss it.
     log_warn("a result could not be stored yet", {{"load", row.id}, {"what", error.what()}});
@@ -290,6 +308,7 @@ void Engine::finish(storage::Reader& reader, const storage::LoadRow& row) {
     log_error("an ended load has no result", {{"load", row.id}, {"name", row.name}, {"what", error.what()}});
     parts_.metrics.add(Total::engine_failures);
   }
+  if (!parts_.board.load(row.id)) return;
   parts_.board.remove(row.id);
   fresh_views_.push_back(row.id);
 }

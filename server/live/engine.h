@@ -30,7 +30,7 @@ namespace hearthfront::server {
 // Reads accepted readings and marks of a load's channels through `reader`.
 ReadingSource stored_readings(
     storage::Reader& reader,
-    std::function<std::int64_t(const std::string& furnace, const std::string& channel)> channel_id);
+    const std::function<std::int64_t(const std::string& furnace, const std::string& channel)>& channel_id);
 
 struct EngineParts {
   const Plant& plant;
@@ -79,6 +79,7 @@ class Engine {
   void refresh_views(storage::Reader& reader);
   void refresh(Tracked& tracked, storage::Reader& reader, std::int64_t now_us);
   void finish(storage::Reader& reader, const storage::LoadRow& row);
+  void look_again(storage::Reader& reader);
   void note_newest(const storage::ChangedSpan& span, storage::Reader& reader);
   ReadingSource source(storage::Reader& reader) const { return stored_readings(reader, parts_.channel_id); }
 
@@ -87,7 +88,9 @@ class Engine {
   std::map<std::string, std::int64_t> reach_us_;  // how far a reading of each furnace can speak
   std::map<std::int64_t, Tracked> tracked_;
   std::vector<storage::ChangedSpan> pending_;
-  std::set<std::int64_t> unfinished_;                    // ended loads whose result could not be stored
+  std::set<std::int64_t> unfinished_;  // ended loads whose result could not be stored
+  // Ended loads to be looked at once more since the start, the newest last.
+  std::optional<std::vector<std::int64_t>> doubted_;
   std::map<std::string, const Channel*> push_channels_;  // of lines, by furnace
   bool pushes_may_wait_ = true;
   std::vector<std::int64_t> fresh_views_;

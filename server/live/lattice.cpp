@@ -176,8 +176,11 @@ IntervalInput LoadChannels::input(const LoadDefinition& load, const RecipePlace&
         std::find_if(sources.begin(), sources.end(), [](const SourceValue& v) { return v.leads; });
     const double potential = leading == sources.end() ? 0 : leading->carbon_potential_wt_pct;
     carbon_integral += potential * known_s + planned.carbon_potential_wt_pct * (piece_s - known_s);
-    input.carbon_potential_basis =
-        worse(input.carbon_potential_basis, leading == sources.end() ? Basis::planned : leading->basis);
+    Basis carbon_basis = leading == sources.end() ? Basis::planned : leading->basis;
+    // What is computed with the furnace's temperature is known no better than that.
+    if (leading != sources.end() && leading->source != CarbonSource::logged)
+      carbon_basis = worse(carbon_basis, worst_basis(temperature, piece_s));
+    input.carbon_potential_basis = worse(input.carbon_potential_basis, carbon_basis);
     input.disagreement_wt_pct = spread_of_measured(sources);
     input.sources = std::move(sources);
     gas_s += piece_s;

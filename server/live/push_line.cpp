@@ -187,6 +187,11 @@ std::vector<MovedLoad> push_line(const Furnace& line, storage::Store& store, sto
   }
 }
 
+bool is_echo(const std::optional<storage::PushRow>& last, std::int64_t at_us) {
+  constexpr std::int64_t soon_us = 180'000'000;
+  return last && last->source == "person" && at_us - last->at_us <= soon_us;
+}
+
 std::vector<std::int64_t> rises(const std::vector<storage::Reading>& samples,
                                 std::optional<storage::Reading> before) {
   constexpr double most_at_once = 50;

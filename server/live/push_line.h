@@ -48,6 +48,9 @@ struct MovedLoad {
 std::vector<MovedLoad> push_line(const Furnace& line, storage::Store& store, storage::Reader& reader,
                                  const storage::PushRow& push, std::int64_t now_us);
 
+// Whether a signal's rise is the push that a person has entered already, within three minutes before it.
+bool is_echo(const std::optional<storage::PushRow>& last, std::int64_t at_us);
+
 // When the line was pushed by what its signal says: each time the value rises. A counter that rose by several
 // since the reading before was pushed so often in between; when exactly is not known, so evenly.
 std::vector<std::int64_t> rises(const std::vector<storage::Reading>& samples,  // ascending

@@ -139,7 +139,7 @@ std::string result_json(const RunResult& result) {
                   {"furnace", load.path.front().furnace},
                   {"chamber", load.path.front().chamber},
                   {"path", load_body_json(load).at("path")},
-                  {"model_version", load.model_version},
+                  {"model_version", solver::model_version},
                   {"lattice_s", load.lattice_s},
                   {"started_at", format_time(load.started_us)},
                   {"data_time", format_time(result.state_us)},

@@ -169,3 +169,27 @@ TEST_CASE("a late mark or choice in an ended load makes a new result, and is no 
   CHECK(Works::eventually([&] { return works.results(id) == before + 2; }));
   CHECK(works.board.newest_reading("f1") == newest);
 }
+
+TEST_CASE(
+    "a late reading that was committed just before the process died still changes the ended load's result") {
+  Works works;
+  const auto id = works.create(works.load(ended));
+  works.log_all("f1", 0, 176);
+  REQUIRE(Works::eventually([&] { return works.results(id) > 0; }));
+  works.engine->stop();
+  const std::string before = works.reader.result(id)->result_json;
+  // Committed, and then nobody is left who would remember it.
+  works.store.append({{works.channels.at("f1potential"), works.start_us + 61 * minute, 0.2}}, {});
+  works.store.take_changes();
+  Engine again({works.plant,
+                works.clock,
+                works.store,
+                works.board,
+                works.metrics,
+                300,
+                [&](const std::string& f, const std::string& c) { return works.channels.at(f + c); },
+                {}});
+  again.start();
+  CHECK(Works::eventually([&] { return works.reader.result(id)->result_json != before; }));
+  again.stop();
+}

@@ -139,3 +139,12 @@ TEST_CASE("a load that cannot be read does not hold up the others") {
   CHECK(line.push(20).size() == 1);
   CHECK(line.zone(id) == "boost");
 }
+
+TEST_CASE("a signal that rises right after a person's entry is the same push") {
+  const storage::PushRow entered{"line", 1'000'000'000, "Line shift", "person"};
+  CHECK(is_echo(entered, 1'100'000'000));
+  CHECK_FALSE(is_echo(entered, 1'200'000'000));
+  const storage::PushRow signalled{"line", 1'000'000'000, "Push signal", "signal"};
+  CHECK_FALSE(is_echo(signalled, 1'100'000'000));
+  CHECK_FALSE(is_echo(std::nullopt, 1'100'000'000));
+}
