@@ -139,14 +139,14 @@ void Engine::round(storage::Reader& reader) {
 // derived once more, one a round.
 void Engine::look_again(storage::Reader& reader) {
   constexpr int newest_ended = 200;
-  if (!doubted_) {
-    doubted_.emplace();
-    for (const storage::LoadRow& row : reader.loads("", false, 0, newest_ended))
-      if (!row.cancelled) doubted_->insert(doubted_->begin(), row.id);
+  if (!doubts_listed_) {
+    const auto rows = reader.loads("", false, 0, newest_ended);
+    for (auto row = rows.rbegin(); row != rows.rend(); ++row) doubted_.push_back(row->id);
+    doubts_listed_ = true;
   }
-  if (doubted_->empty()) return;
-  const std::int64_t id = doubted_->back();
-  doubted_->pop_back();
+  if (doubted_.empty()) return;
+  const std::int64_t id = doubted_.back();
+  doubted_.pop_back();
   if (const auto row = reader.load(id); row && row->ended_us && !row->cancelled) finish(reader, *row);
 }
 

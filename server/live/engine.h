@@ -90,7 +90,8 @@ class Engine {
   std::vector<storage::ChangedSpan> pending_;
   std::set<std::int64_t> unfinished_;  // ended loads whose result could not be stored
   // Ended loads to be looked at once more since the start, the newest last.
-  std::optional<std::vector<std::int64_t>> doubted_;
+  std::vector<std::int64_t> doubted_;
+  bool doubts_listed_ = false;
   std::map<std::string, const Channel*> push_channels_;  // of lines, by furnace
   bool pushes_may_wait_ = true;
   std::vector<std::int64_t> fresh_views_;
