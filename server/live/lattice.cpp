@@ -100,10 +100,6 @@ const ChannelSeries* LoadChannels::series(const LoadDefinition& load, std::int64
   return at(load.place_at(at_us), role);
 }
 
-std::size_t LoadChannels::index_of(const ChannelSeries* series) const {
-  return static_cast<std::size_t>(series - series_.data());
-}
-
 bool LoadChannels::any(Role role) const {
   return std::any_of(used_.begin(), used_.end(), [&](const Used& u) { return u.role == role; });
 }

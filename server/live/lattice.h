@@ -60,7 +60,6 @@ class LoadChannels {
 
   // Of the chamber the load was in at that time.
   const ChannelSeries* series(const LoadDefinition& load, std::int64_t at_us, Role role) const;
-  std::size_t index_of(const ChannelSeries* series) const;  // in used()
   // Touching spans of one basis along the path, for one input; the best source where there are several.
   std::vector<BasisSpan> spans(const LoadDefinition& load, const std::vector<Role>& roles,
                                std::int64_t from_us, std::int64_t to_us) const;

@@ -62,16 +62,6 @@ std::optional<std::int64_t> LoadDefinition::until_us(std::size_t index) const {
   return index + 1 < path.size() ? std::optional(path[index + 1].from_us) : ended_us;
 }
 
-double LoadDefinition::planned_minutes() const {
-  double sum = 0;
-  for (const Segment& segment : recipe.segments) sum += segment.duration_min;
-  return sum;
-}
-
-std::int64_t LoadDefinition::planned_end_us() const {
-  return started_us + std::llround(planned_minutes() * 60e6);
-}
-
 std::string_view text(solver::Shape shape) {
   switch (shape) {
     case solver::Shape::plate:

@@ -138,8 +138,6 @@ struct LoadDefinition {
   const PathStep& last_furnace_place() const;  // the last that was in a furnace
   // When the path step `index` ends: with the next, or with the load.
   std::optional<std::int64_t> until_us(std::size_t index) const;
-  double planned_minutes() const;
-  std::int64_t planned_end_us() const;
 };
 
 std::string_view text(solver::Shape shape);

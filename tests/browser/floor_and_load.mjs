@@ -15,7 +15,6 @@ const [base = process.env.HEARTHFRONT_URL ?? 'http://127.0.0.1:8473', folder = j
 const api = (path) => fetch(new URL(`/api/v1/${path}`, base)).then((answer) => answer.json());
 const movesWithinMs = 20_000;
 
-const shownOf = (floor) => floor.furnaces.filter((furnace) => !furnace.line).flatMap((furnace) => furnace.loads);  // a line shows one load only
 let floor = await api('floor');
 // A demo that has just begun puts its dozens of loads in over some seconds.
 for (const end = Date.now() + 60_000; Date.now() < end && !floor.furnaces.every((furnace) => furnace.loads.length > 0);) {
@@ -23,7 +22,7 @@ for (const end = Date.now() + 60_000; Date.now() < end && !floor.furnaces.every(
   floor = await api('floor');
 }
 // A load whose case is growing (on a young one the depth may still be none) and which will not end meanwhile.
-const shown = shownOf(floor);
+const shown = floor.furnaces.filter((furnace) => !furnace.line).flatMap((furnace) => furnace.loads);  // a line shows one load only
 const growing = shown.filter((each) => each.condition === 'live' && each.item?.case_depth_mm !== null);
 const load = growing.sort((a, b) => b.minutes_left - a.minutes_left)[0] ?? shown[0];
 check('the daemon has an open load to look at', load !== undefined);
