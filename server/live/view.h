@@ -11,6 +11,7 @@
 #include <string>
 #include <vector>
 
+#include "server/live/load_outlook.h"
 #include "server/live/run_result.h"
 #include "storage/store.h"
 
@@ -57,6 +58,9 @@ struct LoadView {
     std::string doubt;
   } segment;
   double minutes_left = 0;
+  // Empty where there is none; then the sentence says why.
+  std::shared_ptr<const LoadOutlook> outlook;
+  std::string outlook_missing;
   // Of a pusher line: the tray's position from the entry on, counted in pushes; empty elsewhere.
   std::optional<int> line_position;
 };
