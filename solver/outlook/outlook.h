@@ -35,12 +35,13 @@ struct PlannedSegment {
   std::optional<PlannedUntil> until;
 };
 
-// What the furnace does beside its set points. Time constants are common practice, no source.
+// What the furnace does beside its set points. Time constants and rate are common practice, no source.
 struct FurnaceResponse {
   double temperature_degc = 0, carbon_potential_wt_pct = 0;      // what it shows now
   double offset_k = 0, offset_carbon_potential_wt_pct = 0;       // steady part of shown minus set, carried on
   double decay_s = 4 * 3600;                                     // of the offsets
   double temperature_lag_s = 600, carbon_potential_lag_s = 720;  // how it follows a changed set point
+  double fastest_rise_k_per_s = 0.15;                            // while it heats up
 };
 
 using Window = std::pair<double, double>;  // low, high
@@ -91,7 +92,6 @@ struct Outlook {
   std::vector<OutlookMoment> course;  // ascending: now, along the plan, and beyond its end; includes the end
   // Of all moments of the last segment and beyond its end: when the joint chance is highest.
   double best_at_s = 0, best_joint_chance = 0;
-  double segment_end_s(std::size_t segment) const { return segment_ends_s[segment]; }
   std::vector<double> segment_ends_s;  // of each planned segment, after now
   bool failed = false;                 // a model failed: nothing else is meant
 };

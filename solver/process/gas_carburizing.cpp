@@ -32,6 +32,19 @@ bool computable(const IntervalInputs& in) {
          std::isfinite(in.load_temperature_degc.value_or(0.0)) && (gas_known || !in.gas);
 }
 
+// What one member adds to the temperature whichever couple measured it.
+double temperature_error_k(const Member& member, const InputDoubt& doubt) {
+  return member.temperature_offset_k + member.temperature_gap_error * doubt.temperature_gap_sd_k +
+         member.future_temperature_error * doubt.future_temperature_sd_k;
+}
+
+double carbon_potential_error_wt_pct(const Member& member, const InputDoubt& doubt) {
+  return member.carbon_potential_offset_wt_pct + member.thermocouple_offset_k * doubt.carbon_potential_per_k +
+         member.carbon_source_error * doubt.carbon_source_sd_wt_pct +
+         member.carbon_potential_gap_error * doubt.carbon_potential_gap_sd_wt_pct +
+         member.future_carbon_potential_error * doubt.future_carbon_potential_sd_wt_pct;
+}
+
 // Mean of 1 - exp(-t/constant) from `age` on, for `length`.
 double film_share(double age_s, double length_s, double constant_s) {
   return 1.0 + constant_s / length_s * std::exp(-age_s / constant_s) * std::expm1(-length_s / constant_s);
@@ -140,7 +153,7 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
       continue;
     }
     const double potential =
-        std::max(0.0, inputs.carbon_potential_wt_pct + member.carbon_potential_offset_wt_pct);
+        std::max(0.0, inputs.carbon_potential_wt_pct + carbon_potential_error_wt_pct(member, inputs.doubt));
     const double limit = cementite_limit_wt_pct(t_k);
     const double equilibrium = potential / alloy_factor_;
     c.surface.equilibrium_wt_pct = std::min(equilibrium, limit);
@@ -176,12 +189,13 @@ Outcome GasCarburizing::advance(State& state, const IntervalInputs& inputs, Work
   const double dt = inputs.duration_s;
   for (std::size_t lane = 0; lane < lanes(); ++lane) {
     const Member& member = members_[lane];
+    const double error_k = temperature_error_k(member, inputs.doubt);
     if (inputs.load_temperature_degc) {
       ws.part_mean_degc_[lane] = ws.part_end_degc_[lane] =
-          *inputs.load_temperature_degc + member.temperature_offset_k;
+          *inputs.load_temperature_degc + member.load_thermocouple_offset_k + error_k;
       continue;
     }
-    const double furnace = inputs.furnace_temperature_degc + member.temperature_offset_k;
+    const double furnace = inputs.furnace_temperature_degc + member.thermocouple_offset_k + error_k;
     const double lag = std::max(1e-3, part_.lag_s * member.lag_scale);
     const double behind = state.part_temperature_degc[lane] - furnace;
     const double decay = -std::expm1(-dt / lag);

@@ -41,11 +41,28 @@ struct CarburizingPart {
 };
 
 // How one ensemble member departs from the nominal part and furnace. Lane 0 is the nominal one: pauses,
-// jumps and therefore step sizes are decided on it alone.
+// jumps and therefore step sizes are decided on it alone. Offsets are what is true minus what is read.
 struct Member {
   double diffusivity_scale = 1, beta_scale = 1, lag_scale = 1;
   double temperature_offset_k = 0, carbon_potential_offset_wt_pct = 0, core_carbon_offset_wt_pct = 0;
   double film_scale = 1;
+  // Of the furnace's couple: it enters the part's temperature and, by InputDoubt::carbon_potential_per_k, the
+  // carbon potential. The load couple's enters the part's temperature alone.
+  double thermocouple_offset_k = 0, load_thermocouple_offset_k = 0;
+  // In standard deviations of what InputDoubt says of the interval.
+  double carbon_source_error = 0, temperature_gap_error = 0, carbon_potential_gap_error = 0;
+  double future_temperature_error = 0, future_carbon_potential_error = 0;
+};
+
+// How far an interval's inputs may be from the truth; each member has its own share of it. All >= 0 but the
+// first.
+struct InputDoubt {
+  // Change of the carbon potential with the temperature it was computed at, the instrument's own reading
+  // held.
+  double carbon_potential_per_k = 0;
+  double carbon_source_sd_wt_pct = 0;                                         // of the instrument
+  double temperature_gap_sd_k = 0, carbon_potential_gap_sd_wt_pct = 0;        // nothing measured
+  double future_temperature_sd_k = 0, future_carbon_potential_sd_wt_pct = 0;  // not yet there
 };
 
 // Settings of a furnace, as in CarburizingPart.
@@ -65,6 +82,7 @@ struct IntervalInputs {
   std::optional<double> co_fraction, h2_fraction;
   // The furnace the part is in, where it is another than the part's own (a load that moved).
   std::optional<FurnaceSettings> furnace;
+  InputDoubt doubt;
   // False: the part is outside any carburizing gas; potential and fractions are then not looked at.
   bool gas = true;
 };
