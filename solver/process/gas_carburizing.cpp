@@ -114,6 +114,24 @@ GasCarburizing::State GasCarburizing::start_from(double charge_temperature_degc,
   return state;
 }
 
+GasCarburizing GasCarburizing::lane_alone(std::size_t lane) const {
+  GasCarburizing alone = *this;
+  alone.members_ = {members_[lane]};
+  return alone;
+}
+
+GasCarburizing::State GasCarburizing::lane_alone(const State& state, std::size_t lane) const {
+  State alone = state;
+  alone.field = CarbonField(mesh_, 1, 0.0);
+  for (std::size_t i = 0; i < mesh_->nodes(); ++i)
+    alone.field.set_carbon_wt_pct(0, i, state.field.carbon_wt_pct(lane, i));
+  alone.field.crossed_wt_pct_m = {state.field.crossed_wt_pct_m[lane]};
+  alone.part_temperature_degc = {state.part_temperature_degc[lane]};
+  alone.conditions = {state.conditions[lane]};
+  alone.initial_wt_pct_m = {state.initial_wt_pct_m[lane]};
+  return alone;
+}
+
 // Mean over the interval.
 double GasCarburizing::lane_beta_m_per_s(const State& state, const IntervalInputs& inputs,
                                          const Member& member, double t_k) const {
@@ -152,8 +170,9 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
     }
     const double potential =
         std::max(0.0, inputs.carbon_potential_wt_pct + carbon_potential_error_wt_pct(member, inputs.doubt));
-    // A member that lags behind the nominal part moves with it, slowly: were it to start later by itself, that
-    // would be a jump which no step was made small for. Below the austenite range the limit has no meaning.
+    // A member that lags behind the nominal part moves with it, slowly: were it to start later by itself,
+    // that would be a jump which no step was made small for. Below the austenite range the limit has no
+    // meaning.
     const double limit = cementite_limit_wt_pct(std::max(t_k, kelvin(austenite_from_degc_)));
     const double equilibrium = potential / alloy_factor_;
     c.surface.equilibrium_wt_pct = std::min(equilibrium, limit);
