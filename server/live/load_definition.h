@@ -44,6 +44,7 @@ struct LibraryCopy {
 struct Recipe {
   std::string name;
   std::vector<Segment> segments;
+  bool temperature_may_change = false;  // by a proposal
   std::optional<LibraryCopy> library;
 };
 

@@ -93,6 +93,11 @@ std::vector<solver::IntervalInputs> merged_history(const LiveLoad& load) {
 
 }  // namespace
 
+bool cools(const Segment& before, const Segment& segment) {
+  constexpr double cools_by_k = 15;
+  return segment.temperature_degc < before.temperature_degc - cools_by_k;
+}
+
 std::vector<solver::PlannedSegment> planned(const LoadDefinition& load, const std::vector<Segment>& rest) {
   std::vector<solver::PlannedSegment> plan;
   for (const Segment& segment : rest) {
@@ -116,6 +121,9 @@ OutlookStart outlook_start(const LiveLoad& load, std::shared_ptr<const LoadDefin
   base->states = members->now();
   base->at_us = load.state_us();
   base->rest = rest_of(load);
+  const SegmentRun& run = load.recipe_place().now();
+  const auto& segments = load.definition().recipe_of(run.plan).segments;
+  base->first_cools = run.index > 0 && cools(segments[run.index - 1], segments[run.index]);
   base->furnace = furnace_response(load);
   const RunPoint* last = nullptr;
   load.each_point([&](const RunPoint& point) { last = &point; });
