@@ -44,8 +44,8 @@ struct LibraryCopy {
 struct Recipe {
   std::string name;
   std::vector<Segment> segments;
-  bool temperature_may_change = false;  // by a proposal
   std::optional<LibraryCopy> library;
+  bool temperature_may_change = false;  // by a proposal
 };
 
 // From when a load was where: a chamber, or outside any furnace (empty names).
