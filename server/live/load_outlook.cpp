@@ -45,6 +45,9 @@ std::vector<Segment> rest_of(const LiveLoad& load) {
   first.duration_min = place.segment_left_min(recipe, load.state_us());
   first.ramp_min = std::clamp(first.ramp_min - elapsed_min, 0.0, first.duration_min);
   if (first.until) first.longest_min = std::max(first.duration_min, first.longest_min - elapsed_min);
+  // A segment that is over, and that the furnace has only not left yet, is nobody's plan any more.
+  constexpr double over_min = 0.5;
+  if (rest.size() > 1 && first.duration_min < over_min) rest.erase(rest.begin());
   return rest;
 }
 
