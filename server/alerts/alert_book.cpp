@@ -29,7 +29,8 @@ struct Look {
 
 const Judged* judged_for(const Findings& findings, const AlertRow& row) {
   for (const Judged& judged : findings.judged)
-    if (judged.kind == row.kind && judged.furnace == row.furnace && judged.load == row.load &&
+    if (judged.kind == row.kind && judged.load == row.load &&
+        (row.load != 0 || judged.furnace == row.furnace) &&
         (!judged.subject || *judged.subject == row.subject))
       return &judged;
   return nullptr;
@@ -39,7 +40,7 @@ Look look_at(const AlertRow& row, const Findings& findings,
              const std::map<std::string, const Situation*>& by_key, std::int64_t now_us) {
   if (const auto found = by_key.find(row.key); found != by_key.end())
     return {found->second->present ? Sight::there : Sight::between, found->second, found->second->at_us, 0};
-  if (findings.gone_loads.contains(row.load) || findings.gone_furnaces.contains(row.furnace))
+  if (row.load != 0 ? findings.gone_loads.contains(row.load) : findings.gone_furnaces.contains(row.furnace))
     return {Sight::gone, nullptr, now_us, 0};
   if (const Judged* judged = judged_for(findings, row))
     return {Sight::gone, nullptr, judged->at_us, judged->clear_hold_s};

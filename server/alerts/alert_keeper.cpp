@@ -103,8 +103,7 @@ void AlertKeeper::load_open() {
 
 void AlertKeeper::judge_slow_things(std::int64_t now_us, std::chrono::steady_clock::time_point steady,
                                     const LoadViews& views) {
-  const bool trouble_is_new = !store_trouble_.empty();
-  if (slow_at_.time_since_epoch().count() != 0 && steady - slow_at_ < slow_pause && !trouble_is_new) return;
+  if (slow_at_ && steady - *slow_at_ < slow_pause && store_trouble_.empty()) return;
   slow_at_ = steady;
   slow_ = judge_daemon(watch_.look(*reader_, now_us, steady, store_trouble_), parts_.settings.alerts);
   for (const Furnace& furnace : parts_.plant.furnaces) {
@@ -124,7 +123,7 @@ void AlertKeeper::judge_slow_things(std::int64_t now_us, std::chrono::steady_clo
 Findings AlertKeeper::findings(std::int64_t now_us) {
   const auto steady = std::chrono::steady_clock::now();
   const LoadViews views = parts_.board.loads();
-  watch_.compare_clocks(now_us, steady);
+  if (watch_.compare_clocks(now_us, steady)) slow_at_.reset();
   judge_slow_things(now_us, steady, views);
   Findings all = slow_;
   for (const Furnace& furnace : parts_.plant.furnaces)

@@ -98,7 +98,7 @@ class AlertKeeper {
   DaemonWatch watch_;
   std::string store_trouble_;
   Findings slow_;  // of the last slow look
-  std::chrono::steady_clock::time_point slow_at_{};
+  std::optional<std::chrono::steady_clock::time_point> slow_at_;
   std::uint64_t sequence_ = 0;
 
   mutable std::mutex list_mutex_;

@@ -16,17 +16,20 @@ constexpr auto said_for = std::chrono::minutes(10);
 
 }  // namespace
 
-void DaemonWatch::compare_clocks(std::int64_t now_us, Steady steady) {
+bool DaemonWatch::compare_clocks(std::int64_t now_us, Steady steady) {
+  bool jumped = false;
   if (last_) {
     const double real_s = std::chrono::duration<double>(steady - last_->second).count();
     const double jump_s = static_cast<double>(now_us - last_->first) * 1e-6 / clock_.speed() - real_s;
-    if (std::abs(jump_s) > jump_limit_s) {
+    jumped = std::abs(jump_s) > jump_limit_s;
+    if (jumped) {
       jump_s_ = jump_s;
       jump_at_ = steady;
     }
   }
   last_ = {now_us, steady};
   if (jump_s_ && steady - jump_at_ > said_for) jump_s_.reset();
+  return jumped;
 }
 
 DaemonState DaemonWatch::look(storage::Reader& reader, std::int64_t now_us, Steady steady,

@@ -20,8 +20,8 @@ class DaemonWatch {
 
   DaemonWatch(const Clock& clock, std::string database) : clock_(clock), database_(std::move(database)) {}
   // The cheap part, at each look: compares the two clocks. A step of more than 30 s (of real time) is said
-  // for ten minutes.
-  void compare_clocks(std::int64_t now_us, Steady steady);
+  // for ten minutes. True at the look that sees it.
+  bool compare_clocks(std::int64_t now_us, Steady steady);
   // The rest, read from disk and database; `store_trouble` as in DaemonState.
   DaemonState look(storage::Reader& reader, std::int64_t now_us, Steady steady, std::string store_trouble);
 

@@ -22,7 +22,9 @@ Severity severity_from(std::string_view word) {
 }
 
 std::string ConditionKey::text() const {
-  return kind + "|" + furnace + "|" + std::to_string(load) + "|" + subject;
+  // A load takes its conditions along when it moves.
+  const std::string where = load == 0 ? furnace : std::string();
+  return kind + "|" + where + "|" + std::to_string(load) + "|" + subject;
 }
 
 void Findings::add(Findings other) {

@@ -23,7 +23,7 @@ struct ConditionKey {
   std::string kind, furnace;  // furnace empty: the daemon's own
   std::int64_t load = 0;      // 0: none
   std::string subject;        // item, channel, segment ...; may be empty
-  std::string text() const;   // "kind|furnace|load|subject"
+  std::string text() const;   // "kind|furnace|load|subject"; of a load without the furnace
 };
 
 struct Situation {
@@ -52,7 +52,7 @@ struct Findings {
   std::vector<Judged> judged;
   std::vector<Situation> situations;
   std::set<std::int64_t> gone_loads;    // ended or cancelled: nothing of theirs can be there
-  std::set<std::string> gone_furnaces;  // no longer in the plant file
+  std::set<std::string> gone_furnaces;  // no longer in the plant file; their loads are judged by themselves
 
   void add(Findings other);
 };

@@ -100,6 +100,21 @@ TEST_CASE("what nobody can judge stays as it is; what can be there no longer is 
   CHECK(bench.open.at(0).state == AlertState::resting);
 }
 
+TEST_CASE("the alert of a load goes with it to another furnace") {
+  BookBench bench;
+  HandMade load;
+  load.view.segment.minutes_left = 5;
+  bench.look_at(judge_recipe(load.view, {}), load.view.now_us);
+  REQUIRE(bench.active() == 1);
+  load.view.row.furnace = "f2";
+  load.at(31);
+  bench.look_at(judge_recipe(load.view, {}), load.view.now_us);
+  CHECK(bench.next_id == 2);
+  load.view.segment.minutes_left = 60;
+  bench.look_at(judge_recipe(load.view, {}), load.view.now_us);
+  CHECK(bench.active() == 0);
+}
+
 TEST_CASE("rows read back after a restart go on with the same number, age and hold") {
   BookBench bench;
   minutes_of(bench, Is::there, 0, 3);

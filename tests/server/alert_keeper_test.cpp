@@ -192,7 +192,7 @@ TEST_CASE("the daemon's clock that jumps against a steady one is told") {
   daemon.clock.now = 1'000 * minute_us;
   std::this_thread::sleep_for(std::chrono::milliseconds(1300));
   daemon.clock.now += 2 * minute_us;
-  CHECK(within_seconds(25, [&] {
+  CHECK(within_seconds(5, [&] {
     const auto list = daemon.keeper->list();
     return !list->active.empty() && list->active[0].kind == "clock";
   }));
