@@ -35,7 +35,7 @@ std::string signed_fixed(double value, int digits) {
 }
 
 void judge_segment(Findings& findings, const LoadView& view, const AlertSettings& settings) {
-  const Recipe& recipe = view.result.definition->recipe;
+  const Recipe& recipe = view.result.definition->recipe_of(view.segment.plan);
   findings.judged.push_back(judged_load(view, "segment due", 0));
   if (view.segment.index >= recipe.segments.size()) return;
   const Segment& segment = recipe.segments[view.segment.index];
