@@ -19,6 +19,7 @@
 #include "server/base/metrics.h"
 #include "server/base/plant.h"
 #include "server/base/settings.h"
+#include "server/delivery/dispatcher.h"
 #include "server/ingest/accept.h"
 #include "server/live/view.h"
 #include "storage/store.h"
@@ -36,6 +37,7 @@ struct ApiParts {
   const Acceptor& acceptor;
   Metrics& metrics;
   HttpServer& http;
+  Dispatcher& dispatcher;
   const std::atomic<ServiceState>& state;
   std::function<void()> loads_changed;
 };
@@ -58,6 +60,7 @@ class Api {
   void add_furnace_routes();
   void add_channel_routes();
   void add_library_routes();
+  void add_target_routes();
 
   Response status(const Request& request) const;
   Response ready(const Request& request) const;
@@ -93,6 +96,9 @@ class Api {
   Response library(const Request& request);
   Response library_item(const Request& request);
   Response save_library(const Request& request);
+  Response targets(const Request& request);
+  Response test_target(const Request& request);
+  Response retry_target(const Request& request);
 
   struct FoundLoad {
     storage::LoadRow row;
@@ -106,6 +112,7 @@ class Api {
   FoundLoad find_load(const Request& request);
   std::optional<FoundLoad> load_of(std::int64_t id, storage::Reader& reader) const;
   const Furnace& find_furnace(const Request& request) const;
+  const Target& find_target(const Request& request) const;
   FoundChannel find_channel(const Furnace& furnace, const std::string& name) const;
   void check_times(const LoadDefinition& load) const;
   // The body with each "rework_of" replaced by the final profile of the item it names.

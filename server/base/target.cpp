@@ -60,9 +60,8 @@ void each_own_option(AnyTarget& target, Visitor&& visit) {
   if (auto* mqtt = std::get_if<MqttTarget>(&target.to)) each_mqtt_option(*mqtt, visit);
 }
 
-void read_option(ConfigTable& table, std::string_view key, std::string& into, std::size_t low,
-                 std::size_t high) {
-  table.text(key, into, low, high);
+void read_option(ConfigTable& table, std::string_view key, std::string& into, int low, int high) {
+  table.text(key, into, static_cast<std::size_t>(low), static_cast<std::size_t>(high));
 }
 void read_option(ConfigTable& table, std::string_view key, int& into, int low, int high) {
   std::int64_t value = into;
@@ -71,9 +70,8 @@ void read_option(ConfigTable& table, std::string_view key, int& into, int low, i
 void read_option(ConfigTable& table, std::string_view key, bool& into, int, int) {
   table.boolean(key, into);
 }
-void read_option(ConfigTable& table, std::string_view key, std::vector<std::string>& into, int,
-                 std::size_t high) {
-  table.texts(key, into, longest_list, high);
+void read_option(ConfigTable& table, std::string_view key, std::vector<std::string>& into, int, int high) {
+  table.texts(key, into, longest_list, static_cast<std::size_t>(high));
 }
 
 std::string toml_text(const std::string& value) {
@@ -102,7 +100,8 @@ void require_one_of(ConfigTable& table, const char* key, const std::string& valu
 
 void check_sign_in(ConfigTable& table, const std::string& user, const std::string& password_file) {
   if (user.empty() != password_file.empty())
-    table.fault(user.empty() ? "password_file" : "user", "user and password_file go together: set both or none");
+    table.fault(user.empty() ? "password_file" : "user",
+                "user and password_file go together: set both or none");
 }
 
 void check_own(ConfigTable& table, WebhookTarget& to) {
@@ -120,7 +119,8 @@ void check_own(ConfigTable& table, MailTarget& to) {
   if (!to.server.empty() && !is_host_name(to.server))
     table.fault("server", "expected a host name or an IP address, got \"" + to.server + "\"");
   if (to.tls == "none" && !to.server.empty() && !is_loopback_host(to.server))
-    table.fault("tls", "\"none\" would send mail and password in the clear; it is only for a server on this machine");
+    table.fault(
+        "tls", "\"none\" would send mail and password in the clear; it is only for a server on this machine");
   if (!to.from.empty() && !is_mail_address(to.from))
     table.fault("from", "expected an address such as \"furnaces@shop.example\", got \"" + to.from + "\"");
   for (const std::string& address : to.to)
@@ -166,8 +166,8 @@ Target read_target(ConfigTable& table, const Settings& settings) {
   if (!kind.empty()) require_one_of(table, "kind", kind, {"webhook", "mail", "mqtt"});
   if (kind == "mail") target.to = MailTarget{};
   if (kind == "mqtt") target.to = MqttTarget{};
-  const auto read = [&](const char* key, auto& into, auto low, auto high) {
-    read_option(table, key, into, static_cast<std::remove_const_t<decltype(low)>>(low), high);
+  const auto read = [&](const char* key, auto& into, int low, int high) {
+    read_option(table, key, into, low, high);
   };
   each_common_option(target, read);
   require_one_of(table, "least_severity", target.least_severity, {"note", "warning", "urgent"});
@@ -193,8 +193,8 @@ Target read_target(ConfigTable& table, const Settings& settings) {
 }  // namespace
 
 const char* Target::kind() const {
-  const char* const kinds[] = {"webhook", "mail", "mqtt"};
-  return kinds[to.index()];
+  const char* const words[] = {"webhook", "mail", "mqtt"};
+  return words[to.index()];
 }
 
 std::string Target::where() const {
@@ -228,8 +228,8 @@ void check_targets(const std::vector<Target>& targets, const Plant& plant,
                                   const std::vector<std::string>& known, const char* what) {
     for (const std::string& word : named) {
       if (std::find(known.begin(), known.end(), word) != known.end()) continue;
-      errors.messages.push_back(target.place + ": target \"" + target.name + "\": there is no " + what + " \"" +
-                                word + "\"" + suggestion(word, known));
+      errors.messages.push_back(target.place + ": target \"" + target.name + "\": there is no " + what +
+                                " \"" + word + "\"" + suggestion(word, known));
     }
   };
   for (const Target& target : targets) {
@@ -241,7 +241,7 @@ void check_targets(const std::vector<Target>& targets, const Plant& plant,
 std::vector<std::pair<std::string, std::string>> list_target_options(const Target& target) {
   std::vector<std::pair<std::string, std::string>> options{{"name", toml_text(target.name)},
                                                            {"kind", toml_text(std::string(target.kind()))}};
-  const auto list = [&](const char* key, const auto& value, auto, auto) {
+  const auto list = [&](const char* key, const auto& value, int, int) {
     options.emplace_back(key, toml_text(value));
   };
   each_own_option(target, list);

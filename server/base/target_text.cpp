@@ -64,7 +64,8 @@ bool is_mail_address(const std::string& address) {
   for (std::size_t i = 0; i < at; ++i) {
     const char c = address[i];
     // atext of RFC 5322 3.2.3
-    const bool atom = is_letter_or_digit(c) || std::string_view("!#$%&'*+-/=?^_`{|}~").find(c) != std::string::npos;
+    const bool atom =
+        is_letter_or_digit(c) || std::string_view("!#$%&'*+-/=?^_`{|}~").find(c) != std::string::npos;
     if (!atom && !(c == '.' && before != '.')) return false;
     before = c;
   }
@@ -82,7 +83,8 @@ std::string url_fault(const std::string& url) {
   const std::string_view authority = rest.substr(0, rest.find_first_of("/?"));
   if (authority.empty()) return expected + " that begins with http:// or https://";
   if (authority.find('@') != std::string_view::npos)
-    return "must not hold a user or password: nothing secret belongs into the settings; messages are signed with the "
+    return "must not hold a user or password: nothing secret belongs into the settings; messages are signed "
+           "with the "
            "key in secret_file";
   std::string host(authority);
   std::string_view port;

@@ -1,5 +1,5 @@
-// What addresses of targets may look like. Pure functions, any thread. Stricter than the standards on purpose:
-// what passes can stand in a protocol line or a header without quoting.
+// What addresses of targets may look like. Pure functions, any thread. Stricter than the standards on
+// purpose: what passes can stand in a protocol line or a header without quoting.
 #pragma once
 
 #include <string>

@@ -9,6 +9,7 @@
 #include "server/base/version.h"
 #include "server/command/commands.h"
 #include "server/command/signals.h"
+#include "server/delivery/dispatcher.h"
 #include "server/live/engine.h"
 
 namespace hearthfront::server {
@@ -54,8 +55,9 @@ int serve(const Settings& settings, const Plant& plant) {
   Board board;
   std::atomic<ServiceState> state{ServiceState::starting};
   HttpServer http(limits_from(settings));
+  Dispatcher dispatcher(settings.targets, store, *clock, [] {});
   Engine* running = nullptr;
-  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, state, [&running] {
+  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, dispatcher, state, [&running] {
              if (running) running->loads_changed();
            }});
   Engine engine({plant, *clock, store, board, metrics, settings.live.stale_after_s,
@@ -72,6 +74,7 @@ int serve(const Settings& settings, const Plant& plant) {
   http.on_error([](std::string_view what) { log_error("request failed", {{"what", what}}); });
   const int port = http.start(settings.listen.address, settings.listen.port);
   engine.start();
+  dispatcher.start();  // what an earlier run left unsent goes out
   log_info("hearthfront serves", {{"version", version},
                                   {"address", settings.listen.address},
                                   {"port", port},
@@ -106,6 +109,8 @@ int serve(const Settings& settings, const Plant& plant) {
   state = ServiceState::stopping;
   notifier.stopping("stopping");
   log_info("stopping");
+  dispatcher
+      .stop();    // what is unsent stays in the outbox; before http: a test under way is a running request
   http.stop();    // no new work; running requests get their answer
   engine.stop();  // before the store: it reads and saves results
   store.close();  // last: stores what is queued, checkpoints

@@ -37,8 +37,9 @@ class MailSender final : public Sender {
       return {SendOutcome::refused, std::move(fault), 0};
 
     const AlertMail alert = alert_mail(message.payload_json);
-    Mail mail{target_.from, target_.to, alert.subject, alert.body, message_id_of(message.key, target_.from), "",
-              real_seconds()};
+    Mail mail{
+        target_.from, target_.to,    alert.subject, alert.body, message_id_of(message.key, target_.from),
+        "",           real_seconds()};
     if (!message.first_key.empty() && message.first_key != message.key)
       mail.in_reply_to = message_id_of(message.first_key, target_.from);
 
@@ -49,7 +50,8 @@ class MailSender final : public Sender {
     transfer_.begin(protocol + "://" + host + ":" + std::to_string(target_.port) + "/" +
                         target_.from.substr(target_.from.rfind('@') + 1),
                     protocol, timeout_s_, target_.ca_file);
-    transfer_.set(CURLOPT_USE_SSL, static_cast<long>(target_.tls == "none" ? CURLUSESSL_NONE : CURLUSESSL_ALL));
+    transfer_.set(CURLOPT_USE_SSL,
+                  static_cast<long>(target_.tls == "none" ? CURLUSESSL_NONE : CURLUSESSL_ALL));
     // A server may have closed a connection that was idle for hours.
     transfer_.set(CURLOPT_FRESH_CONNECT, 1L);
     transfer_.set(CURLOPT_FORBID_REUSE, 1L);

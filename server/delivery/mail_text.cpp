@@ -14,13 +14,15 @@ namespace {
 
 constexpr std::size_t longest_subject_bytes = 300;
 constexpr std::size_t plain_subject_bytes = 60;  // fits behind "Subject: " into a line of 78 (RFC 5322 2.1.1)
-constexpr std::size_t encoded_word_bytes = 39;   // "Subject: =?UTF-8?B?...?=" then has 73 of the 76 of RFC 2047 2
-constexpr std::size_t longest_line = 75;         // before the soft line break; RFC 2045 6.7 allows 76 in all
+constexpr std::size_t encoded_word_bytes =
+    39;                                   // "Subject: =?UTF-8?B?...?=" then has 73 of the 76 of RFC 2047 2
+constexpr std::size_t longest_line = 75;  // before the soft line break; RFC 2045 6.7 allows 76 in all
 
 std::string base64(std::string_view text) {
   std::string encoded(4 * ((text.size() + 2) / 3) + 1, '\0');
-  const int length = EVP_EncodeBlock(reinterpret_cast<unsigned char*>(encoded.data()),
-                                     reinterpret_cast<const unsigned char*>(text.data()), static_cast<int>(text.size()));
+  const int length =
+      EVP_EncodeBlock(reinterpret_cast<unsigned char*>(encoded.data()),
+                      reinterpret_cast<const unsigned char*>(text.data()), static_cast<int>(text.size()));
   encoded.resize(static_cast<std::size_t>(length));
   return encoded;
 }
@@ -94,15 +96,17 @@ std::string quoted_printable(std::string_view text) {
 std::string mail_date(std::int64_t at_s) {
   using namespace std::chrono;
   constexpr std::array days{"Sun", "Mon", "Tue", "Wed", "Thu", "Fri", "Sat"};
-  constexpr std::array months{"Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec"};
+  constexpr std::array months{"Jan", "Feb", "Mar", "Apr", "May", "Jun",
+                              "Jul", "Aug", "Sep", "Oct", "Nov", "Dec"};
   const sys_seconds at{seconds(at_s)};
   const sys_days midnight = floor<std::chrono::days>(at);
   const year_month_day date(midnight);
   const hh_mm_ss time(at - midnight);
-  return std::string(days[weekday(midnight).c_encoding()]) + ", " + two(static_cast<int>(unsigned{date.day()})) + " " +
-         months[unsigned{date.month()} - 1] + " " + std::to_string(int{date.year()}) + " " +
-         two(static_cast<int>(time.hours().count())) + ":" + two(static_cast<int>(time.minutes().count())) + ":" +
-         two(static_cast<int>(time.seconds().count())) + " +0000";
+  return std::string(days[weekday(midnight).c_encoding()]) + ", " +
+         two(static_cast<int>(unsigned{date.day()})) + " " + months[unsigned{date.month()} - 1] + " " +
+         std::to_string(int{date.year()}) + " " + two(static_cast<int>(time.hours().count())) + ":" +
+         two(static_cast<int>(time.minutes().count())) + ":" + two(static_cast<int>(time.seconds().count())) +
+         " +0000";
 }
 
 std::string message_id_of(std::string_view key, std::string_view from) {
@@ -117,8 +121,9 @@ std::string message_id_of(std::string_view key, std::string_view from) {
 std::string mail_text(const Mail& mail) {
   std::string recipients;
   for (const std::string& address : mail.to) recipients += (recipients.empty() ? "" : ",\r\n ") + address;
-  std::string text = "Date: " + mail_date(mail.at_s) + "\r\nFrom: hearthfront <" + mail.from + ">\r\nTo: " + recipients +
-                     "\r\nSubject: " + encoded_subject(mail.subject) + "\r\nMessage-ID: " + mail.message_id + "\r\n";
+  std::string text = "Date: " + mail_date(mail.at_s) + "\r\nFrom: hearthfront <" + mail.from +
+                     ">\r\nTo: " + recipients + "\r\nSubject: " + encoded_subject(mail.subject) +
+                     "\r\nMessage-ID: " + mail.message_id + "\r\n";
   if (!mail.in_reply_to.empty())
     text += "In-Reply-To: " + mail.in_reply_to + "\r\nReferences: " + mail.in_reply_to + "\r\n";
   text +=

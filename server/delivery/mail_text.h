@@ -10,13 +10,13 @@
 namespace hearthfront::server {
 
 struct Mail {
-  std::string from;             // checked addresses (is_mail_address)
+  std::string from;  // checked addresses (is_mail_address)
   std::vector<std::string> to;
-  std::string subject;          // any UTF-8; line breaks and other control characters become spaces
-  std::string body;             // any UTF-8, lines end with \n
-  std::string message_id;       // of message_id_of
-  std::string in_reply_to;      // the same for an earlier mail, or empty
-  std::int64_t at_s = 0;        // s since 1970-01-01 UTC
+  std::string subject;      // any UTF-8; line breaks and other control characters become spaces
+  std::string body;         // any UTF-8, lines end with \n
+  std::string message_id;   // of message_id_of
+  std::string in_reply_to;  // the same for an earlier mail, or empty
+  std::int64_t at_s = 0;    // s since 1970-01-01 UTC
 };
 
 std::string mail_text(const Mail& mail);

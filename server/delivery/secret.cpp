@@ -14,7 +14,8 @@ namespace {
 constexpr std::size_t most_bytes = 4096;
 
 std::string because(const std::string& path, int error) {
-  return path + " cannot be read: " + std::generic_category().message(error) + "; put it there, readable to the daemon";
+  return path + " cannot be read: " + std::generic_category().message(error) +
+         "; put it there, readable to the daemon";
 }
 
 }  // namespace
@@ -33,7 +34,8 @@ Secret read_secret(const std::string& path, std::size_t least_bytes) {
   if (!plain) return {"", path + " is no plain file; a secret is a file with nothing else in it"};
   if (got < 0) return {"", because(path, error)};
   text.resize(static_cast<std::size_t>(got));
-  if (text.size() > most_bytes) return {"", path + " is longer than 4096 bytes, so it is hardly the right file"};
+  if (text.size() > most_bytes)
+    return {"", path + " is longer than 4096 bytes, so it is hardly the right file"};
   while (!text.empty() && (text.back() == '\n' || text.back() == '\r')) text.pop_back();
   if (text.size() < least_bytes)
     return {"", path + " holds " + std::to_string(text.size()) + " bytes, " + std::to_string(least_bytes) +

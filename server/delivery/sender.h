@@ -1,5 +1,5 @@
-// One way of sending. A Sender belongs to one thread at a time; it reads its secret file anew for each message,
-// so that a changed key counts from the next one on. No secret is ever part of an error.
+// One way of sending. A Sender belongs to one thread at a time; it reads its secret file anew for each
+// message, so that a changed key counts from the next one on. No secret is ever part of an error.
 #pragma once
 
 #include <cstdint>
