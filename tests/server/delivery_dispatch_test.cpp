@@ -83,8 +83,8 @@ class SilentSocket {
   int socket_;
 };
 
-struct Plant {
-  Plant() { folder.write("key", key_text + "\n"); }
+struct Shop {
+  Shop() { folder.write("key", key_text + "\n"); }
   Target webhook(const std::string& name, const std::string& url) const {
     Target target;
     target.name = name;
@@ -144,61 +144,61 @@ double seconds_of(const std::function<void()>& call) {
 }  // namespace
 
 TEST_CASE("a message arrives signed, with its key, and is noted as delivered") {
-  Plant plant;
+  Shop shop;
   Receiver receiver;
-  const std::vector<Target> targets{plant.webhook("hook", receiver.url())};
+  const std::vector<Target> targets{shop.webhook("hook", receiver.url())};
   std::atomic<int> changes{0};
-  Dispatcher dispatcher(targets, plant.store, plant.clock, [&] { ++changes; });
+  Dispatcher dispatcher(targets, shop.store, shop.clock, [&] { ++changes; });
   dispatcher.start();
-  plant.raise({"hook"});
+  shop.raise({"hook"});
   dispatcher.wake();
-  REQUIRE(plant.within(10, [&] { return plant.messages(1).at(0).state == DeliveryState::delivered; }));
+  REQUIRE(shop.within(10, [&] { return shop.messages(1).at(0).state == DeliveryState::delivered; }));
   const auto got = receiver.got();
   REQUIRE(got.size() == 1);
-  CHECK(got[0].body == plant.messages(1).at(0).payload_json);
+  CHECK(got[0].body == shop.messages(1).at(0).payload_json);
   CHECK(got[0].headers.at("idempotency-key") == "k1-raised-hook");
   CHECK(got[0].headers.at("content-type") == "application/json");
   CHECK(got[0].headers.count("x-hearthfront-attempt") == 0);
   const std::int64_t timestamp = std::stoll(got[0].headers.at("x-hearthfront-timestamp"));
-  CHECK(std::abs(static_cast<double>(timestamp) - static_cast<double>(plant.clock.now_us()) * 1e-6) < 60);
+  CHECK(std::abs(static_cast<double>(timestamp) - static_cast<double>(shop.clock.now_us()) * 1e-6) < 60);
   CHECK(got[0].headers.at("x-hearthfront-signature") == webhook_signature(key_text, timestamp, got[0].body));
-  CHECK(plant.within(5, [&] { return changes == 1; }));
+  CHECK(shop.within(5, [&] { return changes == 1; }));
 }
 
 TEST_CASE("a receiver in trouble is asked again with the same key, and is told which try it is") {
-  Plant plant;
+  Shop shop;
   Receiver receiver;
   receiver.answer({500, 503});
-  const std::vector<Target> targets{plant.webhook("hook", receiver.url())};
-  Dispatcher dispatcher(targets, plant.store, plant.clock, [] {});
+  const std::vector<Target> targets{shop.webhook("hook", receiver.url())};
+  Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   dispatcher.start();
-  plant.raise({"hook"});
+  shop.raise({"hook"});
   dispatcher.wake();
   const auto failed = [&](std::int64_t attempts) {
-    return plant.within(10, [&] {
-      const auto row = plant.messages(1).at(0);
-      return row.attempts == attempts && row.next_try_us > plant.clock.now_us();
+    return shop.within(10, [&] {
+      const auto row = shop.messages(1).at(0);
+      return row.attempts == attempts && row.next_try_us > shop.clock.now_us();
     });
   };
   // The wait is put aside, as if it had passed.
   const auto due_now = [&] {
-    const auto row = plant.messages(1).at(0);
-    plant.store.note_delivery(
-        {row.id, DeliveryState::waiting, row.attempts, plant.clock.now_us(), {}, row.last_error});
+    const auto row = shop.messages(1).at(0);
+    shop.store.note_delivery(
+        {row.id, DeliveryState::waiting, row.attempts, shop.clock.now_us(), {}, row.last_error});
     dispatcher.wake();
   };
   REQUIRE(failed(1));
-  double wait_s = static_cast<double>(plant.messages(1).at(0).next_try_us - plant.clock.now_us()) * 1e-6;
+  double wait_s = static_cast<double>(shop.messages(1).at(0).next_try_us - shop.clock.now_us()) * 1e-6;
   CHECK(wait_s > 5);
   CHECK(wait_s <= 12.5);
-  CHECK(plant.messages(1).at(0).last_error.find("answered 500: as told") != std::string::npos);
+  CHECK(shop.messages(1).at(0).last_error.find("answered 500: as told") != std::string::npos);
   due_now();
   REQUIRE(failed(2));
-  wait_s = static_cast<double>(plant.messages(1).at(0).next_try_us - plant.clock.now_us()) * 1e-6;
+  wait_s = static_cast<double>(shop.messages(1).at(0).next_try_us - shop.clock.now_us()) * 1e-6;
   CHECK(wait_s > 110);  // Retry-After: 120
   CHECK(wait_s <= 120);
   due_now();
-  REQUIRE(plant.within(10, [&] { return plant.messages(1).at(0).state == DeliveryState::delivered; }));
+  REQUIRE(shop.within(10, [&] { return shop.messages(1).at(0).state == DeliveryState::delivered; }));
   const auto got = receiver.got();
   REQUIRE(got.size() == 3);
   CHECK(got[1].headers.at("x-hearthfront-attempt") == "2");
@@ -208,49 +208,49 @@ TEST_CASE("a receiver in trouble is asked again with the same key, and is told w
 }
 
 TEST_CASE("a refusal is stuck at once, a redirect too, and the limit of tries holds") {
-  Plant plant;
+  Shop shop;
   Receiver receiver;
   receiver.answer({404, 302, 500});
-  std::vector<Target> targets{plant.webhook("hook", receiver.url())};
+  std::vector<Target> targets{shop.webhook("hook", receiver.url())};
   targets[0].attempts_limit = 1;
-  Dispatcher dispatcher(targets, plant.store, plant.clock, [] {});
-  for (int i = 0; i < 3; ++i) plant.raise({"hook"});
+  Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
+  for (int i = 0; i < 3; ++i) shop.raise({"hook"});
   dispatcher.start();
   for (const int alert : {1, 2, 3})
-    REQUIRE(plant.within(15, [&] { return plant.messages(alert).at(0).state == DeliveryState::stuck; }));
+    REQUIRE(shop.within(15, [&] { return shop.messages(alert).at(0).state == DeliveryState::stuck; }));
   CHECK(receiver.got().size() == 3);  // no redirect was followed
-  CHECK(plant.messages(2).at(0).last_error.find("answered 302") != std::string::npos);
+  CHECK(shop.messages(2).at(0).last_error.find("answered 302") != std::string::npos);
   // A person has them tried again.
-  CHECK(plant.store.retry_stuck("hook",
-                                {plant.clock.now_us(), "Test", "retry target", "target hook", "", ""}) == 3);
+  CHECK(shop.store.retry_stuck("hook",
+                                {shop.clock.now_us(), "Test", "retry target", "target hook", "", ""}) == 3);
   dispatcher.wake();
   for (const int alert : {1, 2, 3})
-    CHECK(plant.within(15, [&] { return plant.messages(alert).at(0).state == DeliveryState::delivered; }));
+    CHECK(shop.within(15, [&] { return shop.messages(alert).at(0).state == DeliveryState::delivered; }));
 }
 
 TEST_CASE("a missing key file makes the target stuck and says so; nothing secret is in it") {
-  Plant plant;
+  Shop shop;
   Receiver receiver;
-  std::vector<Target> targets{plant.webhook("hook", receiver.url())};
-  std::get<WebhookTarget>(targets[0].to).secret_file = plant.folder.path("later");
-  Dispatcher dispatcher(targets, plant.store, plant.clock, [] {});
+  std::vector<Target> targets{shop.webhook("hook", receiver.url())};
+  std::get<WebhookTarget>(targets[0].to).secret_file = shop.folder.path("later");
+  Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   dispatcher.start();
   CHECK(dispatcher.fault(targets[0]).find("later cannot be read: No such file or directory") !=
         std::string::npos);
-  plant.raise({"hook"});
+  shop.raise({"hook"});
   dispatcher.wake();
-  REQUIRE(plant.within(10, [&] { return plant.messages(1).at(0).state == DeliveryState::stuck; }));
-  CHECK(plant.messages(1).at(0).last_error == dispatcher.fault(targets[0]));
+  REQUIRE(shop.within(10, [&] { return shop.messages(1).at(0).state == DeliveryState::stuck; }));
+  CHECK(shop.messages(1).at(0).last_error == dispatcher.fault(targets[0]));
   CHECK(receiver.got().empty());
 
-  plant.folder.write("later", "too short");
+  shop.folder.write("later", "too short");
   CHECK(dispatcher.fault(targets[0]).find("holds 9 bytes, 16 are the least") != std::string::npos);
   CHECK(dispatcher.fault(targets[0]).find("too short") == std::string::npos);
-  plant.folder.write("later", "another key of sixteen bytes");  // read anew, no restart
+  shop.folder.write("later", "another key of sixteen bytes");  // read anew, no restart
   CHECK(dispatcher.fault(targets[0]).empty());
-  plant.store.retry_stuck("hook", {plant.clock.now_us(), "Test", "retry target", "target hook", "", ""});
+  shop.store.retry_stuck("hook", {shop.clock.now_us(), "Test", "retry target", "target hook", "", ""});
   dispatcher.wake();
-  REQUIRE(plant.within(10, [&] { return plant.messages(1).at(0).state == DeliveryState::delivered; }));
+  REQUIRE(shop.within(10, [&] { return shop.messages(1).at(0).state == DeliveryState::delivered; }));
   const auto got = receiver.got();
   CHECK(got[0].headers.at("x-hearthfront-signature") ==
         webhook_signature("another key of sixteen bytes",
@@ -258,13 +258,13 @@ TEST_CASE("a missing key file makes the target stuck and says so; nothing secret
 }
 
 TEST_CASE("targets that hang hold up nobody, and the dispatcher stops all the same") {
-  Plant plant;
+  Shop shop;
   Receiver receiver;
   const SilentSocket silent;
   std::vector<Target> targets{
-      plant.webhook("hangs", "http://127.0.0.1:" + std::to_string(silent.port) + "/"),
-      plant.webhook("tls-hangs", "https://127.0.0.1:" + std::to_string(silent.port) + "/"),
-      plant.webhook("works", receiver.url()), Target{}, Target{}};
+      shop.webhook("hangs", "http://127.0.0.1:" + std::to_string(silent.port) + "/"),
+      shop.webhook("tls-hangs", "https://127.0.0.1:" + std::to_string(silent.port) + "/"),
+      shop.webhook("works", receiver.url()), Target{}, Target{}};
   targets[3].name = "mail-hangs";
   targets[3].to = MailTarget{"127.0.0.1", silent.port, "none", "", "", "a@x.example", {"b@x.example"}, ""};
   targets[4].name = "broker-hangs";
@@ -274,16 +274,16 @@ TEST_CASE("targets that hang hold up nobody, and the dispatcher stops all the sa
   broker.client_id = "test";
   targets[4].to = broker;
   for (Target& target : targets) target.timeout_s = 60;
-  Dispatcher dispatcher(targets, plant.store, plant.clock, [] {});
+  Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   dispatcher.start();
-  plant.raise({"hangs", "tls-hangs", "works", "mail-hangs", "broker-hangs"});
+  shop.raise({"hangs", "tls-hangs", "works", "mail-hangs", "broker-hangs"});
   dispatcher.wake();
-  REQUIRE(plant.within(10, [&] { return plant.messages(1).at(2).state == DeliveryState::delivered; }));
-  REQUIRE(plant.within(10, [&] { return plant.messages(1).at(4).attempts == 1; }));
+  REQUIRE(shop.within(10, [&] { return shop.messages(1).at(2).state == DeliveryState::delivered; }));
+  REQUIRE(shop.within(10, [&] { return shop.messages(1).at(4).attempts == 1; }));
   std::this_thread::sleep_for(std::chrono::milliseconds(300));
   CHECK(seconds_of([&] { dispatcher.stop(); }) < 2);
   for (const std::size_t i : {0u, 1u, 3u, 4u}) {
-    const auto row = plant.messages(1).at(i);
+    const auto row = shop.messages(1).at(i);
     CAPTURE(row.target);
     CHECK(row.state == DeliveryState::waiting);  // for the next start
     CHECK(row.attempts == 1);
@@ -291,12 +291,12 @@ TEST_CASE("targets that hang hold up nobody, and the dispatcher stops all the sa
 }
 
 TEST_CASE("a slow receiver is given up after the target's timeout") {
-  Plant plant;
+  Shop shop;
   const SilentSocket silent;
   std::vector<Target> targets{
-      plant.webhook("hangs", "http://127.0.0.1:" + std::to_string(silent.port) + "/")};
+      shop.webhook("hangs", "http://127.0.0.1:" + std::to_string(silent.port) + "/")};
   targets[0].timeout_s = 1;
-  Dispatcher dispatcher(targets, plant.store, plant.clock, [] {});
+  Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   const double took_s = seconds_of([&] {
     const SendResult result = dispatcher.test(targets[0], "Test");
     CHECK(result.outcome == SendOutcome::again);
@@ -307,13 +307,13 @@ TEST_CASE("a slow receiver is given up after the target's timeout") {
 }
 
 TEST_CASE("messages to a target that the settings no longer name are given up at the start") {
-  Plant plant;
+  Shop shop;
   Receiver receiver;
-  plant.raise({"gone", "hook"});
-  const std::vector<Target> targets{plant.webhook("hook", receiver.url())};
-  Dispatcher dispatcher(targets, plant.store, plant.clock, [] {});
+  shop.raise({"gone", "hook"});
+  const std::vector<Target> targets{shop.webhook("hook", receiver.url())};
+  Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   dispatcher.start();
-  CHECK(plant.messages(1).at(0).state == DeliveryState::dropped);
-  CHECK(plant.messages(1).at(0).last_error == "the settings no longer have a target of this name");
-  CHECK(plant.within(10, [&] { return plant.messages(1).at(1).state == DeliveryState::delivered; }));
+  CHECK(shop.messages(1).at(0).state == DeliveryState::dropped);
+  CHECK(shop.messages(1).at(0).last_error == "the settings no longer have a target of this name");
+  CHECK(shop.within(10, [&] { return shop.messages(1).at(1).state == DeliveryState::delivered; }));
 }
