@@ -10,6 +10,7 @@
 #include "server/command/commands.h"
 #include "server/command/signals.h"
 #include "server/delivery/dispatcher.h"
+#include "server/delivery/routing.h"
 #include "server/live/engine.h"
 
 namespace hearthfront::server {
@@ -127,6 +128,7 @@ int run_serve(const std::string& settings_path) {
   const Plant plant =
       read_plant(settings.path_of(settings.files.plant), settings.path_of(settings.files.steels), errors);
   if (errors.ok()) check_clock_is_allowed(settings, plant, errors);
+  if (errors.ok()) check_targets(settings.targets, plant, alert_kinds(), errors);
   if (!errors.ok()) {
     for (const std::string& message : errors.messages) std::fprintf(stderr, "%s\n", message.c_str());
     return exit_bad_input;

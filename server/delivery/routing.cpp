@@ -27,6 +27,25 @@ bool wants(const Target& target, const storage::AlertRow& alert) {
          holds(target.kinds, alert.kind);
 }
 
+std::vector<Route> routes_of(const std::vector<Target>& targets, const storage::AlertRow& alert) {
+  std::vector<Route> routes;
+  for (const Target& target : targets) {
+    if (!wants(target, alert)) continue;
+    Route route{target.name, std::nullopt};
+    if (target.after_unacknowledged_min > 0) route.after_unacknowledged_min = target.after_unacknowledged_min;
+    routes.push_back(std::move(route));
+  }
+  return routes;
+}
+
+const std::vector<std::string>& alert_kinds() {
+  static const std::vector<std::string> kinds{
+      "projected miss",      "segment due", "off recipe",  "carbide limit",    "model out of range",
+      "no reading",          "gap",         "sooting gas", "sources disagree", "stuck reading",
+      "implausible reading", "disk",        "clock",       "delivery stuck"};
+  return kinds;
+}
+
 std::string routes_sentence(const Target& target) {
   const char* const severities[] = {"Every alert", "Warnings and urgent alerts", "Urgent alerts"};
   std::string text = severities[rank(target.least_severity)];

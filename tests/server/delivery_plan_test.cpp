@@ -1,6 +1,11 @@
 // Who is told, and when a failed message is tried again. Rules of our own: common practice, no source.
 #include <doctest/doctest.h>
 
+#include <filesystem>
+#include <fstream>
+#include <set>
+#include <sstream>
+
 #include "server/delivery/backoff.h"
 #include "server/delivery/routing.h"
 #include "server/delivery/target_worker.h"
@@ -63,6 +68,41 @@ TEST_CASE("a target is told by furnace, kind and severity") {
   }
   // What cannot be delivered to it is no news for it.
   CHECK_FALSE(wants(all, alert("", "delivery stuck", "warning", "all")));
+}
+
+TEST_CASE("the book of alerts gets the targets with their patience") {
+  std::vector<Target> targets(3);
+  targets[0].name = "now";
+  targets[1].name = "later";
+  targets[1].after_unacknowledged_min = 15;
+  targets[2].name = "never";
+  targets[2].kinds = {"disk"};
+  const auto routes = routes_of(targets, alert("pit-2", "gap", "warning"));
+  REQUIRE(routes.size() == 2);
+  CHECK(routes[0].target == "now");
+  CHECK_FALSE(routes[0].after_unacknowledged_min.has_value());
+  CHECK(routes[1].target == "later");
+  CHECK(routes[1].after_unacknowledged_min == 15.0);
+}
+
+TEST_CASE("the kinds that a target may name are those that the rules raise") {
+  const char* const places[] = {
+      "of_furnace(furnace, \"",    "judged(furnace, \"", "of_load(view, \"", "judged_load(view, \"",
+      "judge(findings, state, \"", "* kind = \"",        "* kind : {\""};
+  std::set<std::string> raised;
+  for (const auto& entry :
+       std::filesystem::directory_iterator(std::string(HF_SOURCE_DIR) + "/server/alerts")) {
+    if (!entry.path().filename().string().starts_with("rules_")) continue;
+    std::stringstream text;
+    text << std::ifstream(entry.path()).rdbuf();
+    const std::string source = text.str();
+    for (const std::string place : places)
+      for (std::size_t at = source.find(place); at != std::string::npos; at = source.find(place, at + 1)) {
+        const std::size_t start = at + place.size();
+        raised.insert(source.substr(start, source.find('"', start) - start));
+      }
+  }
+  CHECK(raised == std::set<std::string>(alert_kinds().begin(), alert_kinds().end()));
 }
 
 TEST_CASE("what a target wants is one sentence") {

@@ -55,7 +55,7 @@ export class HookReceiver {
         const given = headers['x-hearthfront-signature'] ?? '';
         const signed = given.length === expected.length && timingSafeEqual(Buffer.from(given), Buffer.from(expected));
         const { status, after_ms } = this.answer;
-        this.got.push({ key: headers['idempotency-key'], attempt: Number(headers['x-hearthfront-attempt'] ?? 1), signed, body: JSON.parse(body), status });
+        this.got.push({ key: headers['idempotency-key'], attempt: Number(headers['x-hearthfront-attempt'] ?? 1), signed, body: JSON.parse(body), status, raw: body, headers });
         setTimeout(() => response.writeHead(status).end(), after_ms);
       });
     });
@@ -118,7 +118,7 @@ export class Broker {
   constructor(folder) {
     this.folder = folder;
     this.got = [];
-    this.muted = false;
+    this.delay_ms = 0;
     this.sockets = new Set();
   }
 
@@ -162,7 +162,7 @@ export class Broker {
     this.child?.kill('SIGHUP');
   }
 
-  // The proxy. While `muted` nothing the broker says after its first answer to MQTT gets through.
+  // The proxy; what the broker says goes through `delay_ms` later.
   async open(port) {
     this.port = port;
     this.proxy = createSocketServer((client) => {
@@ -170,7 +170,7 @@ export class Broker {
       this.sockets.add(client).add(broker);
       client.pipe(broker);
       broker.on('data', (part) => {
-        if (!this.muted) client.write(part);
+        setTimeout(() => client.write(part), this.delay_ms);
       });
       for (const each of [client, broker]) {
         each.on('error', () => {});
