@@ -112,7 +112,7 @@ class Api {
   FoundLoad find_load(const Request& request);
   std::optional<FoundLoad> load_of(std::int64_t id, storage::Reader& reader) const;
   const Furnace& find_furnace(const Request& request) const;
-  const Target& find_target(const Request& request) const;
+  const DeliveryTarget& find_target(const Request& request) const;
   FoundChannel find_channel(const Furnace& furnace, const std::string& name) const;
   void check_times(const LoadDefinition& load) const;
   // The body with each "rework_of" replaced by the final profile of the item it names.

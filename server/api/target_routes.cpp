@@ -25,9 +25,9 @@ std::string person_of(const Request& request) {
 
 }  // namespace
 
-const Target& Api::find_target(const Request& request) const {
+const DeliveryTarget& Api::find_target(const Request& request) const {
   const std::string& name = request.path_parameters.at(0);
-  const Target* target = parts_.dispatcher.find(name);
+  const DeliveryTarget* target = parts_.dispatcher.find(name);
   if (!target)
     throw Problem{
         404, "unknown-target", "There is no such target",
@@ -42,7 +42,7 @@ Response Api::targets(const Request&) {
     states[name] = std::move(state);
   }
   Json list = Json::array();
-  for (const Target& target : parts_.dispatcher.targets()) {
+  for (const DeliveryTarget& target : parts_.dispatcher.targets()) {
     const storage::TargetState& state = states[target.name];
     // What stands in the way now goes before what went wrong last.
     const std::string fault = parts_.dispatcher.fault(target);
@@ -60,7 +60,7 @@ Response Api::targets(const Request&) {
 }
 
 Response Api::test_target(const Request& request) {
-  const Target& target = find_target(request);
+  const DeliveryTarget& target = find_target(request);
   const std::string person = person_of(request);
   const SendResult result = parts_.dispatcher.test(target, person);
   const bool delivered = result.outcome == SendOutcome::delivered;
@@ -71,7 +71,7 @@ Response Api::test_target(const Request& request) {
 }
 
 Response Api::retry_target(const Request& request) {
-  const Target& target = find_target(request);
+  const DeliveryTarget& target = find_target(request);
   const std::string person = person_of(request);
   const std::int64_t retried = parts_.store.retry_stuck(
       target.name, {parts_.clock.now_us(), person, "retry target", "target " + target.name, "", ""});

@@ -71,7 +71,7 @@ struct Settings {
     bool is_scaled() const { return speed != 1.0 || anchor_real_us || anchor_data_us; }
   } clock;
 
-  std::vector<Target> targets;  // who is told of alerts
+  std::vector<DeliveryTarget> targets;  // who is told of alerts
 
   std::string folder = ".";                            // of the settings file
   std::string path_of(const std::string& file) const;  // relative names start at `folder`

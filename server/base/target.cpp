@@ -152,8 +152,8 @@ void absolute(std::string& file, const Settings& settings) {
   if (!file.empty()) file = settings.path_of(file);
 }
 
-Target read_target(ConfigTable& table, const Settings& settings) {
-  Target target;
+DeliveryTarget read_target(ConfigTable& table, const Settings& settings) {
+  DeliveryTarget target;
   target.place = table.where("name");
   std::string kind;
   table.text("name", target.name, 1, 100);
@@ -192,12 +192,12 @@ Target read_target(ConfigTable& table, const Settings& settings) {
 
 }  // namespace
 
-const char* Target::kind() const {
+const char* DeliveryTarget::kind() const {
   const char* const words[] = {"webhook", "mail", "mqtt"};
   return words[to.index()];
 }
 
-std::string Target::where() const {
+std::string DeliveryTarget::where() const {
   if (const auto* webhook = std::get_if<WebhookTarget>(&to)) return shown_url(webhook->url);
   if (const auto* mail = std::get_if<MailTarget>(&to)) {
     std::string addresses;
@@ -208,23 +208,24 @@ std::string Target::where() const {
   return mqtt.host + ":" + std::to_string(mqtt.port) + "/" + mqtt.topic;
 }
 
-std::vector<Target> read_targets(ConfigTable& root, const Settings& settings) {
-  std::vector<Target> targets;
+std::vector<DeliveryTarget> read_targets(ConfigTable& root, const Settings& settings) {
+  std::vector<DeliveryTarget> targets;
   for (ConfigTable& table : root.tables("target")) {
-    Target target = read_target(table, settings);
-    if (std::any_of(targets.begin(), targets.end(),
-                    [&](const Target& other) { return !target.name.empty() && other.name == target.name; }))
+    DeliveryTarget target = read_target(table, settings);
+    if (std::any_of(targets.begin(), targets.end(), [&](const DeliveryTarget& other) {
+          return !target.name.empty() && other.name == target.name;
+        }))
       table.fault("name", "there is another target \"" + target.name + "\"");
     targets.push_back(std::move(target));
   }
   return targets;
 }
 
-void check_targets(const std::vector<Target>& targets, const Plant& plant,
+void check_targets(const std::vector<DeliveryTarget>& targets, const Plant& plant,
                    const std::vector<std::string>& kinds, ConfigErrors& errors) {
   std::vector<std::string> furnaces;
   for (const Furnace& furnace : plant.furnaces) furnaces.push_back(furnace.id);
-  const auto refuse_unknown = [&](const Target& target, const std::vector<std::string>& named,
+  const auto refuse_unknown = [&](const DeliveryTarget& target, const std::vector<std::string>& named,
                                   const std::vector<std::string>& known, const char* what) {
     for (const std::string& word : named) {
       if (std::find(known.begin(), known.end(), word) != known.end()) continue;
@@ -232,13 +233,13 @@ void check_targets(const std::vector<Target>& targets, const Plant& plant,
                                 " \"" + word + "\"" + suggestion(word, known));
     }
   };
-  for (const Target& target : targets) {
+  for (const DeliveryTarget& target : targets) {
     refuse_unknown(target, target.furnaces, furnaces, "furnace");
     refuse_unknown(target, target.kinds, kinds, "kind of alert");
   }
 }
 
-std::vector<std::pair<std::string, std::string>> list_target_options(const Target& target) {
+std::vector<std::pair<std::string, std::string>> list_target_options(const DeliveryTarget& target) {
   std::vector<std::pair<std::string, std::string>> options{{"name", toml_text(target.name)},
                                                            {"kind", toml_text(std::string(target.kind()))}};
   const auto list = [&](const char* key, const auto& value, int, int) {

@@ -46,7 +46,7 @@ struct MqttTarget {
   std::string protocol = "5";  // or "3.1.1", whose brokers cannot tell that a message was refused
 };
 
-struct Target {
+struct DeliveryTarget {
   std::string name;
   // What it is told; an empty list means all. A target with furnaces is not told what belongs to none.
   std::vector<std::string> furnaces, kinds;
@@ -62,13 +62,13 @@ struct Target {
 };
 
 // All [[target]] tables of the file; faults go to `errors`. File names start at the settings' folder.
-std::vector<Target> read_targets(ConfigTable& root, const Settings& settings);
+std::vector<DeliveryTarget> read_targets(ConfigTable& root, const Settings& settings);
 
 // Furnaces and alert kinds that targets name must exist; `kinds` are those that rules can raise.
-void check_targets(const std::vector<Target>& targets, const Plant& plant,
+void check_targets(const std::vector<DeliveryTarget>& targets, const Plant& plant,
                    const std::vector<std::string>& kinds, ConfigErrors& errors);
 
 // Every option of the target's kind with its value in TOML text, in the order of the shipped file.
-std::vector<std::pair<std::string, std::string>> list_target_options(const Target& target);
+std::vector<std::pair<std::string, std::string>> list_target_options(const DeliveryTarget& target);
 
 }  // namespace hearthfront::server

@@ -21,7 +21,7 @@ int run_check(const std::string& settings_path) {
     return exit_bad_input;
   }
   // No reason not to start: the daemon says so again, and the file may come later.
-  for (const Target& target : settings.targets)
+  for (const DeliveryTarget& target : settings.targets)
     if (const std::string fault = make_sender(target)->fault(); !fault.empty())
       std::fprintf(stderr, "Target \"%s\" cannot be told anything yet: %s\n", target.name.c_str(),
                    fault.c_str());

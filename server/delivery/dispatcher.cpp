@@ -14,7 +14,7 @@ constexpr int longest_test_s = 10;
 
 }  // namespace
 
-Dispatcher::Dispatcher(const std::vector<Target>& targets, storage::Store& store, const Clock& clock,
+Dispatcher::Dispatcher(const std::vector<DeliveryTarget>& targets, storage::Store& store, const Clock& clock,
                        std::function<void()> changed)
     : targets_(targets), store_(store), clock_(clock), changed_(std::move(changed)) {}
 
@@ -35,7 +35,7 @@ void Dispatcher::start() {
     log_warn("messages to a target were given up",
              {{"target", known.target}, {"messages", known.waiting}, {"what", why}});
   }
-  for (const Target& target : targets_) {
+  for (const DeliveryTarget& target : targets_) {
     if (const std::string wrong = fault(target); !wrong.empty())
       log_error("nothing can be sent to a target", {{"target", target.name}, {"what", wrong}});
     workers_.push_back(std::make_unique<TargetWorker>(WorkerParts{target, store_, clock_, changed_}));
@@ -54,17 +54,17 @@ void Dispatcher::wake() {
   for (const auto& worker : workers_) worker->wake();
 }
 
-const Target* Dispatcher::find(const std::string& name) const {
+const DeliveryTarget* Dispatcher::find(const std::string& name) const {
   const auto found =
-      std::find_if(targets_.begin(), targets_.end(), [&](const Target& t) { return t.name == name; });
+      std::find_if(targets_.begin(), targets_.end(), [&](const DeliveryTarget& t) { return t.name == name; });
   return found == targets_.end() ? nullptr : &*found;
 }
 
-std::string Dispatcher::fault(const Target& target) const {
+std::string Dispatcher::fault(const DeliveryTarget& target) const {
   return make_sender(target)->fault();
 }
 
-SendResult Dispatcher::test(const Target& target, const std::string& person) {
+SendResult Dispatcher::test(const DeliveryTarget& target, const std::string& person) {
   const std::unique_lock lock(test_mutex_, std::try_to_lock);
   if (!lock.owns_lock())
     return {SendOutcome::again, "another test is under way; try again in some seconds", 0};
@@ -78,7 +78,7 @@ SendResult Dispatcher::test(const Target& target, const std::string& person) {
                      {"person", person},
                      {"sentence", "This is a test: " + person + " wants to know whether alerts arrive here."},
                      {"advice", "Nothing is to be done."}};
-  Target hurried = target;
+  DeliveryTarget hurried = target;
   hurried.timeout_s = std::min(target.timeout_s, longest_test_s);
   SendResult result = make_sender(hurried)->send({key, "", 1, dumped(payload)}, stop_.get_token());
   if (result.outcome == SendOutcome::stopped) result.error = "the daemon is stopping";

@@ -25,7 +25,7 @@ class Dispatcher {
  public:
   // The references must outlive it. `changed` is called after a message went or failed, from a target's
   // thread.
-  Dispatcher(const std::vector<Target>& targets, storage::Store& store, const Clock& clock,
+  Dispatcher(const std::vector<DeliveryTarget>& targets, storage::Store& store, const Clock& clock,
              std::function<void()> changed);
   ~Dispatcher();
   Dispatcher(const Dispatcher&) = delete;
@@ -40,16 +40,16 @@ class Dispatcher {
   // There may be something new in the outbox. Never waits. Any thread.
   void wake();
 
-  const std::vector<Target>& targets() const { return targets_; }
-  const Target* find(const std::string& name) const;
+  const std::vector<DeliveryTarget>& targets() const { return targets_; }
+  const DeliveryTarget* find(const std::string& name) const;
   // Why nothing can be sent to it at all, as of now; empty: nothing known.
-  std::string fault(const Target& target) const;
+  std::string fault(const DeliveryTarget& target) const;
   // Sends a message that says it is a test, now and once, on the calling thread; takes 10 s at most. One test
   // at a time: a second one is answered SendOutcome::again at once.
-  SendResult test(const Target& target, const std::string& person);
+  SendResult test(const DeliveryTarget& target, const std::string& person);
 
  private:
-  const std::vector<Target>& targets_;
+  const std::vector<DeliveryTarget>& targets_;
   storage::Store& store_;
   const Clock& clock_;
   std::function<void()> changed_;

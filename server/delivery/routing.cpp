@@ -21,15 +21,15 @@ std::string joined(const std::vector<std::string>& words) {
 
 }  // namespace
 
-bool wants(const Target& target, const storage::AlertRow& alert) {
+bool wants(const DeliveryTarget& target, const storage::AlertRow& alert) {
   if (alert.kind == "delivery stuck" && alert.subject == target.name) return false;
   return rank(alert.severity) >= rank(target.least_severity) && holds(target.furnaces, alert.furnace) &&
          holds(target.kinds, alert.kind);
 }
 
-std::vector<Route> routes_of(const std::vector<Target>& targets, const storage::AlertRow& alert) {
+std::vector<Route> routes_of(const std::vector<DeliveryTarget>& targets, const storage::AlertRow& alert) {
   std::vector<Route> routes;
-  for (const Target& target : targets) {
+  for (const DeliveryTarget& target : targets) {
     if (!wants(target, alert)) continue;
     Route route{target.name, std::nullopt};
     if (target.after_unacknowledged_min > 0) route.after_unacknowledged_min = target.after_unacknowledged_min;
@@ -46,7 +46,7 @@ const std::vector<std::string>& alert_kinds() {
   return kinds;
 }
 
-std::string routes_sentence(const Target& target) {
+std::string routes_sentence(const DeliveryTarget& target) {
   const char* const severities[] = {"Every alert", "Warnings and urgent alerts", "Urgent alerts"};
   std::string text = severities[rank(target.least_severity)];
   if (!target.kinds.empty()) text += " of the kinds " + joined(target.kinds);

@@ -2,7 +2,7 @@
 
 namespace hearthfront::server {
 
-std::unique_ptr<Sender> make_sender(const Target& target) {
+std::unique_ptr<Sender> make_sender(const DeliveryTarget& target) {
   if (const auto* webhook = std::get_if<WebhookTarget>(&target.to))
     return make_webhook_sender(*webhook, target.timeout_s);
   if (const auto* mail = std::get_if<MailTarget>(&target.to))

@@ -45,7 +45,7 @@ class Sender {
   virtual std::string fault() const = 0;
 };
 
-std::unique_ptr<Sender> make_sender(const Target& target);
+std::unique_ptr<Sender> make_sender(const DeliveryTarget& target);
 std::unique_ptr<Sender> make_webhook_sender(const WebhookTarget& target, int timeout_s);
 std::unique_ptr<Sender> make_mail_sender(const MailTarget& target, int timeout_s);
 std::unique_ptr<Sender> make_mqtt_sender(const MqttTarget& target, int timeout_s);

@@ -17,7 +17,7 @@
 namespace hearthfront::server {
 
 struct WorkerParts {
-  const Target& target;
+  const DeliveryTarget& target;
   storage::Store& store;
   const Clock& clock;
   const std::function<void()>& changed;

@@ -85,8 +85,8 @@ class SilentSocket {
 
 struct Shop {
   Shop() { folder.write("key", key_text + "\n"); }
-  Target webhook(const std::string& name, const std::string& url) const {
-    Target target;
+  DeliveryTarget webhook(const std::string& name, const std::string& url) const {
+    DeliveryTarget target;
     target.name = name;
     target.to = WebhookTarget{url, folder.path("key"), ""};
     return target;
@@ -146,7 +146,7 @@ double seconds_of(const std::function<void()>& call) {
 TEST_CASE("a message arrives signed, with its key, and is noted as delivered") {
   Shop shop;
   Receiver receiver;
-  const std::vector<Target> targets{shop.webhook("hook", receiver.url())};
+  const std::vector<DeliveryTarget> targets{shop.webhook("hook", receiver.url())};
   std::atomic<int> changes{0};
   Dispatcher dispatcher(targets, shop.store, shop.clock, [&] { ++changes; });
   dispatcher.start();
@@ -169,7 +169,7 @@ TEST_CASE("a receiver in trouble is asked again with the same key, and is told w
   Shop shop;
   Receiver receiver;
   receiver.answer({500, 503});
-  const std::vector<Target> targets{shop.webhook("hook", receiver.url())};
+  const std::vector<DeliveryTarget> targets{shop.webhook("hook", receiver.url())};
   Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   dispatcher.start();
   shop.raise({"hook"});
@@ -211,7 +211,7 @@ TEST_CASE("a refusal is stuck at once, a redirect too, and the limit of tries ho
   Shop shop;
   Receiver receiver;
   receiver.answer({404, 302, 500});
-  std::vector<Target> targets{shop.webhook("hook", receiver.url())};
+  std::vector<DeliveryTarget> targets{shop.webhook("hook", receiver.url())};
   targets[0].attempts_limit = 1;
   Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   for (int i = 0; i < 3; ++i) shop.raise({"hook"});
@@ -222,7 +222,7 @@ TEST_CASE("a refusal is stuck at once, a redirect too, and the limit of tries ho
   CHECK(shop.messages(2).at(0).last_error.find("answered 302") != std::string::npos);
   // A person has them tried again.
   CHECK(shop.store.retry_stuck("hook",
-                                {shop.clock.now_us(), "Test", "retry target", "target hook", "", ""}) == 3);
+                               {shop.clock.now_us(), "Test", "retry target", "target hook", "", ""}) == 3);
   dispatcher.wake();
   for (const int alert : {1, 2, 3})
     CHECK(shop.within(15, [&] { return shop.messages(alert).at(0).state == DeliveryState::delivered; }));
@@ -231,7 +231,7 @@ TEST_CASE("a refusal is stuck at once, a redirect too, and the limit of tries ho
 TEST_CASE("a missing key file makes the target stuck and says so; nothing secret is in it") {
   Shop shop;
   Receiver receiver;
-  std::vector<Target> targets{shop.webhook("hook", receiver.url())};
+  std::vector<DeliveryTarget> targets{shop.webhook("hook", receiver.url())};
   std::get<WebhookTarget>(targets[0].to).secret_file = shop.folder.path("later");
   Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   dispatcher.start();
@@ -261,10 +261,10 @@ TEST_CASE("targets that hang hold up nobody, and the dispatcher stops all the sa
   Shop shop;
   Receiver receiver;
   const SilentSocket silent;
-  std::vector<Target> targets{
+  std::vector<DeliveryTarget> targets{
       shop.webhook("hangs", "http://127.0.0.1:" + std::to_string(silent.port) + "/"),
       shop.webhook("tls-hangs", "https://127.0.0.1:" + std::to_string(silent.port) + "/"),
-      shop.webhook("works", receiver.url()), Target{}, Target{}};
+      shop.webhook("works", receiver.url()), DeliveryTarget{}, DeliveryTarget{}};
   targets[3].name = "mail-hangs";
   targets[3].to = MailTarget{"127.0.0.1", silent.port, "none", "", "", "a@x.example", {"b@x.example"}, ""};
   targets[4].name = "broker-hangs";
@@ -273,7 +273,7 @@ TEST_CASE("targets that hang hold up nobody, and the dispatcher stops all the sa
   broker.port = silent.port;
   broker.client_id = "test";
   targets[4].to = broker;
-  for (Target& target : targets) target.timeout_s = 60;
+  for (DeliveryTarget& target : targets) target.timeout_s = 60;
   Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   dispatcher.start();
   shop.raise({"hangs", "tls-hangs", "works", "mail-hangs", "broker-hangs"});
@@ -293,7 +293,7 @@ TEST_CASE("targets that hang hold up nobody, and the dispatcher stops all the sa
 TEST_CASE("a slow receiver is given up after the target's timeout") {
   Shop shop;
   const SilentSocket silent;
-  std::vector<Target> targets{
+  std::vector<DeliveryTarget> targets{
       shop.webhook("hangs", "http://127.0.0.1:" + std::to_string(silent.port) + "/")};
   targets[0].timeout_s = 1;
   Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
@@ -310,7 +310,7 @@ TEST_CASE("messages to a target that the settings no longer name are given up at
   Shop shop;
   Receiver receiver;
   shop.raise({"gone", "hook"});
-  const std::vector<Target> targets{shop.webhook("hook", receiver.url())};
+  const std::vector<DeliveryTarget> targets{shop.webhook("hook", receiver.url())};
   Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
   dispatcher.start();
   CHECK(shop.messages(1).at(0).state == DeliveryState::dropped);

@@ -37,15 +37,15 @@ storage::OutboxRow waiting(std::int64_t id, std::int64_t of_alert, std::int64_t 
 }  // namespace
 
 TEST_CASE("a target is told by furnace, kind and severity") {
-  Target all;
+  DeliveryTarget all;
   all.name = "all";
-  Target pit = all;
+  DeliveryTarget pit = all;
   pit.furnaces = {"pit-2", "pit-3"};
-  Target gaps = all;
+  DeliveryTarget gaps = all;
   gaps.kinds = {"gap"};
-  Target urgent = all;
+  DeliveryTarget urgent = all;
   urgent.least_severity = "urgent";
-  Target warning = all;
+  DeliveryTarget warning = all;
   warning.least_severity = "warning";
   struct Row {
     storage::AlertRow row;
@@ -71,7 +71,7 @@ TEST_CASE("a target is told by furnace, kind and severity") {
 }
 
 TEST_CASE("the book of alerts gets the targets with their patience") {
-  std::vector<Target> targets(3);
+  std::vector<DeliveryTarget> targets(3);
   targets[0].name = "now";
   targets[1].name = "later";
   targets[1].after_unacknowledged_min = 15;
@@ -106,7 +106,7 @@ TEST_CASE("the kinds that a target may name are those that the rules raise") {
 }
 
 TEST_CASE("what a target wants is one sentence") {
-  Target target;
+  DeliveryTarget target;
   CHECK(routes_sentence(target) == "Every alert, whole plant, at once.");
   target.furnaces = {"pit-2", "pit-3"};
   target.kinds = {"gap"};

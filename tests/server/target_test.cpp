@@ -59,13 +59,13 @@ TEST_CASE(
   const std::string without_default[] = {"name",          "kind", "url", "secret_file", "server",   "user",
                                          "password_file", "from", "to",  "host",        "client_id"};
   for (std::size_t i = 0; i < 3; ++i) {
-    const Target& target = settings.targets[i];
+    const DeliveryTarget& target = settings.targets[i];
     CAPTURE(target.name);
     std::vector<std::string> written, known;
     for (const ConfigMember& option : tree->table[0].value.array[i].table) written.push_back(option.key);
     for (const auto& option : list_target_options(target)) known.push_back(option.first);
     CHECK(written == known);
-    Target plain;
+    DeliveryTarget plain;
     if (i == 1) plain.to = MailTarget{};
     if (i == 2) plain.to = MqttTarget{};
     const auto shown = list_target_options(target), defaults = list_target_options(plain);
@@ -129,7 +129,7 @@ TEST_CASE("each mistake in a target has one exact message") {
 }
 
 TEST_CASE("furnaces and kinds that a target names must exist") {
-  Target target;
+  DeliveryTarget target;
   target.name = "a";
   target.place = "s.toml:2:8";
   target.furnaces = {"f1", "f2"};

@@ -2,13 +2,15 @@
 // slow, refusing, and the daemon killed between a receiver's taking a message and the daemon's hearing of it. Every
 // repeat has the key of the first. Messages are put into the outbox while the daemon is stopped, beside an alert
 // that is past, so that no rule touches it. Limits of time: common practice, no source.
-import { spawnSync } from 'node:child_process';
+import { execFile as execFileCall, spawnSync } from 'node:child_process';
 import { readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
+import { promisify } from 'node:util';
 import { Daemon, SOURCE, binary, check, expect, finish, freePort, sleep, temporaryFolder, waitFor } from './support.mjs';
 import { Broker, HookReceiver, MailReceiver, certificates } from './receivers_support.mjs';
 
 binary();
+const execFile = promisify(execFileCall);
 const SECRETS = { hook: 'the key of the test hook', mail: 'a password for mail', broker: 'a password for the broker' };
 const NAMES = ['hook', 'mail', 'broker'];
 const folder = temporaryFolder();
@@ -31,7 +33,7 @@ name = "hook"
 kind = "webhook"
 url = "http://127.0.0.1:${ports.hook}/alerts?token=hidden-token"
 secret_file = "${join(folder, 'hook.secret')}"
-timeout_s = 3
+timeout_s = 6
 [[target]]
 name = "mail"
 kind = "mail"
@@ -42,7 +44,7 @@ user = "furnaces"
 password_file = "${join(folder, 'mail.secret')}"
 from = "furnaces@shop.example"
 to = ["shift@shop.example", "lead@shop.example"]
-timeout_s = 3
+timeout_s = 6
 [[target]]
 name = "broker"
 kind = "mqtt"
@@ -53,7 +55,7 @@ tls = true
 ${ca}
 user = "furnaces"
 password_file = "${join(folder, 'broker.secret')}"
-timeout_s = 3
+timeout_s = 6
 [[target]]
 name = "no-key"
 kind = "webhook"
@@ -85,10 +87,11 @@ async function raise(names = NAMES, events = ['raised']) {
   await daemon.start();
   return id;
 }
-const rows = (id) => daemon.sql(`SELECT target, state, attempts, last_error FROM outbox WHERE alert = ${id} ORDER BY id`).split('\n')
-  .map((line) => line.split('|')).map(([target, state, attempts, error]) => ({ target, state, attempts: Number(attempts), error }));
-const row = (id, name) => rows(id).find((each) => each.target === name);
-const all = (id, state) => rows(id).every((each) => each.state === state);
+// Not by spawnSync: the receivers live in this process.
+const rows = async (id) => JSON.parse((await execFile('sqlite3', ['-readonly', '-json', daemon.database,
+  `SELECT target, state, attempts, last_error AS error FROM outbox WHERE alert = ${id} ORDER BY id`])).stdout);
+const row = async (id, name) => (await rows(id)).find((each) => each.target === name);
+const all = async (id, state) => (await rows(id)).every((each) => each.state === state);
 const idOf = { hook: (got) => got.body.alert?.id, mail: (got) => Number(/^<alert-(\d+)-/.exec(got.headers['message-id'])?.[1]), broker: (got) => got.alert?.id };
 const receivers = { hook, mail, broker };
 const got = (name, id) => receivers[name].got.filter((each) => idOf[name](each) === id);
@@ -98,7 +101,7 @@ const target = async (name) => (await daemon.must('GET', '/api/v1/targets')).tar
 
 await check('an alert reaches all three, and each has what it needs to trust and understand it', async () => {
   const id = await raise(NAMES, ['raised', 'cleared']);
-  await waitFor('six deliveries', 15000, () => all(id, 'delivered') && got('broker', id).length === 2 && got('mail', id).length === 2);
+  await waitFor('six deliveries', 30000, async () => (await all(id, 'delivered')) && got('broker', id).length === 2 && got('mail', id).length === 2);
   const [first, second] = got('hook', id);
   expect(first.signed && second.signed, 'signature');
   expect(first.body.event === 'raised' && second.body.event === 'cleared', 'order at the hook');
@@ -156,8 +159,8 @@ await check('receivers that are away get it when they come back', async () => {
   await mail.stop();
   await broker.close();
   const id = await raise();
-  await waitFor('a failed try of each', 15000, () => rows(id).every((each) => each.state === 'waiting' && each.attempts === 1 && each.error !== ''));
-  for (const each of rows(id)) expect(/refused|connect|connection/i.test(each.error), each.error);
+  await waitFor('a failed try of each', 30000, async () => (await rows(id)).every((each) => each.state === 'waiting' && each.attempts === 1 && each.error !== ''));
+  for (const each of await rows(id)) expect(/refused|connect|connection/i.test(each.error), each.error);
   for (const name of NAMES) {
     const answer = await daemon.must('POST', `/api/v1/targets/${name}/test`, { person: 'Ada' });
     expect(!answer.delivered && answer.error.length > 10, JSON.stringify(answer));
@@ -166,7 +169,7 @@ await check('receivers that are away get it when they come back', async () => {
   await hook.start(ports.hook);
   await mail.start(ports.mail);
   await broker.open(ports.broker);
-  await waitFor('the second try, 10 to 12.5 s later', 25000, () => all(id, 'delivered') && got('broker', id).length === 1);
+  await waitFor('the second try, 10 to 12.5 s later', 25000, async () => (await all(id, 'delivered')) && got('broker', id).length === 1);
   expect(got('hook', id)[0].attempt === 2 && got('broker', id)[0].attempt === 2, 'which try it is');
 });
 
@@ -175,30 +178,30 @@ await check('a refusal is stuck at once, and goes out when a person has it tried
   mail.mode('refuse');
   broker.allow(false);
   const id = await raise();
-  await waitFor('three stuck ones', 15000, () => all(id, 'stuck'));
-  expect(row(id, 'hook').error.includes('answered 403'), row(id, 'hook').error);
-  expect(row(id, 'mail').error.includes('550 5.1.1 no such mailbox'), row(id, 'mail').error);
-  expect(/not authorized/i.test(row(id, 'broker').error), row(id, 'broker').error);
+  await waitFor('three stuck ones', 30000, () => all(id, 'stuck'));
+  expect((await row(id, 'hook')).error.includes('answered 403'), (await row(id, 'hook')).error);
+  expect((await row(id, 'mail')).error.includes('550 5.1.1 no such mailbox'), (await row(id, 'mail')).error);
+  expect(/not authorized/i.test((await row(id, 'broker')).error), (await row(id, 'broker')).error);
   expect(got('broker', id).length === 0 && got('mail', id).length === 0, 'refused, but there');
   expect((await target('broker')).stuck === 1, 'stuck in GET /targets');
   hook.answer = { status: 204, after_ms: 0 };
   mail.mode('ok');
   broker.allow(true);
   for (const name of NAMES) expect((await retry(name)) === 1, name);
-  await waitFor('their delivery', 15000, () => all(id, 'delivered') && got('broker', id).length === 1 && got('mail', id).length === 1);
+  await waitFor('their delivery', 30000, async () => (await all(id, 'delivered')) && got('broker', id).length === 1 && got('mail', id).length === 1);
   expect(daemon.sql("SELECT count(*) FROM audit WHERE action = 'retry target'") === '3', 'audit');
 });
 
 await check('an address that is refused keeps the mail from nobody else', async () => {
   mail.mode('partial');
   const id = await raise(['mail']);
-  await waitFor('its delivery', 15000, () => all(id, 'delivered'));
+  await waitFor('its delivery', 30000, () => all(id, 'delivered'));
   expect(got('mail', id)[0].to.join() === 'shift@shop.example', JSON.stringify(got('mail', id)[0].to));
   expect((await target('mail')).last_error.includes('not for every address: 550'), JSON.stringify(await target('mail')));
   mail.mode('later');
   const next = await raise(['mail']);
-  await waitFor('a failed try', 15000, () => row(next, 'mail').error !== '');
-  expect(row(next, 'mail').state === 'waiting' && row(next, 'mail').error.includes('451 4.3.0'), JSON.stringify(row(next, 'mail')));
+  await waitFor('a failed try', 30000, async () => (await row(next, 'mail')).error !== '');
+  expect((await row(next, 'mail')).state === 'waiting' && (await row(next, 'mail')).error.includes('451 4.3.0'), JSON.stringify((await row(next, 'mail'))));
   mail.mode('ok');
 });
 
@@ -220,13 +223,13 @@ await check('a certificate of another authority is not trusted', async () => {
 });
 
 await check('a slow receiver delays nobody else and is asked again', async () => {
-  hook.answer = { status: 204, after_ms: 6000 };
+  hook.answer = { status: 204, after_ms: 15000 };
   const before = Date.now();
   const id = await raise();
-  await waitFor('the other two', 15000, () => row(id, 'mail').state === 'delivered' && row(id, 'broker').state === 'delivered');
+  await waitFor('the other two', 30000, async () => (await row(id, 'mail')).state === 'delivered' && (await row(id, 'broker')).state === 'delivered');
   const others_ms = Date.now() - before;
-  await waitFor('the failed try', 15000, () => row(id, 'hook').error !== '');
-  expect(others_ms < 3000 + 1500, `${others_ms} ms, the hook's time-out is 3 s`);
+  await waitFor('the failed try', 30000, async () => (await row(id, 'hook')).error !== '');
+  expect(others_ms < 6000, `${others_ms} ms, the time-out of the hook is 6 s`);
   hook.answer = { status: 204, after_ms: 0 };
   await waitFor('the second try', 25000, () => all(id, 'delivered'));
   const tries = got('hook', id);
@@ -234,18 +237,18 @@ await check('a slow receiver delays nobody else and is asked again', async () =>
 });
 
 await check('killed between their taking it and our hearing of it: everybody gets it again, with the same key', async () => {
-  hook.answer = { status: 204, after_ms: 2500 };
+  hook.answer = { status: 204, after_ms: 5500 };
   mail.mode('slow');
   broker.delay_ms = 700;
   const id = await raise();
-  await waitFor('all three to have it', 15000, () => NAMES.every((name) => got(name, id).length === 1));
+  await waitFor('all three to have it', 30000, () => NAMES.every((name) => got(name, id).length === 1));
   await daemon.kill9();
-  expect(all(id, 'waiting'), `killed too late: ${JSON.stringify(rows(id))}`);
+  expect(await all(id, 'waiting'), `killed too late: ${JSON.stringify(await rows(id))}`);
   hook.answer = { status: 204, after_ms: 0 };
   mail.mode('ok');
   broker.delay_ms = 0;
   await daemon.start();
-  await waitFor('the second delivery', 20000, () => all(id, 'delivered') && NAMES.every((name) => got(name, id).length === 2));
+  await waitFor('the second delivery', 20000, async () => (await all(id, 'delivered')) && NAMES.every((name) => got(name, id).length === 2));
   for (const name of NAMES) {
     const [first, second] = got(name, id);
     expect(keyOf[name](first) === keyOf[name](second), `${name}: another key`);
@@ -258,7 +261,7 @@ await check('it stops within 2 s while every receiver hangs', async () => {
   mail.mode('slow');
   broker.delay_ms = 20000;
   const id = await raise();
-  await waitFor('a try of each', 15000, () => rows(id).every((each) => each.attempts === 1));
+  await waitFor('a try of each', 30000, async () => (await rows(id)).every((each) => each.attempts === 1));
   await sleep(300);
   const before = Date.now();
   const ended = await daemon.stop();

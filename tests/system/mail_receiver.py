@@ -2,7 +2,7 @@
 
 Arguments: port, certificate, key, mode file. Writes one JSON line for each mail to stdout. The mode file holds one
 word, read for each mail: ok, refuse (550 for each recipient), partial (550 for the second one), later (451), or
-slow (takes the mail, then answers after 5 s).
+slow (takes the mail, then answers after 30 s).
 """
 import asyncio
 import json
@@ -37,7 +37,7 @@ class Handler:
         tell({"from": envelope.mail_from, "to": envelope.rcpt_tos, "tls": session.ssl is not None,
               "user": session.auth_data, "text": envelope.content.decode("ascii")})
         if mode() == "slow":
-            await asyncio.sleep(5)
+            await asyncio.sleep(30)
         return "250 OK"
 
 

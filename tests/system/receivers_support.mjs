@@ -30,8 +30,8 @@ export function certificates(folder) {
     expect(answer.status === 0, `openssl ${words[0]}: ${answer.stderr}`);
   };
   writeFileSync(join(folder, 'names.txt'), 'subjectAltName=IP:127.0.0.1\n');
-  openssl('req', '-x509', '-newkey', 'rsa:2048', '-nodes', '-keyout', 'ca.key', '-out', 'ca.pem', '-days', '2', '-subj', '/CN=Test authority');
-  openssl('req', '-newkey', 'rsa:2048', '-nodes', '-keyout', 'server.key', '-out', 'server.csr', '-subj', '/CN=127.0.0.1');
+  openssl('req', '-x509', '-newkey', 'ec', '-pkeyopt', 'ec_paramgen_curve:prime256v1', '-nodes', '-keyout', 'ca.key', '-out', 'ca.pem', '-days', '2', '-subj', '/CN=Test authority');
+  openssl('req', '-newkey', 'ec', '-pkeyopt', 'ec_paramgen_curve:prime256v1', '-nodes', '-keyout', 'server.key', '-out', 'server.csr', '-subj', '/CN=127.0.0.1');
   openssl('x509', '-req', '-in', 'server.csr', '-CA', 'ca.pem', '-CAkey', 'ca.key', '-CAcreateserial', '-days', '2', '-extfile', 'names.txt', '-out', 'server.pem');
   chmodSync(join(folder, 'server.key'), 0o644); // the broker may run as another user
 }
@@ -82,14 +82,14 @@ export class MailReceiver {
   async start(port) {
     this.port = port;
     const file = (name) => join(this.folder, name);
-    this.child = run('python3', ['-W', 'ignore', join(SOURCE, 'tests/system/mail_receiver.py'), String(port), file('server.pem'), file('server.key'), file('mail.mode')]);
+    this.child = run('/usr/bin/python3', ['-W', 'ignore', join(SOURCE, 'tests/system/mail_receiver.py'), String(port), file('server.pem'), file('server.key'), file('mail.mode')]);
     let ready = false;
     createInterface({ input: this.child.stdout }).on('line', (line) => {
       const told = JSON.parse(line);
       if (told.ready) ready = true;
       else this.got.push(readMail(told));
     });
-    await waitFor('the mail server', 15000, () => ready);
+    await waitFor('the mail server', 60000, () => ready);
   }
 
   async stop() {
@@ -135,14 +135,14 @@ export class Broker {
       `acl_file ${file('broker.acl')}\ncafile ${file('ca.pem')}\ncertfile ${file('server.pem')}\nkeyfile ${file('server.key')}\npersistence false\nlog_type error\n` +
       (process.getuid() === 0 ? 'user root\n' : ''));
     this.child = run('mosquitto', ['-c', file('broker.conf')], { env: { ...process.env, PATH: `${process.env.PATH}:/usr/sbin` } });
-    await waitFor('the broker', 15000, () => this.reads());
+    await waitFor('the broker', 60000, () => this.reads());
     this.reader = run('mosquitto_sub', ['-h', '127.0.0.1', '-p', String(this.inner), '--cafile', file('ca.pem'), '-u', 'reader', '-P', 'reads', '-q', '1', '-t', 'shop/#']);
     let heard = false;
     createInterface({ input: this.reader.stdout }).on('line', (line) => {
       if (line === 'hello') heard = true;
       else this.got.push(JSON.parse(line));
     });
-    await waitFor('the subscriber', 15000, async () => {
+    await waitFor('the subscriber', 60000, async () => {
       spawnSync('mosquitto_pub', ['-h', '127.0.0.1', '-p', String(this.inner), '--cafile', file('ca.pem'), '-u', 'reader', '-P', 'reads', '-t', 'shop/hello', '-m', 'hello']);
       await sleep(50);
       return heard;
