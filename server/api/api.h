@@ -12,6 +12,7 @@
 #include <tuple>
 #include <utility>
 
+#include "server/alerts/alert_keeper.h"
 #include "server/api/documents.h"
 #include "server/api/http_server.h"
 #include "server/api/reader_pool.h"
@@ -40,6 +41,7 @@ struct ApiParts {
   Dispatcher& dispatcher;
   const std::atomic<ServiceState>& state;
   std::function<void()> loads_changed;
+  AlertKeeper& alerts;
 };
 
 class Api {
@@ -61,6 +63,7 @@ class Api {
   void add_channel_routes();
   void add_library_routes();
   void add_target_routes();
+  void add_alert_routes();
 
   Response status(const Request& request) const;
   Response ready(const Request& request) const;
@@ -99,6 +102,12 @@ class Api {
   Response targets(const Request& request);
   Response test_target(const Request& request);
   Response retry_target(const Request& request);
+  Response list_alerts(const Request& request);
+  Response show_alert(const Request& request);
+  Response acknowledge_alert(const Request& request);
+  Response shelve_alert(const Request& request);
+  Response unshelve_alert(const Request& request);
+  Response add_alert_note(const Request& request);
 
   struct FoundLoad {
     storage::LoadRow row;
@@ -118,6 +127,8 @@ class Api {
   // The body with each "rework_of" replaced by the final profile of the item it names.
   std::string with_rework(const std::string& body);
   void refuse_ended(const FoundLoad& found) const;
+  // The alert with its events and messages, as it is now.
+  Response alert_document(std::int64_t id);
   // Stores `load` as the next revision and answers with it.
   Response changed(const FoundLoad& found, const LoadDefinition& load, storage::AuditRow audit,
                    bool cancelled = false);

@@ -46,42 +46,45 @@ std::string furnace_name(const LoadDefinition& load, const std::string& id) {
 
 }  // namespace
 
-std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadNote>& notes) {
+std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadNote>& notes,
+                          const AlertList& alerts) {
   const LoadDefinition& load = *view.result.definition;
   Json shift_notes = Json::array();
   for (const storage::LoadNote& note : notes)
     shift_notes.push_back({{"at", format_time(note.at_us)}, {"person", note.person}, {"text", note.text}});
-  const Json json{{"load",
-                   {{"id", view.row.id},
-                    {"name", view.row.name},
-                    {"furnace", view.row.furnace},
-                    {"furnace_name", furnace_name(load, view.row.furnace)},
-                    {"chamber", view.row.chamber},
-                    {"path", path_json(load)},
-                    {"person", view.row.person},
-                    {"started_at", format_time(view.row.started_us)},
-                    {"ended_at", time_or_null(view.row.ended_us)},
-                    {"state", state_of(view.row)},
-                    {"model_version", load.model_version},
-                    {"recipe", recipe_json(load.recipe)},
-                    {"revision", view.row.revision}}},
-                  {"sequence", view.sequence},
-                  {"now", format_time(view.now_us)},
-                  {"data_time", time_or_null(view.data_us)},
-                  {"data_age_s", age_or_null(view.data_us, view.now_us)},
-                  {"state_time", format_time(view.result.state_us)},
-                  {"condition", text(view.condition)},
-                  {"message", view.message.empty() ? Json(nullptr) : Json(view.message)},
-                  {"band", band_not_computed},
-                  {"place", place_json(view)},
-                  {"inputs", inputs_json(view)},
-                  {"segment", segment_json(view)},
-                  {"minutes_left", view.minutes_left},
-                  {"items", result_items_json(view.result)},
-                  {"controlling_item", load.items[controlling_item(view.result)].name},
-                  {"notes", result_notes_json(view.result)},
-                  {"gaps", result_gaps_json(view.result)},
-                  {"shift_notes", std::move(shift_notes)}};
+  const Json json{
+      {"load",
+       {{"id", view.row.id},
+        {"name", view.row.name},
+        {"furnace", view.row.furnace},
+        {"furnace_name", furnace_name(load, view.row.furnace)},
+        {"chamber", view.row.chamber},
+        {"path", path_json(load)},
+        {"person", view.row.person},
+        {"started_at", format_time(view.row.started_us)},
+        {"ended_at", time_or_null(view.row.ended_us)},
+        {"state", state_of(view.row)},
+        {"model_version", load.model_version},
+        {"recipe", recipe_json(load.recipe)},
+        {"revision", view.row.revision}}},
+      {"sequence", view.sequence},
+      {"now", format_time(view.now_us)},
+      {"data_time", time_or_null(view.data_us)},
+      {"data_age_s", age_or_null(view.data_us, view.now_us)},
+      {"state_time", format_time(view.result.state_us)},
+      {"condition", text(view.condition)},
+      {"message", view.message.empty() ? Json(nullptr) : Json(view.message)},
+      {"band", band_not_computed},
+      {"place", place_json(view)},
+      {"inputs", inputs_json(view)},
+      {"segment", segment_json(view)},
+      {"minutes_left", view.minutes_left},
+      {"items", result_items_json(view.result)},
+      {"controlling_item", load.items[controlling_item(view.result)].name},
+      {"notes", result_notes_json(view.result)},
+      {"gaps", result_gaps_json(view.result)},
+      {"shift_notes", std::move(shift_notes)},
+      {"alerts", load_alerts_json(alerts, view.row.id, view.row.ended_us ? "" : view.row.furnace)}};
   return dumped(json);
 }
 

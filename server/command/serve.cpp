@@ -2,6 +2,7 @@
 #include <atomic>
 #include <cstdio>
 
+#include "server/alerts/alert_keeper.h"
 #include "server/api/api.h"
 #include "server/base/json_fields.h"
 #include "server/base/log.h"
@@ -56,16 +57,38 @@ int serve(const Settings& settings, const Plant& plant) {
   Board board;
   std::atomic<ServiceState> state{ServiceState::starting};
   HttpServer http(limits_from(settings));
-  Dispatcher dispatcher(settings.targets, store, *clock, [] {});
   Engine* running = nullptr;
-  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, dispatcher, state, [&running] {
+  const AlertKeeper* keeping = nullptr;
+  const auto tell_alerts = [&http, &board](std::uint64_t sequence) {
+    http.publish("alerts", Json{{"sequence", sequence}}.dump(), board.sequence());
+  };
+  Dispatcher dispatcher(settings.targets, store, *clock, [&] { tell_alerts(keeping->list()->sequence); });
+  AlertKeeper alerts({settings, plant, *clock, store, board,
+                      [&settings](const storage::AlertRow& alert, std::string_view) {
+                        return routes_of(settings.targets, alert);
+                      },
+                      [&](const std::string& furnace, const std::string& channel) {
+                        return acceptor.channel_id(furnace, channel).value_or(-1);
+                      },
+                      [&running] { return running && running->caught_up(); },
+                      [&](std::uint64_t sequence, bool messages) {
+                        if (messages) dispatcher.wake();
+                        tell_alerts(sequence);
+                      }});
+  keeping = &alerts;
+  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, dispatcher, state,
+           [&running] {
              if (running) running->loads_changed();
-           }});
+           },
+           alerts});
   Engine engine({plant, *clock, store, board, metrics, settings.live.stale_after_s,
                  [&](const std::string& furnace, const std::string& channel) {
                    return acceptor.channel_id(furnace, channel).value_or(-1);
                  },
-                 [&](const std::vector<std::int64_t>& loads) { broadcast(http, api, board, loads); }});
+                 [&](const std::vector<std::int64_t>& loads) {
+                   alerts.wake();
+                   broadcast(http, api, board, loads);
+                 }});
   running = &engine;
   store.on_change([&engine] { engine.wake(); });
 
@@ -75,7 +98,8 @@ int serve(const Settings& settings, const Plant& plant) {
   http.on_error([](std::string_view what) { log_error("request failed", {{"what", what}}); });
   const int port = http.start(settings.listen.address, settings.listen.port);
   engine.start();
-  dispatcher.start();  // what an earlier run left unsent goes out
+  dispatcher.start();  // what an earlier run left unsent goes out; before those who wake it
+  alerts.start();      // after the engine: it judges nothing before every open load has a view
   log_info("hearthfront serves", {{"version", version},
                                   {"address", settings.listen.address},
                                   {"port", port},
@@ -111,8 +135,9 @@ int serve(const Settings& settings, const Plant& plant) {
   notifier.stopping("stopping");
   log_info("stopping");
   dispatcher
-      .stop();    // what is unsent stays in the outbox; before http: a test under way is a running request
+      .stop();    // before http, since a test under way is a running request; the rest stays in the outbox
   http.stop();    // no new work; running requests get their answer
+  alerts.stop();  // before engine and store: it looks at the one and writes to the other
   engine.stop();  // before the store: it reads and saves results
   store.close();  // last: stores what is queued, checkpoints
   log_info("stopped");

@@ -16,7 +16,10 @@ constexpr int longest_test_s = 10;
 
 Dispatcher::Dispatcher(const std::vector<DeliveryTarget>& targets, storage::Store& store, const Clock& clock,
                        std::function<void()> changed)
-    : targets_(targets), store_(store), clock_(clock), changed_(std::move(changed)) {}
+    : targets_(targets), store_(store), clock_(clock), changed_(std::move(changed)) {
+  for (const DeliveryTarget& target : targets_)
+    workers_.push_back(std::make_unique<TargetWorker>(WorkerParts{target, store_, clock_, changed_}));
+}
 
 Dispatcher::~Dispatcher() {
   stop();
@@ -38,9 +41,8 @@ void Dispatcher::start() {
   for (const DeliveryTarget& target : targets_) {
     if (const std::string wrong = fault(target); !wrong.empty())
       log_error("nothing can be sent to a target", {{"target", target.name}, {"what", wrong}});
-    workers_.push_back(std::make_unique<TargetWorker>(WorkerParts{target, store_, clock_, changed_}));
-    workers_.back()->start(stop_.get_token());
   }
+  for (const auto& worker : workers_) worker->start(stop_.get_token());
 }
 
 void Dispatcher::stop() {

@@ -57,7 +57,8 @@ TEST_CASE("the API description and the routes are the same list") {
     HttpServer http{HttpLimits{}};
     const std::atomic<ServiceState> state{ServiceState::ready};
     Dispatcher dispatcher(settings.targets, store, clock, [] {});
-    Api api({settings, plant, clock, store, board, acceptor, metrics, http, dispatcher, state, [] {}});
+    AlertKeeper alerts({settings, plant, clock, store, board, {}, {}, [] { return false; }, {}});
+    Api api({settings, plant, clock, store, board, acceptor, metrics, http, dispatcher, state, [] {}, alerts});
     api.add_routes();
 
     Routes served;
