@@ -134,12 +134,11 @@ int serve(const Settings& settings, const Plant& plant) {
   state = ServiceState::stopping;
   notifier.stopping("stopping");
   log_info("stopping");
-  dispatcher
-      .stop();    // before http, since a test under way is a running request; the rest stays in the outbox
-  http.stop();    // no new work; running requests get their answer
-  alerts.stop();  // before engine and store: it looks at the one and writes to the other
-  engine.stop();  // before the store: it reads and saves results
-  store.close();  // last: stores what is queued, checkpoints
+  dispatcher.stop();  // before http: a request may be a test under way. What is unsent stays in the outbox
+  http.stop();        // no new work; running requests get their answer
+  alerts.stop();      // before engine and store: it looks at the one and writes to the other
+  engine.stop();      // before the store: it reads and saves results
+  store.close();      // last: stores what is queued, checkpoints
   log_info("stopped");
   flush_log();
   return exit_code;

@@ -6,7 +6,7 @@ import { execFile as execFileCall, spawnSync } from 'node:child_process';
 import { readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { promisify } from 'node:util';
-import { Daemon, SOURCE, binary, check, expect, finish, freePort, sleep, temporaryFolder, waitFor } from './support.mjs';
+import { Daemon, MINUTE_MS, SOURCE, binary, check, expect, finish, freePort, iso, sleep, temporaryFolder, waitFor } from './support.mjs';
 import { Broker, HookReceiver, MailReceiver, certificates } from './receivers_support.mjs';
 
 binary();
@@ -27,6 +27,7 @@ await broker.start();
 await broker.open(ports.broker);
 
 const ca = `ca_file = "${join(folder, 'ca.pem')}"`;
+// They hear of silent furnaces only: what the rules say of this machine's disk, or of stuck targets, is not asked here.
 const daemon = await Daemon.fresh(`
 [[target]]
 name = "hook"
@@ -34,6 +35,7 @@ kind = "webhook"
 url = "http://127.0.0.1:${ports.hook}/alerts?token=hidden-token"
 secret_file = "${join(folder, 'hook.secret')}"
 timeout_s = 6
+kinds = ["no reading"]
 [[target]]
 name = "mail"
 kind = "mail"
@@ -45,6 +47,7 @@ password_file = "${join(folder, 'mail.secret')}"
 from = "furnaces@shop.example"
 to = ["shift@shop.example", "lead@shop.example"]
 timeout_s = 6
+kinds = ["no reading"]
 [[target]]
 name = "broker"
 kind = "mqtt"
@@ -56,6 +59,7 @@ ${ca}
 user = "furnaces"
 password_file = "${join(folder, 'broker.secret')}"
 timeout_s = 6
+kinds = ["no reading"]
 [[target]]
 name = "no-key"
 kind = "webhook"
@@ -64,7 +68,6 @@ secret_file = "${join(folder, 'missing.secret')}"
 kinds = ["disk"]
 `);
 
-let alerts = 0;
 function put(id, event, names) {
   const now_us = Date.now() * 1000;
   const rows = names.map((name) => {
@@ -82,7 +85,7 @@ function put(id, event, names) {
 // An alert with a message to each target; the daemon is stopped for it and started again.
 async function raise(names = NAMES, events = ['raised']) {
   await daemon.stop();
-  const id = ++alerts;
+  const id = Number(daemon.sql('SELECT coalesce(max(id), 0) + 1 FROM alert'));
   for (const event of events) put(id, event, names);
   await daemon.start();
   return id;
@@ -280,6 +283,37 @@ await check('no secret is in the log, the database or an answer', async () => {
   const told = readFileSync(join(daemon.folder, 'daemon.log'), 'utf8') + daemon.sql('.dump') + answers;
   for (const secret of [...Object.values(SECRETS), 'hidden-token']) expect(!told.includes(secret), `found: ${secret}`);
   expect(told.includes('answered 403'), 'the log was not read');
+});
+
+await check('a furnace that falls silent is told at once, passed on when nobody acknowledges, and told as over', async () => {
+  const now = iso(Date.now());
+  const target = (name, more) => `[[target]]\nname = "${name}"\nkind = "webhook"\nurl = "http://127.0.0.1:${ports.hook}/"\nsecret_file = "${join(folder, 'hook.secret')}"\n${more}`;
+  const fast = await Daemon.fresh(`[clock]\nspeed = 60.0\nanchor_real = "${now}"\nanchor_data = "${now}"\n` +
+    target('at-once', 'least_severity = "urgent"\nfurnaces = ["pit-2"]\n') + target('lead', 'kinds = ["no reading"]\nafter_unacknowledged_min = 5\n') +
+    target('others', 'furnaces = ["batch-4"]\n') + target('patient', 'kinds = ["no reading"]\nafter_unacknowledged_min = 600\n'));
+  const heard = (name, event) => hook.got.filter((each) => each.key.endsWith(`-${name}`) && each.body.event === event);
+  const body = { ...JSON.parse(readFileSync(join(SOURCE, 'config/demo/example/load.json'), 'utf8')), started_at: iso(Date.now() - 30 * MINUTE_MS) };
+  delete body.ended_at;
+  await fast.must('POST', '/api/v1/loads', body);
+  await waitFor('"raised"', 30000, () => heard('at-once', 'raised').length === 1);
+  const { alert } = heard('at-once', 'raised')[0].body;
+  expect(alert.kind === 'no reading' && alert.furnace === 'pit-2' && alert.severity === 'urgent' && alert.sentence.length > 10, JSON.stringify(alert));
+  await waitFor('"escalated", 5 s later', 30000, () => heard('lead', 'escalated').length === 1);
+  expect(heard('lead', 'raised').length === 0, 'told before its turn');
+  const readings = ['temperature', 'probe_emf'].map((channel) => ({ furnace: 'pit-2', channel, value: channel === 'temperature' ? 925 : 1150 }));
+  const sending = setInterval(async () => {
+    const time = (await fast.must('GET', '/api/v1/status')).now;
+    await fast.must('POST', '/api/v1/readings', { readings: readings.map((each) => ({ ...each, time })) });
+  }, 400);
+  try {
+    await waitFor('"cleared"', 30000, () => heard('at-once', 'cleared').length === 1 && heard('lead', 'cleared').length === 1);
+  } finally {
+    clearInterval(sending);
+  }
+  const one = await fast.must('GET', `/api/v1/alerts/${alert.id}`);
+  expect(one.deliveries.length === 4 && one.deliveries.every((each) => each.state === 'delivered'), JSON.stringify(one.deliveries));
+  expect(hook.got.every((each) => !/-(others|patient)$/.test(each.key)), 'somebody was told who did not want it');
+  await fast.stop();
 });
 
 await daemon.stop();
