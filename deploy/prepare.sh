@@ -7,9 +7,12 @@ BUILD=${HEARTHFRONT_BUILD:-$ROOT/build}
 
 BUILD_PACKAGES=(g++ cmake ninja-build ccache pkg-config libcpp-httplib-dev nlohmann-json3-dev libsqlitecpp-dev
   libsqlite3-dev libspdlog-dev libeigen3-dev doctest-dev libtomlplusplus-dev libcli11-dev prometheus-cpp-dev
-  libssl-dev zlib1g-dev libbrotli-dev libhowardhinnant-date-dev tzdata curl)
+  libssl-dev zlib1g-dev libbrotli-dev libhowardhinnant-date-dev tzdata curl
+  libcurl4-openssl-dev libmosquitto-dev)
 # libsundials-dev brings a large numerics stack along: only the tests that compare with it want it.
-TEST_PACKAGES=(libsundials-dev sqlite3 chromium fonts-dejavu-core)
+# A broker, a mail server and certificates: what alerts are sent to in the tests.
+TEST_PACKAGES=(libsundials-dev sqlite3 chromium fonts-dejavu-core
+  mosquitto mosquitto-clients python3-aiosmtpd openssl)
 
 say() { printf '%s\n' "$*"; }
 fail() {

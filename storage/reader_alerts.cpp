@@ -94,6 +94,19 @@ std::vector<OutboxRow> Reader::outbox_due(std::int64_t now_us, int limit) {
   });
 }
 
+std::vector<OutboxRow> Reader::outbox_waiting(std::string_view target, int limit) {
+  check_limit(limit);
+  return impl_->read("read the messages that wait for a target", [&] {
+    auto& query =
+        impl_->statement("SELECT " HF_OUTBOX_COLUMNS
+                         " FROM outbox WHERE target = ? AND state = 'waiting' AND state IN ('waiting', "
+                         "'stuck') ORDER BY id LIMIT ?");
+    query.bind(1, std::string(target));
+    query.bind(2, limit);
+    return messages_from(query);
+  });
+}
+
 std::optional<std::int64_t> Reader::outbox_next_us() {
   return impl_->read("read when the next message is due", [&] {
     auto& query = impl_->statement("SELECT min(next_try_us) FROM outbox WHERE state = 'waiting'");

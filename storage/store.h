@@ -220,6 +220,8 @@ class Reader {
   std::int64_t next_alert_id();                                       // above every number ever given
   std::vector<AlertEvent> alert_events(std::int64_t alert);           // oldest first
   std::vector<OutboxRow> outbox_due(std::int64_t now_us, int limit);  // waiting, next try due; oldest first
+  // Waiting for this target, due or not, oldest first.
+  std::vector<OutboxRow> outbox_waiting(std::string_view target, int limit);
   // When the next waiting message is due; none where none waits.
   std::optional<std::int64_t> outbox_next_us();
   std::vector<OutboxRow> deliveries(std::int64_t alert);  // oldest first

@@ -21,6 +21,7 @@ void Api::add_routes() {
   add_channel_routes();
   add_library_routes();
   add_outlook_routes();
+  add_target_routes();
   add_alert_routes();
 }
 

@@ -21,6 +21,7 @@
 #include "server/base/metrics.h"
 #include "server/base/plant.h"
 #include "server/base/settings.h"
+#include "server/delivery/dispatcher.h"
 #include "server/ingest/accept.h"
 #include "server/live/view.h"
 #include "storage/store.h"
@@ -38,6 +39,7 @@ struct ApiParts {
   const Acceptor& acceptor;
   Metrics& metrics;
   HttpServer& http;
+  Dispatcher& dispatcher;
   const std::atomic<ServiceState>& state;
   std::function<void()> loads_changed;
   AlertKeeper& alerts;
@@ -62,6 +64,7 @@ class Api {
   void add_channel_routes();
   void add_library_routes();
   void add_outlook_routes();
+  void add_target_routes();
   void add_alert_routes();
 
   Response status(const Request& request) const;
@@ -101,6 +104,9 @@ class Api {
   Response library(const Request& request);
   Response library_item(const Request& request);
   Response save_library(const Request& request);
+  Response targets(const Request& request);
+  Response test_target(const Request& request);
+  Response retry_target(const Request& request);
   Response list_alerts(const Request& request);
   Response show_alert(const Request& request);
   Response acknowledge_alert(const Request& request);
@@ -120,6 +126,7 @@ class Api {
   FoundLoad find_load(const Request& request);
   std::optional<FoundLoad> load_of(std::int64_t id, storage::Reader& reader) const;
   const Furnace& find_furnace(const Request& request) const;
+  const DeliveryTarget& find_target(const Request& request) const;
   FoundChannel find_channel(const Furnace& furnace, const std::string& name) const;
   void check_times(const LoadDefinition& load) const;
   // The body with each "rework_of" replaced by the final profile of the item it names.

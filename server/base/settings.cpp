@@ -165,6 +165,7 @@ Settings read_settings(const std::string& path, ConfigErrors& errors) {
   });
   check_options(settings, table("listen"), table("ingest"), table("log"), table("clock"));
   for (auto& [name, each] : tables) each.finish();
+  settings.targets = read_targets(root, settings);
   root.finish();
   return settings;
 }

@@ -11,6 +11,7 @@
 #include <vector>
 
 #include "server/base/plant.h"
+#include "server/base/target.h"
 
 namespace hearthfront::server {
 
@@ -75,6 +76,8 @@ struct Settings {
     std::string where;  // file:line:column of [clock], for later messages
     bool is_scaled() const { return speed != 1.0 || anchor_real_us || anchor_data_us; }
   } clock;
+
+  std::vector<DeliveryTarget> targets;  // who is told of alerts
 
   std::string folder = ".";                            // of the settings file
   std::string path_of(const std::string& file) const;  // relative names start at `folder`

@@ -10,6 +10,8 @@
 #include "server/base/version.h"
 #include "server/command/commands.h"
 #include "server/command/signals.h"
+#include "server/delivery/dispatcher.h"
+#include "server/delivery/routing.h"
 #include "server/live/engine.h"
 
 namespace hearthfront::server {
@@ -56,17 +58,25 @@ int serve(const Settings& settings, const Plant& plant) {
   std::atomic<ServiceState> state{ServiceState::starting};
   HttpServer http(limits_from(settings));
   Engine* running = nullptr;
-  // Nobody is told beyond the screens until there are targets.
+  const AlertKeeper* keeping = nullptr;
+  const auto tell_alerts = [&http, &board](std::uint64_t sequence) {
+    http.publish("alerts", Json{{"sequence", sequence}}.dump(), board.sequence());
+  };
+  Dispatcher dispatcher(settings.targets, store, *clock, [&] { tell_alerts(keeping->list()->sequence); });
   AlertKeeper alerts({settings, plant, *clock, store, board,
-                      [](const storage::AlertRow&, std::string_view) { return std::vector<Route>{}; },
+                      [&settings](const storage::AlertRow& alert, std::string_view) {
+                        return routes_of(settings.targets, alert);
+                      },
                       [&](const std::string& furnace, const std::string& channel) {
                         return acceptor.channel_id(furnace, channel).value_or(-1);
                       },
                       [&running] { return running && running->caught_up(); },
-                      [&http, &board](std::uint64_t sequence, bool) {
-                        http.publish("alerts", Json{{"sequence", sequence}}.dump(), board.sequence());
+                      [&](std::uint64_t sequence, bool messages) {
+                        if (messages) dispatcher.wake();
+                        tell_alerts(sequence);
                       }});
-  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, state,
+  keeping = &alerts;
+  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, dispatcher, state,
            [&running] {
              if (running) running->loads_changed();
             },
@@ -94,7 +104,8 @@ int serve(const Settings& settings, const Plant& plant) {
   http.on_error([](std::string_view what) { log_error("request failed", {{"what", what}}); });
   const int port = http.start(settings.listen.address, settings.listen.port);
   engine.start();
-  alerts.start();  // after the engine: it judges nothing before every open load has a view
+  dispatcher.start();  // what an earlier run left unsent goes out; before those who wake it
+  alerts.start();      // after the engine: it judges nothing before every open load has a view
   log_info("hearthfront serves", {{"version", version},
                                   {"address", settings.listen.address},
                                   {"port", port},
@@ -129,10 +140,11 @@ int serve(const Settings& settings, const Plant& plant) {
   state = ServiceState::stopping;
   notifier.stopping("stopping");
   log_info("stopping");
-  http.stop();    // no new work; running requests get their answer
-  alerts.stop();  // before engine and store: it looks at the one and writes to the other
-  engine.stop();  // before the store: it reads and saves results
-  store.close();  // last: stores what is queued, checkpoints
+  dispatcher.stop();  // before http: a request may be a test under way. What is unsent stays in the outbox
+  http.stop();        // no new work; running requests get their answer
+  alerts.stop();      // before engine and store: it looks at the one and writes to the other
+  engine.stop();      // before the store: it reads and saves results
+  store.close();      // last: stores what is queued, checkpoints
   log_info("stopped");
   flush_log();
   return exit_code;
@@ -146,6 +158,7 @@ int run_serve(const std::string& settings_path) {
   const Plant plant =
       read_plant(settings.path_of(settings.files.plant), settings.path_of(settings.files.steels), errors);
   if (errors.ok()) check_clock_is_allowed(settings, plant, errors);
+  if (errors.ok()) check_targets(settings.targets, plant, alert_kinds(), errors);
   if (!errors.ok()) {
     for (const std::string& message : errors.messages) std::fprintf(stderr, "%s\n", message.c_str());
     return exit_bad_input;

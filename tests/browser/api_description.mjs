@@ -38,7 +38,8 @@ async function call(daemon, path, method, url, options = {}) {
 }
 const json = (value) => ({ headers: { 'content-type': 'application/json' }, body: JSON.stringify(value) });
 
-const daemon = await Daemon.fresh();
+// A target whose key file is missing: everything about it can be asked, nothing is sent anywhere.
+const daemon = await Daemon.fresh('[[target]]\nname = "hook"\nkind = "webhook"\nurl = "http://127.0.0.1:9/"\nsecret_file = "none"\n');
 const start_ms = Date.now() - 90 * MINUTE_MS;
 const body = { ...JSON.parse(readFileSync(join(SOURCE, 'config/demo/example/load.json'), 'utf8')), started_at: iso(start_ms) };
 delete body.ended_at;
@@ -169,6 +170,14 @@ await check('the definition that comes back starts the same load again', async (
   const again = { ...(await (await fetch(`${daemon.url}/api/v1/loads/${id}`)).json()).definition };
   const validate = ajv.compile(rooted(description.components.schemas.LoadBody));
   expect(validate(again), ajv.errorsText(validate.errors));
+});
+
+await check('where alerts are sent', async () => {
+  expect((await get('/api/v1/targets', '/api/v1/targets')).body.targets.length === 1, 'one target');
+  const test = await post('/api/v1/targets/{target}/test', '/api/v1/targets/hook/test', { person: 'Test' });
+  expect(test.status === 200 && test.body.delivered === false, JSON.stringify(test.body));
+  const retry = await post('/api/v1/targets/{target}/retry', '/api/v1/targets/hook/retry', { person: 'Test' });
+  expect(retry.status === 200, JSON.stringify(retry.body));
 });
 
 await check('plant and service documents', async () => {
