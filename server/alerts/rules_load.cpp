@@ -37,6 +37,10 @@ std::string signed_fixed(double value, int digits) {
 void judge_segment(Findings& findings, const LoadView& view, const AlertSettings& settings) {
   const Recipe& recipe = view.result.definition->recipe_of(view.segment.plan);
   findings.judged.push_back(judged_load(view, "segment due", 0));
+  // A pusher line moves by its pushes, tray after tray; nobody walks there for a segment's end.
+  const PathStep& place = view.result.definition->place_at(view.result.state_us);
+  const Furnace* furnace = place.outside() ? nullptr : view.result.definition->furnace(place.furnace);
+  if (furnace && furnace->line) return;
   if (view.segment.index >= recipe.segments.size()) return;
   const Segment& segment = recipe.segments[view.segment.index];
   const bool last = view.segment.index + 1 == recipe.segments.size();

@@ -203,16 +203,19 @@ Proposal propose(const OutlookBase& base, const ProposalAsk& ask) {
   solver::SearchLimits limits = limits_of(base, ask.asked_chance);
   solver::FoundPlan found;
   // Where the members drawn afresh see it less well, the search is asked for that much more.
-  for (int round = 0; round < 3; ++round) {
-    found =
-        solver::find_plan(items, planned(*base.definition, rest), freedom, base.furnace, base.now, limits);
+  constexpr int most_rounds = 5;
+  auto plan = planned(*base.definition, rest);
+  for (int round = 0; round < most_rounds; ++round) {
+    found = solver::find_plan(items, plan, freedom, base.furnace, base.now, limits);
     proposal.rest = with_plan(rest, found.plan);
     proposal.confirmed_joint_chance = confirmed(base, *fresh, fresh_states, proposal.rest);
     proposal.found =
         found.end == solver::SearchEnd::found && proposal.confirmed_joint_chance >= ask.asked_chance;
     if (proposal.found || found.end != solver::SearchEnd::found) break;
     limits.asked_chance =
-        std::min(0.995, limits.asked_chance + ask.asked_chance - proposal.confirmed_joint_chance + 0.002);
+        std::min(0.995, limits.asked_chance + ask.asked_chance - proposal.confirmed_joint_chance + 0.003);
+    limits.nearby = true;
+    plan = found.plan;
   }
   proposal.outlook = make_outlook(base, proposal.rest, ask.limits);
   if (!proposal.outlook) throw std::runtime_error("the plan found cannot be projected: the model failed");
@@ -221,6 +224,7 @@ Proposal propose(const OutlookBase& base, const ProposalAsk& ask) {
   const double before = 100 * proposal.present->ahead.end.joint_chance;
   if (!proposal.found) {
     if (found.end == solver::SearchEnd::found) found.end = solver::SearchEnd::too_wide;
+    found.joint_chance = proposal.confirmed_joint_chance;
     proposal.reason = reason_of(base, found);
     proposal.sentence = "No schedule reaches " + words("%.0f %%. ", 100 * ask.asked_chance) + proposal.reason;
     return proposal;

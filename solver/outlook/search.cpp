@@ -60,7 +60,7 @@ class Search {
     double goal = limits_.asked_chance;
     for (int round = 0; round < most_rounds && any_freedom_; ++round) {
       trials_.set_goal(spread, goal);
-      const PlanScore score = settle(best, round == 0);
+      const PlanScore score = settle(best, round == 0 && !limits_.nearby);
       spread = spread_at_end(best, result.joint_chance);
       const bool agree = std::fabs(score.chance - result.joint_chance) < agreement;
       if (agree && (!score.reaches || result.joint_chance >= limits_.asked_chance)) break;

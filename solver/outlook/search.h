@@ -25,6 +25,7 @@ struct SearchLimits {
   double longest_s = 0;       // of the whole rest; 0: twice the plan and six hours more
   double lowest_carbon_potential_wt_pct = 0.5, highest_carbon_potential_wt_pct = 1.25;
   double lowest_temperature_degc = 850, highest_temperature_degc = 950;
+  bool nearby = false;  // the plan given is nearly the one: look around it only
 };
 
 // The highest carbon potential that a segment may have: furnace, soot (activity 0.95, common practice) and
