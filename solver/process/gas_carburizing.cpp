@@ -140,10 +140,10 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
     const Member& member = members_[lane];
     const double t_k = kelvin(part_degc[lane]);
     LaneConditions& c = state.conditions[lane];
-    // A member that is still a little too cold moves with the nominal one, at its own temperature: a start of
-    // its own would fall into long undamped steps, which its steep profile does not survive.
-    c.diffusivity = diffusivity_form(part_.law, t_k, diffusivity_factor_ * member.diffusivity_scale,
-                                     part_.constant_diffusivity_m2_s);
+    const bool austenite = part_degc[lane] > austenite_from_degc_;
+    // A member that is still too cold stands still while the nominal one moves: a vanishing diffusivity.
+    const double scale = austenite ? diffusivity_factor_ * member.diffusivity_scale : 1e-30;
+    c.diffusivity = diffusivity_form(part_.law, t_k, scale, part_.constant_diffusivity_m2_s);
     if (lane == 0) {
       const TemperatureRange range = diffusivity_range(part_.law);
       if (t_k < range.low_k || t_k > range.high_k) notes |= note_outside_diffusivity_range;
@@ -157,7 +157,8 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
     const double limit = cementite_limit_wt_pct(t_k);
     const double equilibrium = potential / alloy_factor_;
     c.surface.equilibrium_wt_pct = std::min(equilibrium, limit);
-    c.surface.resistance_s_per_m = 1.0 / (lane_beta_m_per_s(state, inputs, member, t_k) * alloy_factor_);
+    c.surface.resistance_s_per_m =
+        austenite ? 1.0 / (lane_beta_m_per_s(state, inputs, member, t_k) * alloy_factor_) : 1e30;
     c.surface.forced_wt_pct_m_per_s = 0.0;
     if (lane == 0) {
       if (equilibrium > limit) notes |= note_capped_at_carbide_limit;
