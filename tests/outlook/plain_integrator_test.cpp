@@ -18,7 +18,8 @@ PlainSteel plain(const solver::Composition& s) {
 }
 
 // By CVODE, fine enough for 0.01 um (tests/validation/cvode_test.cpp).
-ReferenceResult cvode(const solver::CarburizingPart& part, const std::vector<solver::IntervalInputs>& inputs) {
+ReferenceResult cvode(const solver::CarburizingPart& part,
+                      const std::vector<solver::IntervalInputs>& inputs) {
   ReferenceProblem problem = reference_problem(part, inputs);
   problem.face_m = reference_faces(part.section.extent_m, 1e-6, 1.04, 5e-6, 2.2e-3, 1.08);
   ReferenceOptions options;
@@ -65,8 +66,8 @@ TEST_CASE("plate and cylinder under noisy minutes: depths within 0.5 um of CVODE
 }
 
 TEST_CASE("slab, cylinder and sphere with convection: exact series of Carslaw and Jaeger within 1e-3") {
-  // Crank, The Mathematics of Diffusion (1975); Carslaw and Jaeger: l = a = 1.5 mm, D 2e-11, beta 1.3e-7, 8 h,
-  // so Bi 9.75, Fo 0.256. Fractions (C - C0)/(Cp - C0) at surface, half way, centre.
+  // Crank, The Mathematics of Diffusion (1975); Carslaw and Jaeger: l = a = 1.5 mm, D 2e-11, beta 1.3e-7, 8
+  // h, so Bi 9.75, Fo 0.256. Fractions (C - C0)/(Cp - C0) at surface, half way, centre.
   struct Body {
     PlainShape shape;
     double surface, half, centre;
@@ -91,8 +92,8 @@ TEST_CASE("slab, cylinder and sphere with convection: exact series of Carslaw an
 }
 
 TEST_CASE("Tibbetts' D(C) behind a fixed surface: Boltzmann's similarity solution within 0.5 um") {
-  // Boltzmann similarity, -(eta/2) C' = (D C')', 930 degC, surface 1.0, core 0.2, 4 h: depths computed outside
-  // this project, printed to 0.1 um.
+  // Boltzmann similarity, -(eta/2) C' = (D C')', 930 degC, surface 1.0, core 0.2, 4 h: depths computed
+  // outside this project, printed to 0.1 um.
   PlainPart part;
   part.law = PlainLaw::tibbetts;
   PlainIntegrator integrator(part, 930);

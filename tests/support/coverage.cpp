@@ -111,9 +111,9 @@ class Logger {
   solver::IntervalInputs next() {
     const auto set = set_points(load_.recipe, minute_);
     const auto shown = track_.minute(set.temperature_degc, set.carbon_potential_wt_pct);
-    const FurnaceTrack::Mean reading{shown.temperature_degc + load_.offset_k + random_.normal(),
-                                     shown.carbon_potential_wt_pct + load_.offset_wt_pct +
-                                         0.01 * random_.normal()};
+    const FurnaceTrack::Mean reading{
+        shown.temperature_degc + load_.offset_k + random_.normal(),
+        shown.carbon_potential_wt_pct + load_.offset_wt_pct + 0.01 * random_.normal()};
     load_degc_ += (reading.temperature_degc - load_degc_) * 60 / load_.part.lag_s;
     const bool missing = load_.in_gap(minute_++);
     return missing ? to_inputs_.missing(set) : to_inputs_.measured(reading, load_degc_ + random_.normal());
@@ -142,7 +142,8 @@ class Logger {
 // The true part's minutes from a look to the end of the recipe: the plan, its offsets decaying. A gap that is
 // open at the look keeps its error until it ends.
 template <class Visit>
-void follow_plan(const SyntheticLoad& load, const Logger& logger, const solver::InputDoubt& now, Visit visit) {
+void follow_plan(const SyntheticLoad& load, const Logger& logger, const solver::InputDoubt& now,
+                 Visit visit) {
   FurnaceTrack track = logger.track();
   bool open_gap = true;
   for (int minute = logger.minute(); minute < load.minutes(); ++minute) {
@@ -181,7 +182,8 @@ Verdicts judge_by_priors(const SyntheticLoad& load, std::uint64_t seed) {
       part.advance(in);
     }
     const GasCarburizing::State now = part.state();
-    follow_plan(load, logger, forecaster.now().doubt, [&](const solver::IntervalInputs& in) { part.advance(in); });
+    follow_plan(load, logger, forecaster.now().doubt,
+                [&](const solver::IntervalInputs& in) { part.advance(in); });
     verdicts[look] = forecaster.look(rest_of(load.recipe, load.recipe, logger.minute()), logger.response(),
                                      part.case_depth_m());
     part.rewind(now);

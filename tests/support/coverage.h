@@ -17,7 +17,7 @@ struct Verdict {
   solver::Band band_m;
   solver::WindowChance chance;
   solver::Window window_m;
-  double truth_m = 0;  // case depth at the true criterion when the cycle ends
+  double truth_m = 0;      // case depth at the true criterion when the cycle ends
   double below_truth = 0;  // chance that the outlook gave to a depth below the true one
   bool covered() const { return truth_m >= band_m.low && truth_m <= band_m.high; }
 };
@@ -31,11 +31,11 @@ Verdicts judge_by_priors(const SyntheticLoad& load, std::uint64_t seed);
 // The truth of a world the model does not know, by the plain integrator; each ingredient apart. What the
 // priors know of (beta, couple, instrument, position, core, lag, film, criterion) is drawn from them always.
 struct WrongWorld {
-  bool other_diffusivity = false;  // Tibbetts instead of Agren
-  bool drifting_readings = false;  // couple 1-2 K/h, instrument up to 0.02 wt%/h, either way, unseen
-  bool noisy_readings = false;     // 1 K and 0.01 wt%; the furnace itself wanders by 2 K and 0.015 wt%
-  bool gaps = false;               // the load's own
-  bool departing_operator = false; // a segment 10-20 % longer, or 0.05 wt% off: one load in three each
+  bool other_diffusivity = false;   // Tibbetts instead of Agren
+  bool drifting_readings = false;   // couple 1-2 K/h, instrument up to 0.02 wt%/h, either way, unseen
+  bool noisy_readings = false;      // 1 K and 0.01 wt%; the furnace itself wanders by 2 K and 0.015 wt%
+  bool gaps = false;                // the load's own
+  bool departing_operator = false;  // a segment 10-20 % longer, or 0.05 wt% off: one load in three each
 };
 Verdicts judge_in(const WrongWorld& world, const SyntheticLoad& load, std::uint64_t seed);
 

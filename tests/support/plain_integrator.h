@@ -2,9 +2,10 @@
 // is held against where the model must be allowed to be wrong. No header of solver/ is included.
 //
 // dC/dt = (1/A) d/dx( A D dC/dx ) by finite volumes; flux beta (Cp - k C_s) in series with half the first
-// cell; backward Euler solved by Newton's method, made second order by one extrapolation a step (J. D. Lawson,
-// J. Ll. Morris, SIAM J. Numer. Anal. 15 (1978) 1212). Steps follow the input's pieces, and are shorter after
-// a jump. Depths are within 0.5 um of CVODE (tests/outlook/plain_integrator_test.cpp), in a few ms a cycle.
+// cell; backward Euler solved by Newton's method, made second order by one extrapolation a step (J. D.
+// Lawson, J. Ll. Morris, SIAM J. Numer. Anal. 15 (1978) 1212). Steps follow the input's pieces, and are
+// shorter after a jump. Depths are within 0.5 um of CVODE (tests/outlook/plain_integrator_test.cpp), in a few
+// ms a cycle.
 #pragma once
 
 #include <vector>

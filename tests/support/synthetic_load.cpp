@@ -10,6 +10,8 @@ namespace hearthfront::testing {
 namespace {
 
 constexpr double hold_limit_s = 1200;
+// Nobody asks for less: a cycle too short for its part is drawn again.
+constexpr double least_depth_m = 0.15e-3;
 
 double whole_minutes(double seconds) {
   return 60 * std::round(seconds / 60);
@@ -77,14 +79,16 @@ bool SyntheticLoad::in_gap(int minute) const {
   });
 }
 
-SyntheticLoad draw_load(std::uint64_t seed) {
-  Random random(seed);
+namespace {
+
+SyntheticLoad draw_once(Random& random) {
   SyntheticLoad load;
   load.part = draw_part(random, load.steel);
   load.recipe = draw_recipe(random);
   std::vector<solver::TimeAtTemperature> pieces;
   for (const auto& segment : load.recipe) pieces.push_back({segment.duration_s, segment.temperature_degc});
-  load.density.diffusion_length_m = solver::expected_diffusion_length_m(solver::DiffusivityLaw::agren, pieces);
+  load.density.diffusion_length_m =
+      solver::expected_diffusion_length_m(solver::DiffusivityLaw::agren, pieces);
   load.hardness_criterion = random.happens(0.7);
   load.criterion_wt_pct = load.hardness_criterion ? random.between(0.33, 0.40) : 0.35;
   load.load_thermocouple = random.happens(0.3);
@@ -103,9 +107,20 @@ SyntheticLoad draw_load(std::uint64_t seed) {
     load.gaps.push_back({from, from + length});
   }
   const double depth_m = nominal_depth_m(load);
-  const double centre = depth_m * std::exp(0.10 * random.normal()), half = random.between(0.04, 0.25) * depth_m;
+  const double centre = depth_m * std::exp(0.10 * random.normal()),
+               half = random.between(0.04, 0.25) * depth_m;
   load.window_m = {centre - half, centre + half};
   return load;
+}
+
+}  // namespace
+
+SyntheticLoad draw_load(std::uint64_t seed) {
+  Random random(seed);
+  for (;;) {
+    SyntheticLoad load = draw_once(random);
+    if (load.window_m.first > least_depth_m) return load;
+  }
 }
 
 FurnaceTrack::Mean FurnaceTrack::minute(double set_degc, double set_wt_pct) {

@@ -1,5 +1,5 @@
-// Invented loads for tests of the outlook: steel, section, recipe, criterion and window drawn from a seed, and
-// what a logger of their furnace would show. Ranges are those of ordinary gas carburizing, 1 to 12 h at
+// Invented loads for tests of the outlook: steel, section, recipe, criterion and window drawn from a seed,
+// and what a logger of their furnace would show. Ranges are those of ordinary gas carburizing, 1 to 12 h at
 // 880-980 degC (common practice, no source).
 #pragma once
 
@@ -38,8 +38,8 @@ struct SyntheticLoad {
   bool in_gap(int minute) const;
 };
 
-inline constexpr double charge_temperature_degc = 20;   // of the parts
-inline constexpr double furnace_start_degc = 860;       // after the door has closed
+inline constexpr double charge_temperature_degc = 20;  // of the parts
+inline constexpr double furnace_start_degc = 860;      // after the door has closed
 inline constexpr double furnace_start_wt_pct = 0.4;
 
 SyntheticLoad draw_load(std::uint64_t seed);

@@ -54,7 +54,8 @@ Tally::Missing Tally::outside_99() const {
 
 std::string Tally::report() const {
   char line[200];
-  std::snprintf(line, sizeof line, "at %2.0f %%: coverage %.2f %% of %zu, band %.1f %% of the median wide; tenths",
+  std::snprintf(line, sizeof line,
+                "at %2.0f %%: coverage %.2f %% of %zu, band %.1f %% of the median wide; tenths",
                 100 * looked_at[look_], coverage_pct(), loads_, mean_width_pct());
   std::string text = line;
   for (const std::size_t count : histogram_) text += " " + std::to_string(count);
@@ -67,7 +68,8 @@ std::string Tally::report() const {
     for (const Decile& each : deciles(chance)) {
       if (each.cases < enough_cases || binomial_agrees(each.hits, each.cases, each.stated, 0.99)) continue;
       std::snprintf(line, sizeof line, "    %s: stated %.3f, came true %.3f of %zu\n", names[chance],
-                    each.stated, static_cast<double>(each.hits) / static_cast<double>(each.cases), each.cases);
+                    each.stated, static_cast<double>(each.hits) / static_cast<double>(each.cases),
+                    each.cases);
       text += line;
     }
   return text;
