@@ -26,6 +26,6 @@
 namespace hearthfront::solver {
 
 // Part of every stored result. Raised whenever a change can alter a bit of a result.
-inline constexpr const char* model_version = "gas-carburizing 2";
+inline constexpr const char* model_version = "gas-carburizing 3";
 
 }  // namespace hearthfront::solver

@@ -70,7 +70,7 @@ Json inputs_json(const LoadView& view) {
 }
 
 Json segment_json(const LoadView& view) {
-  const auto& segments = view.result.definition->recipe.segments;
+  const auto& segments = view.result.definition->recipe_of(view.segment.plan).segments;
   return {{"index", view.segment.index},
           {"name", segments[view.segment.index].name},
           {"started_at", format_time(view.segment.started_us)},

@@ -72,7 +72,7 @@ std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadN
                   {"state_time", format_time(view.result.state_us)},
                   {"condition", text(view.condition)},
                   {"message", view.message.empty() ? Json(nullptr) : Json(view.message)},
-                  {"band", band_not_computed},
+                  {"band", band_words(view.result)},
                   {"place", place_json(view)},
                   {"inputs", inputs_json(view)},
                   {"segment", segment_json(view)},

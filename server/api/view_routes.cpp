@@ -46,6 +46,8 @@ std::shared_ptr<LoadView> Api::derive_view(const FoundLoad& found, storage::Read
   const auto load = derive(found.definition, source, found.row.ended_us.value_or(now));
   auto view =
       std::make_shared<LoadView>(make_view(*load, found.definition, now, parts_.settings.live.stale_after_s));
+  add_outlook(*view, *load, offered_joint_chance(*found.definition, *load->members()->members()),
+              {parts_.settings.outlook.inside_from, parts_.settings.outlook.missed_from});
   view->row = found.row;
   if (!found.row.ended_us) view->line_position = line_position(*found.definition, reader, now);
   view->sequence = parts_.board.sequence();

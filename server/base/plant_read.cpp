@@ -79,6 +79,14 @@ void read_gas(ConfigTable& table, Furnace& furnace) {
   }
 }
 
+void read_bounds(ConfigTable& table, Furnace& furnace) {
+  table.number("thermocouple_tolerance_k", furnace.thermocouple_tolerance_k, 0.1, 30);
+  table.number("uniformity_k", furnace.uniformity_k, 0.1, 50);
+  table.number("carbon_potential_sd_wt_pct", furnace.carbon_potential_sd_wt_pct, 0.001, 0.3);
+  table.number("highest_temperature_degc", furnace.highest_temperature_degc, 700, 1150);
+  table.number("highest_carbon_potential_wt_pct", furnace.highest_carbon_potential_wt_pct, 0.3, 1.8);
+}
+
 void read_sources(ConfigTable& table, Furnace& furnace) {
   std::string surface = "water";
   if (table.text("dew_point_over", surface) && surface != "water" && surface != "frost")
@@ -119,6 +127,7 @@ Furnace read_furnace(ConfigTable& table, std::vector<std::string>& ids) {
   table.boolean("line", furnace.line);
   read_gas(table, furnace);
   read_sources(table, furnace);
+  read_bounds(table, furnace);
 
   std::vector<std::string> names;
   for (ConfigTable& each : table.tables("channel")) {

@@ -33,6 +33,9 @@ void each_option(AnySettings& s, Visitor&& visit) {
   visit("http", "request_timeout_s", s.http.request_timeout_s, 1, 300);
   visit("http", "idle_timeout_s", s.http.idle_timeout_s, 1, 3600);
   visit("live", "stale_after_s", s.live.stale_after_s, 10, 86'400);
+  visit("outlook", "inside_from", s.outlook.inside_from, 0.5, 0.99);
+  visit("outlook", "missed_from", s.outlook.missed_from, 0.5, 0.99);
+  visit("outlook", "asked_chance", s.outlook.asked_chance, 0.5, 0.99);
   visit("log", "level", s.log.level, 1, 10);
   visit("clock", "speed", s.clock.speed, 0.1, 3600);
   visit("clock", "anchor_real", s.clock.anchor_real_us, 0, 40);

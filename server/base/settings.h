@@ -47,6 +47,12 @@ struct Settings {
     double stale_after_s = 300;  // on the clock: no reading for so long shows "stale"
   } live;
 
+  struct Outlook {
+    double inside_from = 0.8;   // chance from which an item stands "inside"
+    double missed_from = 0.5;   // chance of one side from which it stands "shallow" or "deep"
+    double asked_chance = 0.9;  // that a proposal has to reach for all windows of a load together
+  } outlook;
+
   struct Log {
     std::string level = "info";  // debug, info, warn, error
   } log;

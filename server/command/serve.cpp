@@ -58,7 +58,13 @@ int serve(const Settings& settings, const Plant& plant) {
   Api api({settings, plant, *clock, store, board, acceptor, metrics, http, state, [&running] {
              if (running) running->loads_changed();
            }});
-  Engine engine({plant, *clock, store, board, metrics, settings.live.stale_after_s,
+  Engine engine({plant,
+                 *clock,
+                 store,
+                 board,
+                 metrics,
+                 settings.live.stale_after_s,
+                 {settings.outlook.inside_from, settings.outlook.missed_from},
                  [&](const std::string& furnace, const std::string& channel) {
                    return acceptor.channel_id(furnace, channel).value_or(-1);
                  },

@@ -1,8 +1,10 @@
 #include "server/live/carbon_sources.h"
 
 #include <algorithm>
+#include <cmath>
 
 #include "solver/atmosphere/carbon_gas.h"
+#include "solver/material/activity.h"
 #include "solver/material/constants.h"
 
 namespace hearthfront::server {
@@ -50,6 +52,43 @@ std::optional<double> carbon_potential_wt_pct(CarbonSource source, const Furnace
       break;
   }
   return solver::carbon_potential_wt_pct(activity, t_k);
+}
+
+SourceDoubt doubt_of(CarbonSource source, const Furnace& furnace, const CarbonReading& reading,
+                     double potential) {
+  SourceDoubt doubt;
+  CarbonReading moved = reading;
+  if (source == CarbonSource::logged) {
+    // The emf that the controller must have seen.
+    const double t_k = reading.probe_degc.value_or(reading.furnace_degc) + solver::zero_celsius_k;
+    doubt.sd_wt_pct = furnace.carbon_potential_sd_wt_pct;
+    if (t_k - solver::zero_celsius_k < believed_from_degc || potential <= 0) return doubt;
+    const solver::CarbonGas gas = gas_of(furnace, reading);
+    const double activity = solver::carbon_activity(std::min(potential, 2.6), t_k);
+    moved.value = solver::emf_mv_at_activity(activity, t_k, gas);
+    source = CarbonSource::probe_emf;
+  }
+  const auto change = [&](const CarbonReading& other) {
+    return carbon_potential_wt_pct(source, furnace, other).value_or(potential) - potential;
+  };
+  CarbonReading off = moved;
+  if (source == CarbonSource::probe_emf)
+    *off.value += 1.7;
+  else if (source == CarbonSource::co2)
+    *off.value *= 1.03;
+  else
+    *off.value += 0.7;
+  if (doubt.sd_wt_pct <= 0) doubt.sd_wt_pct = std::fabs(change(off));
+  CarbonReading hotter = moved;
+  hotter.furnace_degc += 1;
+  if (hotter.probe_degc) *hotter.probe_degc += 1;
+  const double per_k = change(hotter);
+  // A probe with a couple of its own errs by itself, not with the furnace's.
+  if (source == CarbonSource::probe_emf && reading.probe_degc)
+    doubt.sd_wt_pct = std::hypot(doubt.sd_wt_pct, per_k * furnace.thermocouple_tolerance_k / std::sqrt(3.0));
+  else
+    doubt.per_k_wt_pct = per_k;
+  return doubt;
 }
 
 std::optional<double> spread_of_measured(const std::vector<SourceValue>& sources) {

@@ -20,6 +20,17 @@ struct CarbonReading {
 std::optional<double> carbon_potential_wt_pct(CarbonSource source, const Furnace& furnace,
                                               const CarbonReading& reading);
 
+// How far the potential that a source gives may be off.
+struct SourceDoubt {
+  double per_k_wt_pct = 0;  // change with the temperature of the furnace's couple, the reading held
+  double sd_wt_pct = 0;     // of the instrument, one sigma
+};
+// A logged potential is taken to come from a probe. Instruments, one sigma, common practice, no source: probe
+// 1.7 mV (which is the 0.025 wt% usually given for a logged potential), CO2 3 % of the reading, dew point 0.7
+// K.
+SourceDoubt doubt_of(CarbonSource source, const Furnace& furnace, const CarbonReading& reading,
+                     double carbon_potential_wt_pct);
+
 std::optional<double> spread_of_measured(const std::vector<SourceValue>& sources);
 
 }  // namespace hearthfront::server

@@ -21,6 +21,9 @@ Json furnace_copy_json(const Furnace& furnace);
 Json part_json(const Item& item);
 
 Recipe read_recipe(const Json& recipe, const std::string& path);
+// Segments under `key`, 1-40.
+std::vector<Segment> read_segments(JsonFields& fields, const std::string& key);
+std::vector<AdoptedPlan> read_plans(JsonFields& load, const LoadDefinition& definition);
 Quench read_quench(JsonFields& load);
 // The figures of the drawing, of a load's item or of a library part. Leaves finish() to the caller.
 void read_part(JsonFields& fields, Item& item, const Plant& plant, double default_lag_min);

@@ -26,15 +26,20 @@ void check_hot_enough(const LoadDefinition& load) {
 }
 
 void check_until(const LoadDefinition& load) {
-  for (std::size_t i = 0; i < load.recipe.segments.size(); ++i) {
-    const auto& until = load.recipe.segments[i].until;
-    if (!until || until->item.empty()) continue;
-    const bool known = std::any_of(load.items.begin(), load.items.end(),
-                                   [&](const Item& item) { return item.name == until->item; });
-    const std::string path = "recipe.segments[" + std::to_string(i) + "].until.item";
-    if (!known)
+  const auto known = [&](const std::string& name) {
+    return std::any_of(load.items.begin(), load.items.end(),
+                       [&](const Item& item) { return item.name == name; });
+  };
+  for (std::size_t n = 0; n <= load.plans.size(); ++n) {
+    const Recipe& recipe = load.recipe_of(n);
+    for (std::size_t i = 0; i < recipe.segments.size(); ++i) {
+      const auto& until = recipe.segments[i].until;
+      if (!until || until->item.empty() || known(until->item)) continue;
+      const std::string where = n == 0 ? "recipe" : "plans[" + std::to_string(n - 1) + "]";
+      const std::string path = where + ".segments[" + std::to_string(i) + "].until.item";
       throw Problem{422, invalid_load, "The segment ends by an item that is not there",
                     path + ": the load has no item \"" + until->item + "\".", path};
+    }
   }
 }
 
@@ -87,6 +92,7 @@ LoadDefinition read_load(const Json& json, const Plant& plant) {
   if (fields.has("film_min")) load.film_min = fields.number("film_min", 0, 120, "minutes");
   load.quench = read_quench(fields);
   load.recipe = read_recipe(fields.object("recipe"), "recipe");
+  load.plans = read_plans(fields, load);
   const Json& items = fields.array("items", 1, 40);
   std::set<std::string> names;
   for (std::size_t i = 0; i < items.size(); ++i) {
@@ -123,6 +129,12 @@ Furnace read_furnace_copy(const Json& json) {
   furnace.line = json.value("line", false);
   furnace.dew_over_frost = json.value("dew_point_over", "water") == "frost";
   furnace.source_tolerance_wt_pct = json.value("source_tolerance_wt_pct", furnace.source_tolerance_wt_pct);
+  const auto keep = [&](const char* name, double& value) { value = json.value(name, value); };
+  keep("thermocouple_tolerance_k", furnace.thermocouple_tolerance_k);
+  keep("uniformity_k", furnace.uniformity_k);
+  keep("carbon_potential_sd_wt_pct", furnace.carbon_potential_sd_wt_pct);
+  keep("highest_temperature_degc", furnace.highest_temperature_degc);
+  keep("highest_carbon_potential_wt_pct", furnace.highest_carbon_potential_wt_pct);
   if (json.contains("carbon_sources")) {
     const auto known = furnace.carbon_sources;
     furnace.carbon_sources.clear();

@@ -56,23 +56,51 @@ Segment read_segment(const Json& json, const std::string& path) {
 
 }  // namespace
 
+std::vector<Segment> read_segments(JsonFields& fields, const std::string& key) {
+  std::vector<Segment> segments;
+  double total_min = 0;
+  const Json& json = fields.array(key, 1, 40);
+  for (std::size_t i = 0; i < json.size(); ++i) {
+    segments.push_back(read_segment(json[i], fields.path_of(key) + "[" + std::to_string(i) + "]"));
+    total_min += segments.back().duration_min;
+  }
+  if (total_min > longest_recipe_min)
+    fields.fail(key, "they last " + std::to_string(std::lround(total_min / 60)) +
+                         " hours; at most 500 hours make sense.");
+  return segments;
+}
+
 Recipe read_recipe(const Json& json, const std::string& path) {
   JsonFields fields(json, path, invalid_load);
   Recipe recipe;
   recipe.name = fields.word("name", 80);
-  double total_min = 0;
-  const Json& segments = fields.array("segments", 1, 40);
-  for (std::size_t i = 0; i < segments.size(); ++i) {
-    recipe.segments.push_back(
-        read_segment(segments[i], fields.path_of("segments") + "[" + std::to_string(i) + "]"));
-    total_min += recipe.segments.back().duration_min;
-  }
+  recipe.segments = read_segments(fields, "segments");
   recipe.library = read_library_copy(fields);
   fields.finish();
-  if (total_min > longest_recipe_min)
-    fields.fail("segments", "the recipe lasts " + std::to_string(std::lround(total_min / 60)) +
-                                " hours; at most 500 hours make sense.");
   return recipe;
+}
+
+std::vector<AdoptedPlan> read_plans(JsonFields& load, const LoadDefinition& definition) {
+  std::vector<AdoptedPlan> plans;
+  if (!load.has("plans")) return plans;
+  const Json& json = load.array("plans", 0, 200);
+  for (std::size_t i = 0; i < json.size(); ++i) {
+    JsonFields fields(json[i], load.path_of("plans") + "[" + std::to_string(i) + "]", invalid_load);
+    AdoptedPlan plan;
+    plan.from_us = fields.time("from");
+    plan.person = fields.word("person", 80);
+    plan.reason = fields.word("reason", 400);
+    plan.recipe.name = definition.recipe.name;
+    plan.recipe.segments = read_segments(fields, "segments");
+    fields.finish();
+    if (plan.from_us < definition.started_us) fields.fail("from", "the load had not begun by then.");
+    if (!plans.empty() && plan.from_us <= plans.back().from_us)
+      fields.fail("from", "each plan must be later than the one before it.");
+    if (definition.ended_us && plan.from_us >= *definition.ended_us)
+      fields.fail("from", "the load had ended by then.");
+    plans.push_back(std::move(plan));
+  }
+  return plans;
 }
 
 Quench read_quench(JsonFields& load) {

@@ -68,6 +68,16 @@ Json path_json(const LoadDefinition& load) {
   return path;
 }
 
+Json plans_json(const LoadDefinition& load) {
+  Json plans = Json::array();
+  for (const AdoptedPlan& plan : load.plans)
+    plans.push_back({{"from", format_time(plan.from_us)},
+                     {"person", plan.person},
+                     {"reason", plan.reason},
+                     {"segments", recipe_json(plan.recipe).at("segments")}});
+  return plans;
+}
+
 }  // namespace
 
 Json part_json(const Item& item) {
@@ -104,6 +114,11 @@ Json furnace_copy_json(const Furnace& furnace) {
             {"line", furnace.line},
             {"dew_point_over", furnace.dew_over_frost ? "frost" : "water"},
             {"source_tolerance_wt_pct", furnace.source_tolerance_wt_pct},
+            {"thermocouple_tolerance_k", furnace.thermocouple_tolerance_k},
+            {"uniformity_k", furnace.uniformity_k},
+            {"carbon_potential_sd_wt_pct", furnace.carbon_potential_sd_wt_pct},
+            {"highest_temperature_degc", furnace.highest_temperature_degc},
+            {"highest_carbon_potential_wt_pct", furnace.highest_carbon_potential_wt_pct},
             {"carbon_sources", Json::array()},
             {"chambers", Json::array()},
             {"channels", Json::array()}};
@@ -192,6 +207,7 @@ Json load_body_json(const LoadDefinition& load) {
   json["film_min"] = load.film_min;
   json["quench"] = quench_json(load.quench);
   json["recipe"] = recipe_json(load.recipe);
+  if (!load.plans.empty()) json["plans"] = plans_json(load);
   json["items"] = Json::array();
   for (const Item& item : load.items) json["items"].push_back(item_json(item));
   json["masks"] = Json::array();

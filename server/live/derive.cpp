@@ -32,6 +32,7 @@ std::unique_ptr<LiveLoad> derive(std::shared_ptr<const LoadDefinition> definitio
   auto load = std::make_unique<LiveLoad>(std::move(definition));
   read_all(*load, source);
   load->advance_to(now_us);
+  load->bring_members_up();
   return load;
 }
 

@@ -109,6 +109,7 @@ void Engine::run() {
     }
     ++rounds_;
     std::unique_lock lock(mutex_);
+    if (members_behind_ && !stopping_) continue;
     condition_.wait_for(lock, shortest_round, [this] { return stopping_; });
     condition_.wait_for(lock, longest_round - shortest_round, [this] { return stopping_ || work_waits_; });
     work_waits_ = false;
@@ -129,6 +130,7 @@ void Engine::round(storage::Reader& reader) {
   apply_changes(reader);
   follow_pushes(reader);
   refresh_views(reader);
+  bring_members_up(reader);
   if (caught_up_) look_again(reader);
   caught_up_ = true;
   parts_.metrics.set(Level::open_loads, static_cast<double>(tracked_.size()));
@@ -273,14 +275,54 @@ void Engine::refresh_views(storage::Reader& reader) {
   published_at_ = tick;
 }
 
+// Depths come first: after a start or a long rewind the members follow in slices, so that new readings are
+// not kept waiting.
+void Engine::bring_members_up(storage::Reader& reader) {
+  constexpr auto slice = std::chrono::milliseconds(150);
+  constexpr std::size_t intervals_between_looks = 16;
+  const auto until = std::chrono::steady_clock::now() + slice;
+  members_behind_ = false;
+  for (auto& [id, tracked] : tracked_) {
+    if (tracked.load->members()) continue;
+    while (!tracked.load->bring_members_up(intervals_between_looks)) {
+      if (std::chrono::steady_clock::now() < until) continue;
+      members_behind_ = true;
+      return;
+    }
+    refresh(tracked, reader, tracked.view_us);
+  }
+}
+
+// The outlook is worked out once for each interval, and anew when something past has changed.
+void Engine::add_outlook_to(LoadView& view, Tracked& tracked) {
+  const LiveLoad& load = *tracked.load;
+  const auto interval =
+      static_cast<std::int64_t>(load.settled_points().size() + load.provisional_points().size());
+  if (!tracked.touched && interval == tracked.outlook_interval && tracked.outlook_view) {
+    view.outlook = tracked.outlook_view->outlook;
+    view.outlook_base = tracked.outlook_view->outlook_base;
+    view.outlook_missing = tracked.outlook_view->outlook_missing;
+    return;
+  }
+  if (tracked.offered_joint_chance < 0 && load.members())
+    tracked.offered_joint_chance = offered_joint_chance(load.definition(), *load.members()->members());
+  add_outlook(view, load, tracked.offered_joint_chance, parts_.standing);
+  tracked.outlook_interval = load.members() ? interval : -1;
+}
+
 void Engine::refresh(Tracked& tracked, storage::Reader& reader, std::int64_t now_us) {
   const std::uint64_t steps = tracked.load->steps();
+  // A few intervals at once; more is done in slices.
+  constexpr std::size_t members_at_once = 8;
   tracked.load->advance_to(now_us);
+  tracked.load->bring_members_up(members_at_once);
   parts_.metrics.add(Total::engine_steps, static_cast<double>(tracked.load->steps() - steps));
   auto view =
       std::make_shared<LoadView>(make_view(*tracked.load, tracked.definition, now_us, parts_.stale_after_s));
   view->row = tracked.row;
   view->line_position = line_position(*tracked.definition, reader, now_us);
+  add_outlook_to(*view, tracked);
+  tracked.outlook_view = view;
   parts_.board.publish(std::move(view));
   tracked.touched = false;
   tracked.view_us = now_us;

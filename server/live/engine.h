@@ -39,6 +39,7 @@ struct EngineParts {
   Board& board;
   Metrics& metrics;
   double stale_after_s = 300;
+  solver::StandingLimits standing;
   // Store id of a plant channel.
   std::function<std::int64_t(const std::string& furnace, const std::string& channel)> channel_id;
   // Called on the engine's thread with the loads whose view is new, or with none every few seconds.
@@ -69,6 +70,9 @@ class Engine {
     std::vector<std::int64_t> channels;  // store ids, as load->channels().used()
     bool touched = true;
     std::int64_t view_us = 0;
+    double offered_joint_chance = -1;  // worked out once the members are there
+    std::int64_t outlook_interval = -1;
+    std::shared_ptr<const LoadView> outlook_view;  // the newest with an outlook
   };
 
   void run();
@@ -77,6 +81,8 @@ class Engine {
   void apply_changes(storage::Reader& reader);
   void follow_pushes(storage::Reader& reader);
   void refresh_views(storage::Reader& reader);
+  void bring_members_up(storage::Reader& reader);
+  void add_outlook_to(LoadView& view, Tracked& tracked);
   void refresh(Tracked& tracked, storage::Reader& reader, std::int64_t now_us);
   void finish(storage::Reader& reader, const storage::LoadRow& row);
   void look_again(storage::Reader& reader);
@@ -94,6 +100,7 @@ class Engine {
   bool doubts_listed_ = false;
   std::map<std::string, const Channel*> push_channels_;  // of lines, by furnace
   bool pushes_may_wait_ = true;
+  bool members_behind_ = false;
   std::vector<std::int64_t> fresh_views_;
   std::chrono::steady_clock::time_point published_at_{};
 

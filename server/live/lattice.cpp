@@ -122,7 +122,8 @@ IntervalInput LoadChannels::input(const LoadDefinition& load, const RecipePlace&
     }
     const Furnace& furnace = *load.furnace(piece.place->furnace);
     last_furnace = &furnace;
-    const SetPoints planned = recipe_place.planned_means(load.recipe, piece.from_us, piece.to_us);
+    const SetPoints planned =
+        recipe_place.planned_means(load.recipe_of(recipe_place.now().plan), piece.from_us, piece.to_us);
     const auto cover = [&](Role role) {
       const ChannelSeries* s = at(*piece.place, role);
       return s ? s->cover(piece.from_us, piece.to_us) : Coverage{};
@@ -155,7 +156,9 @@ IntervalInput LoadChannels::input(const LoadDefinition& load, const RecipePlace&
       reading.value = mean(c);
       const auto potential = carbon_potential_wt_pct(source, furnace, reading);
       if (!potential) continue;
-      sources.push_back({source, *potential, worst_basis(c, piece_s), false});
+      const SourceDoubt doubt = doubt_of(source, furnace, reading, *potential);
+      sources.push_back(
+          {source, *potential, worst_basis(c, piece_s), false, doubt.per_k_wt_pct, doubt.sd_wt_pct});
       // The first that is measured leads; while none is, the one that knows most.
       const auto leading =
           std::find_if(sources.begin(), sources.end(), [](const SourceValue& v) { return v.leads; });
@@ -177,6 +180,9 @@ IntervalInput LoadChannels::input(const LoadDefinition& load, const RecipePlace&
     if (leading != sources.end() && leading->source != CarbonSource::logged)
       carbon_basis = worse(carbon_basis, worst_basis(temperature, piece_s));
     input.carbon_potential_basis = worse(input.carbon_potential_basis, carbon_basis);
+    input.carbon_potential_per_k = leading == sources.end() ? 0 : leading->per_k_wt_pct;
+    input.carbon_source_sd_wt_pct =
+        leading == sources.end() ? furnace.carbon_potential_sd_wt_pct : leading->sd_wt_pct;
     input.disagreement_wt_pct = spread_of_measured(sources);
     input.sources = std::move(sources);
     gas_s += piece_s;

@@ -23,6 +23,8 @@ struct SourceValue {
   double carbon_potential_wt_pct = 0;
   Basis basis = Basis::measured;
   bool leads = false;
+  // How far it may be off: by a kelvin of the couple it is computed with, and by the instrument (one sigma).
+  double per_k_wt_pct = 0, sd_wt_pct = 0;
 };
 
 struct IntervalInput {
@@ -33,7 +35,9 @@ struct IntervalInput {
   bool gas = true;                                 // false: outside any furnace for most of the interval
   std::optional<double> co_fraction, h2_fraction;  // mole fractions, where measured
   std::optional<solver::FurnaceSettings> furnace;  // the last one it was in
-  std::vector<SourceValue> sources;                // of the chamber it was in last, in the furnace's order
+  // Of the leading source, or what a recipe's value stands for where there is none.
+  double carbon_potential_per_k = 0, carbon_source_sd_wt_pct = 0;
+  std::vector<SourceValue> sources;  // of the chamber it was in last, in the furnace's order
   // Largest difference between sources that are measured; empty with fewer than two.
   std::optional<double> disagreement_wt_pct;
 };

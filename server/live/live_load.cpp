@@ -4,73 +4,21 @@
 #include <bit>
 #include <cmath>
 
+#include "server/live/solver_inputs.h"
+
 namespace hearthfront::server {
-namespace {
-
-// How deep the carbon that a rework item brings along reaches: lengths of diffusion add as squares.
-double brought_length_m(const Item& item) {
-  constexpr double above_core_wt_pct = 0.04;
-  if (!item.initial) return 0;
-  const double core = item.initial->carbon_wt_pct.back();
-  double deepest_mm = 0;
-  for (std::size_t i = 0; i < item.initial->depth_mm.size(); ++i)
-    if (item.initial->carbon_wt_pct[i] > core + above_core_wt_pct) deepest_mm = item.initial->depth_mm[i];
-  return deepest_mm * 1e-3;
-}
-
-solver::GasCarburizing make_model(const LoadDefinition& load, const Item& item) {
-  solver::CarburizingPart part;
-  part.section = item.section.in_metres();
-  part.steel = item.steel.composition;
-  part.core_carbon_wt_pct = item.core_carbon_wt_pct;
-  part.lag_s = item.lag_min * 60.0;
-  part.film_s = load.film_min * 60.0;
-  part.law = load.first_furnace().diffusivity == "tibbetts" ? solver::DiffusivityLaw::tibbetts
-                                                            : solver::DiffusivityLaw::agren;
-
-  std::vector<solver::TimeAtTemperature> pieces;
-  for (const Segment& segment : load.recipe.segments)
-    pieces.push_back({segment.duration_min * 60.0, segment.temperature_degc});
-  solver::MeshDensity density;
-  density.diffusion_length_m =
-      std::hypot(solver::expected_diffusion_length_m(part.law, pieces), brought_length_m(item));
-  return solver::GasCarburizing(part, density);
-}
-
-solver::GasCarburizing::State make_state(const LoadDefinition& load, const Item& item,
-                                         const solver::GasCarburizing& model) {
-  if (!item.initial) return model.start(load.charge_temperature_degc);
-  solver::Profile profile;
-  for (const double depth : item.initial->depth_mm) profile.depth_m.push_back(depth * 1e-3);
-  profile.carbon_wt_pct = item.initial->carbon_wt_pct;
-  return model.start(load.charge_temperature_degc, profile);
-}
-
-solver::IntervalInputs solver_inputs(const IntervalInput& input, double duration_s) {
-  solver::IntervalInputs inputs;
-  inputs.duration_s = duration_s;
-  inputs.furnace_temperature_degc = input.furnace_temperature_degc;
-  inputs.load_temperature_degc = input.load_temperature_degc;
-  inputs.carbon_potential_wt_pct = input.carbon_potential_wt_pct;
-  inputs.co_fraction = input.co_fraction;
-  inputs.h2_fraction = input.h2_fraction;
-  inputs.furnace = input.furnace;
-  inputs.gas = input.gas;
-  return inputs;
-}
-
-}  // namespace
 
 LiveLoad::LiveLoad(std::shared_ptr<const LoadDefinition> definition)
     : definition_(std::move(definition)),
       channels_(*definition_),
       lattice_us_(std::llround(definition_->lattice_s * 1e6)),
-      settled_{0, {}, RecipePlace(definition_->started_us)},
+      settled_{0, {}, RecipePlace(definition_->started_us), 0},
       now_(settled_),
       state_us_(definition_->started_us) {
   for (const Item& item : definition_->items) {
-    models_.push_back(make_model(*definition_, item));
-    settled_.items.push_back(make_state(*definition_, item, models_.back()));
+    const PartModel model = part_model(*definition_, item);
+    models_.emplace_back(model.part, model.density);
+    settled_.items.push_back(start_state(*definition_, item, models_.back()));
   }
   for (const auto& model : models_) workspaces_.emplace_back(model);
   marks_.push_back(settled_);
@@ -96,6 +44,14 @@ void LiveLoad::rewind_before(std::int64_t time_us) {
   while (marks_.size() > 1 && lattice_us(marks_.back().interval) > time_us) marks_.pop_back();
   settled_ = marks_.back();
   settled_points_.resize(static_cast<std::size_t>(settled_.interval));
+  if (members_) members_->rewind_to(settled_.interval);
+}
+
+bool LiveLoad::bring_members_up(std::size_t most_intervals) {
+  if (!members_) members_ = std::make_unique<LoadEnsemble>(definition_);
+  if (!members_level_)
+    members_level_ = members_->follow(settled_points_, provisional_points_, most_intervals);
+  return members_level_;
 }
 
 // Near the present every 8th interval keeps its mark, further back only each 16th, 32nd and so on.
@@ -114,6 +70,9 @@ RunPoint LiveLoad::advance(RunState& state, std::int64_t to_us) {
   RunPoint point;
   point.from_us = lattice_us(state.interval);
   point.to_us = to_us;
+  for (; state.plan < definition_->plans.size() && definition_->plans[state.plan].from_us <= point.from_us;
+       ++state.plan)
+    state.place.follow(state.plan + 1, definition_->plans[state.plan].from_us);
   point.input = channels_.input(*definition_, state.place, point.from_us, to_us);
   const auto inputs = solver_inputs(point.input, static_cast<double>(to_us - point.from_us) * 1e-6);
   for (std::size_t i = 0; i < models_.size(); ++i) {
@@ -137,7 +96,7 @@ void LiveLoad::place(RunState& state, const RunPoint& point) const {
   if (point.input.gas && point.input.carbon_potential_basis == Basis::measured)
     sight.carbon_potential_wt_pct = point.input.carbon_potential_wt_pct;
   bool due = false;
-  const Segment& segment = definition_->recipe.segments[state.place.now().index];
+  const Segment& segment = definition_->recipe_of(state.plan).segments[state.place.now().index];
   if (segment.until) {
     due = segment.until->kind == Until::Kind::part_temperature;
     for (std::size_t i = 0; i < point.items.size(); ++i) {
@@ -150,10 +109,11 @@ void LiveLoad::place(RunState& state, const RunPoint& point) const {
                   : item.surface_carbon_wt_pct >= segment.until->limit;
     }
   }
-  state.place.step(definition_->recipe, sight, due);
+  state.place.step(definition_->recipe_of(state.plan), sight, due);
 }
 
 void LiveLoad::advance_to(std::int64_t now_us) {
+  members_level_ = false;
   const std::int64_t target = std::max(
       definition_->started_us, definition_->ended_us ? std::min(now_us, *definition_->ended_us) : now_us);
   // In-time readings may still change what lies after the newest complete reading, so it is not settled

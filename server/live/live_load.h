@@ -7,6 +7,7 @@
 #pragma once
 
 #include <cstdint>
+#include <limits>
 #include <memory>
 #include <optional>
 #include <string>
@@ -14,24 +15,11 @@
 
 #include "server/live/lattice.h"
 #include "server/live/load_definition.h"
+#include "server/live/load_ensemble.h"
 #include "server/live/recipe_place.h"
 #include "solver/solver.h"
 
 namespace hearthfront::server {
-
-// What the model made of one item in one interval, for the history plots.
-struct ItemPoint {
-  double case_depth_mm = 0, surface_carbon_wt_pct = 0, part_temperature_degc = 0;
-  bool depth_known = false;
-  std::uint32_t notes = 0;  // solver::Note bits
-  solver::OutcomeKind outcome = solver::OutcomeKind::reached;
-};
-
-struct RunPoint {
-  std::int64_t from_us = 0, to_us = 0;
-  IntervalInput input;
-  std::vector<ItemPoint> items;
-};
 
 class LiveLoad {
  public:
@@ -52,6 +40,12 @@ class LiveLoad {
   // Brings the run to `now_us`, or to the load's end where that is earlier.
   void advance_to(std::int64_t now_us);
 
+  // Lets the members follow, by at most so many intervals; true once they stand where the run stands. Nothing
+  // of them is made before the first call.
+  bool bring_members_up(std::size_t most_intervals = std::numeric_limits<std::size_t>::max());
+  // The members, where they stand where the run stands; else null.
+  const LoadEnsemble* members() const { return members_level_ ? members_.get() : nullptr; }
+
   // Valid after advance_to.
   std::int64_t state_us() const { return state_us_; }
   bool at_end() const { return definition_->ended_us && state_us_ == *definition_->ended_us; }
@@ -65,6 +59,8 @@ class LiveLoad {
     for (const RunPoint& p : settled_points_) visit(p);
     for (const RunPoint& p : provisional_points_) visit(p);
   }
+  const std::vector<RunPoint>& settled_points() const { return settled_points_; }
+  const std::vector<RunPoint>& provisional_points() const { return provisional_points_; }
   std::uint64_t steps() const;  // solver steps done so far, rewinds included
   std::size_t marks() const { return marks_.size(); }
 
@@ -73,6 +69,7 @@ class LiveLoad {
     std::int64_t interval = 0;  // intervals done
     std::vector<solver::GasCarburizing::State> items;
     RecipePlace place;
+    std::size_t plan = 0;  // adopted plans that are in force
   };
 
   std::int64_t lattice_us(std::int64_t interval) const;
@@ -89,6 +86,8 @@ class LiveLoad {
   RunState settled_, now_;
   std::vector<RunState> marks_;  // ascending; the first is the start
   std::vector<RunPoint> settled_points_, provisional_points_;
+  std::unique_ptr<LoadEnsemble> members_;
+  bool members_level_ = false;
   std::int64_t state_us_;
 };
 

@@ -116,6 +116,14 @@ struct Item {
   std::optional<InitialProfile> initial;
 };
 
+// A changed rest of the recipe that a person adopted: it is the recipe from `from_us` on, and says nothing
+// about what was before.
+struct AdoptedPlan {
+  std::int64_t from_us = 0;
+  std::string person, reason;
+  Recipe recipe;
+};
+
 struct LoadDefinition {
   std::string name, person;
   std::vector<Furnace> furnaces;  // copies of those on the path; the first is where it began
@@ -127,10 +135,13 @@ struct LoadDefinition {
   double film_min = 0;  // slow start of the surface
   Quench quench;
   Recipe recipe;
+  std::vector<AdoptedPlan> plans;  // ascending
   std::vector<Item> items;
   std::vector<MaskSpan> masks;
   std::string model_version;
 
+  // 0: the recipe that the load began with; n: the n-th adopted plan.
+  const Recipe& recipe_of(std::size_t plan) const { return plan == 0 ? recipe : plans[plan - 1].recipe; }
   const Furnace& first_furnace() const { return furnaces.front(); }
   const Furnace* furnace(std::string_view id) const;
   const PathStep& place_at(std::int64_t time_us) const;

@@ -38,18 +38,6 @@ SetPoints end_points(const Segment& segment) {
   return {segment.temperature_degc, segment.carbon_potential_wt_pct};
 }
 
-// The set points of segment `index`, `elapsed` minutes into it, ramps included.
-SetPoints set_points(const Recipe& recipe, std::size_t index, double elapsed) {
-  const Segment& segment = recipe.segments[index];
-  const SetPoints end = end_points(segment);
-  if (index == 0 || elapsed >= segment.ramp_min) return end;
-  const SetPoints start = end_points(recipe.segments[index - 1]);
-  const double share = elapsed / segment.ramp_min;
-  return {
-      start.temperature_degc + share * (end.temperature_degc - start.temperature_degc),
-      start.carbon_potential_wt_pct + share * (end.carbon_potential_wt_pct - start.carbon_potential_wt_pct)};
-}
-
 void since(std::optional<std::int64_t>& mark, bool holds, std::int64_t from_us) {
   if (!holds)
     mark.reset();
@@ -58,6 +46,17 @@ void since(std::optional<std::int64_t>& mark, bool holds, std::int64_t from_us) 
 }
 
 }  // namespace
+
+SetPoints set_points(const Recipe& recipe, std::size_t index, double elapsed_min) {
+  const Segment& segment = recipe.segments[index];
+  const SetPoints end = end_points(segment);
+  if (index == 0 || elapsed_min >= segment.ramp_min) return end;
+  const SetPoints start = end_points(recipe.segments[index - 1]);
+  const double share = elapsed_min / segment.ramp_min;
+  return {
+      start.temperature_degc + share * (end.temperature_degc - start.temperature_degc),
+      start.carbon_potential_wt_pct + share * (end.carbon_potential_wt_pct - start.carbon_potential_wt_pct)};
+}
 
 const char* text(PlacedBy by) {
   switch (by) {
@@ -69,6 +68,8 @@ const char* text(PlacedBy by) {
       return "recipe time";
     case PlacedBy::model:
       return "model";
+    case PlacedBy::plan:
+      return "plan";
   }
   return "";
 }
@@ -80,8 +81,13 @@ std::int64_t RecipePlace::planned_end_us(const Recipe& recipe) const {
   return due_us_ ? std::min(*due_us_, latest) : latest;
 }
 
+void RecipePlace::follow(std::size_t plan, std::int64_t from_us) {
+  enter(0, from_us, PlacedBy::plan);
+  runs_.back().plan = plan;
+}
+
 void RecipePlace::enter(std::size_t index, std::int64_t from_us, PlacedBy by) {
-  runs_.push_back({index, from_us, by});
+  runs_.push_back({index, from_us, by, now().plan});
   been_here_ = false;
   due_us_.reset();
   left_us_.reset();

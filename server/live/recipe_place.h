@@ -12,8 +12,8 @@
 
 namespace hearthfront::server {
 
-enum class PlacedBy : std::uint8_t { start, readings, recipe_time, model };
-const char* text(PlacedBy by);  // "start", "readings", "recipe time", "model"
+enum class PlacedBy : std::uint8_t { start, readings, recipe_time, model, plan };
+const char* text(PlacedBy by);  // "start", "readings", "recipe time", "model", "plan"
 
 struct SetPoints {
   double temperature_degc = 0, carbon_potential_wt_pct = 0;
@@ -29,7 +29,11 @@ struct SegmentRun {
   std::size_t index = 0;
   std::int64_t from_us = 0;
   PlacedBy by = PlacedBy::start;
+  std::size_t plan = 0;  // which recipe `index` counts in: LoadDefinition::recipe_of
 };
+
+// Set points of segment `index`, `elapsed_min` into it, its ramp included.
+SetPoints set_points(const Recipe& recipe, std::size_t index, double elapsed_min);
 
 class RecipePlace {
  public:
@@ -37,6 +41,9 @@ class RecipePlace {
 
   // `due`: whether the model says that the present segment's `until` is reached at the interval's end.
   void step(const Recipe& recipe, const FurnaceSight& sight, bool due);
+
+  // From here on `plan` is the recipe, from its first segment: the calls that follow are given that recipe.
+  void follow(std::size_t plan, std::int64_t from_us);
 
   const SegmentRun& now() const { return runs_.back(); }
   const std::vector<SegmentRun>& runs() const { return runs_; }

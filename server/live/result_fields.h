@@ -14,6 +14,12 @@ Json number_or_null(std::optional<double> value);
 std::string carbon_source(const RunResult& result);  // of the newest interval, in words
 Json result_segments_json(const RunResult& result);
 
+Json band_json(const solver::Band& band, double factor = 1);
+Json window_chance_json(const solver::WindowChance& chance, const char* below, const char* above);
+
+// What stands in a document's "band".
+const char* band_words(const RunResult& result);
 inline constexpr const char* band_not_computed = "band not computed";
+inline constexpr const char* band_is = "5 to 95 %";
 
 }  // namespace hearthfront::server

@@ -35,12 +35,46 @@ Json result_segments_json(const RunResult& result) {
   Json segments = Json::array();
   const auto& runs = result.segments;
   for (std::size_t i = 0; i < runs.size(); ++i)
-    segments.push_back({{"name", result.definition->recipe.segments[runs[i].index].name},
+    segments.push_back({{"name", result.definition->recipe_of(runs[i].plan).segments[runs[i].index].name},
                         {"from", format_time(runs[i].from_us)},
                         {"to", format_time(i + 1 < runs.size() ? runs[i + 1].from_us : result.state_us)},
                         {"by", text(runs[i].by)}});
   return segments;
 }
+
+Json band_json(const solver::Band& band, double factor) {
+  return {{"low", band.low * factor}, {"median", band.median * factor}, {"high", band.high * factor}};
+}
+
+Json window_chance_json(const solver::WindowChance& chance, const char* below, const char* above) {
+  return {{below, chance.below}, {"inside", chance.inside}, {above, chance.above}};
+}
+
+const char* band_words(const RunResult& result) {
+  return result.members ? band_is : band_not_computed;
+}
+
+namespace {
+
+void add_bands(const RunResult& result, std::size_t i, Json& item) {
+  if (!result.members) {
+    for (const char* name : {"case_depth_band_mm", "surface_carbon_band_wt_pct", "chance", "lab_chance",
+                             "surface_chance", "joint_chance"})
+      item[name] = nullptr;
+    return;
+  }
+  const solver::ItemOutlook& members = result.members->items[i];
+  item["case_depth_band_mm"] = band_json(members.case_depth_m, 1e3);
+  item["surface_carbon_band_wt_pct"] = band_json(members.surface_carbon_wt_pct);
+  item["chance"] = window_chance_json(members.case_depth, "shallow", "deep");
+  item["lab_chance"] = window_chance_json(members.lab_case_depth, "shallow", "deep");
+  item["surface_chance"] = result.definition->items[i].surface_carbon_window_wt_pct
+                               ? window_chance_json(members.surface_carbon, "below", "above")
+                               : Json(nullptr);
+  item["joint_chance"] = members.joint_chance;
+}
+
+}  // namespace
 
 Json criterion_result_json(const Criterion& criterion) {
   Json json = criterion_json(criterion);
@@ -102,6 +136,7 @@ Json result_items_json(const RunResult& result) {
          {"outcome", outcome_word(item.outcome)},
          {"hardness", hardness_json(item)},
          {"profile", {{"depth_mm", item.profile_depth_mm}, {"carbon_wt_pct", item.profile_carbon_wt_pct}}}});
+    add_bands(result, i, items.back());
   }
   return items;
 }
@@ -145,7 +180,7 @@ std::string result_json(const RunResult& result) {
                   {"data_time", format_time(result.state_us)},
                   {"ended_at", load.ended_us ? Json(format_time(*load.ended_us)) : Json(nullptr)},
                   {"final", result.final},
-                  {"band", band_not_computed},
+                  {"band", band_words(result)},
                   {"inputs", std::move(inputs)},
                   {"segments", result_segments_json(result)},
                   {"gaps", result_gaps_json(result)},
@@ -184,7 +219,18 @@ std::string result_table(const RunResult& result) {
                   item.case_depth_window_mm.second, r.surface_carbon_wt_pct, mm(r.total_depth_mm).c_str());
     out += line;
   }
-  out += "\n  Band not computed. A prediction releases nothing: measure a coupon or a part.\n";
+  if (result.members)
+    for (std::size_t i = 0; i < result.items.size(); ++i) {
+      const solver::ItemOutlook& members = result.members->items[i];
+      std::snprintf(line, sizeof line,
+                    "  %-14.14s finished depth %.2f to %.2f mm in 90 of 100 cases; in its window: %.0f %%\n",
+                    load.items[i].name.c_str(), members.case_depth_m.low * 1e3,
+                    members.case_depth_m.high * 1e3, members.case_depth.inside * 100);
+      out += line;
+    }
+  else
+    out += "  Band not computed.\n";
+  out += "\n  A prediction releases nothing: measure a coupon or a part.\n";
   for (const NoteSpan& note : result.notes)
     out += "  " + format_time(note.from_us) + " to " + format_time(note.to_us) + ", item " + note.item +
            ": " + note_sentence(note.note) + "\n";

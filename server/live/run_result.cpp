@@ -213,6 +213,9 @@ RunResult read_result(const LiveLoad& load, std::shared_ptr<const LoadDefinition
       }
     }
   });
+  // Standing is not read off it, so its limits do not matter.
+  if (const LoadEnsemble* members = load.members())
+    result.members = solver::read_moment(outlook_items(def, *members->members(), members->now()), {});
   result.definition = std::move(definition);
   return result;
 }

@@ -71,6 +71,8 @@ struct RunResult {
   std::vector<GapSpan> gaps;
   std::vector<NoteSpan> notes;
   std::vector<ItemResult> items;
+  // Bands and chances at state_us; empty while the members have not followed yet.
+  std::optional<solver::OutlookMoment> members;
 };
 
 RunResult read_result(const LiveLoad& load, std::shared_ptr<const LoadDefinition> definition);

@@ -52,8 +52,10 @@ std::string say_what_is_amiss(const LoadView& view) {
   }
   if (!view.segment.doubt.empty()) return view.segment.doubt;
   if (view.segment.long_by_min > 0)
-    return "Segment \"" + view.result.definition->recipe.segments[view.segment.index].name + "\" has run " +
-           std::to_string(std::lround(view.segment.long_by_min)) + " min longer than planned.";
+    return "Segment \"" +
+           view.result.definition->recipe_of(view.segment.plan).segments[view.segment.index].name +
+           "\" has run " + std::to_string(std::lround(view.segment.long_by_min)) +
+           " min longer than planned.";
   // A part that is still heating is below its furnace's carbide limit for some minutes: that is no trouble.
   constexpr std::int64_t usual_us = 15 * 60'000'000LL;
   for (const NoteSpan& note : view.result.notes) {
@@ -63,6 +65,30 @@ std::string say_what_is_amiss(const LoadView& view) {
       return note_sentence(note.note);
   }
   return "";
+}
+
+void add_bands(const LiveLoad& load, History& history) {
+  static const std::vector<BandPoint> none;
+  const std::vector<BandPoint>& bands = load.members() ? load.members()->bands() : none;
+  for (std::size_t i = 0; i < history.items.size(); ++i) {
+    auto& columns = history.items[i];
+    std::size_t next = 0;
+    for (const double time_s : history.time_s) {
+      while (next < bands.size() && seconds(bands[next].at_us) < time_s) ++next;
+      const bool exact = next < bands.size() && seconds(bands[next].at_us) <= time_s;
+      const bool between = next > 0 && next < bands.size();
+      columns.case_depth_low_mm.emplace_back();
+      columns.case_depth_high_mm.emplace_back();
+      if (!exact && !between) continue;
+      const BandPoint& after = bands[next];
+      const BandPoint& before = exact ? after : bands[next - 1];
+      const double length_s = seconds(after.at_us - before.at_us);
+      const double share = length_s > 0 ? (time_s - seconds(before.at_us)) / length_s : 1;
+      const auto mix = [&](double a, double b) { return a + share * (b - a); };
+      columns.case_depth_low_mm.back() = mix(before.case_depth_mm[i].low, after.case_depth_mm[i].low);
+      columns.case_depth_high_mm.back() = mix(before.case_depth_mm[i].high, after.case_depth_mm[i].high);
+    }
+  }
 }
 
 }  // namespace
@@ -88,7 +114,7 @@ History read_history(const LiveLoad& load, std::size_t max_points) {
   load.each_point([&](const RunPoint&) { ++count; });
   const std::size_t stride = std::max<std::size_t>(1, (count + max_points - 1) / max_points);
   History history;
-  for (const Item& item : load.definition().items) history.items.push_back({item.name, {}, {}, {}});
+  for (const Item& item : load.definition().items) history.items.push_back({item.name, {}, {}, {}, {}, {}});
   std::size_t at = 0;
   load.each_point([&](const RunPoint& point) {
     ++at;
@@ -106,6 +132,7 @@ History read_history(const LiveLoad& load, std::size_t max_points) {
       columns.part_temperature_degc.push_back(point.items[i].part_temperature_degc);
     }
   });
+  add_bands(load, history);
   return history;
 }
 
@@ -146,14 +173,15 @@ LoadView make_view(const LiveLoad& load, std::shared_ptr<const LoadDefinition> d
   view.data_us = load.channels().newest_us(load.state_us());
   view.history = std::make_shared<const History>(read_history(load, 600));
   const RecipePlace& place = load.recipe_place();
-  const Recipe& recipe = load.definition().recipe;
+  const Recipe& recipe = load.definition().recipe_of(place.now().plan);
   view.segment = {place.now().index,
                   place.now().from_us,
                   place.now().by,
                   place.elapsed_min(load.state_us()),
                   place.segment_left_min(recipe, load.state_us()),
                   place.long_by_min(recipe, load.state_us()),
-                  place.doubt(recipe)};
+                  place.doubt(recipe),
+                  place.now().plan};
   view.minutes_left = place.minutes_left(recipe, load.state_us());
 
   const RunPoint* last = nullptr;

@@ -35,6 +35,8 @@ struct History {
     std::string name;
     std::vector<std::optional<double>> case_depth_mm;
     std::vector<double> surface_carbon_wt_pct, part_temperature_degc;
+    // Band of the finished part; empty where none was worked out. Between two moments of it a straight line.
+    std::vector<std::optional<double>> case_depth_low_mm, case_depth_high_mm;
   };
   std::vector<ItemColumns> items;
 };
@@ -56,11 +58,13 @@ struct LoadView {
     PlacedBy by = PlacedBy::start;
     double elapsed_min = 0, minutes_left = 0, long_by_min = 0;
     std::string doubt;
+    std::size_t plan = 0;  // which recipe `index` counts in
   } segment;
   double minutes_left = 0;
   // Empty where there is none; then the sentence says why.
   std::shared_ptr<const LoadOutlook> outlook;
   std::string outlook_missing;
+  std::shared_ptr<const OutlookBase> outlook_base;  // for trials; empty where there is no outlook
   // Of a pusher line: the tray's position from the entry on, counted in pushes; empty elsewhere.
   std::optional<int> line_position;
 };

@@ -94,6 +94,16 @@ OutlookMoment read_moment(const std::vector<OutlookItem>& items, const StandingL
   return moment;
 }
 
+std::vector<Band> case_depth_bands_m(const std::vector<OutlookItem>& items) {
+  std::vector<Band> bands;
+  std::vector<double> depths(items.front().model->lanes() - 1);
+  for (const OutlookItem& item : items) {
+    for (std::size_t m = 0; m < depths.size(); ++m) depths[m] = case_depth_of_lane_m(item, m + 1);
+    bands.push_back(band_of(depths));
+  }
+  return bands;
+}
+
 double joint_chance_of(const std::vector<OutlookItem>& items) {
   const std::size_t members = items.front().model->lanes() - 1;
   std::vector<double> joint(members, 1.0), depths(members), surfaces(members);

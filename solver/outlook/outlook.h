@@ -107,6 +107,9 @@ Outlook project(const std::vector<OutlookItem>& items, const std::vector<Planned
                 const FurnaceResponse& furnace, const IntervalInputs& now,
                 const OutlookOptions& options = {});
 
+// Case depths of the finished parts now, one band for each item.
+std::vector<Band> case_depth_bands_m(const std::vector<OutlookItem>& items);
+
 // What is known of the items at this moment alone: `now` bands and chances.
 OutlookMoment read_moment(const std::vector<OutlookItem>& items, const StandingLimits& limits);
 

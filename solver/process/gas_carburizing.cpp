@@ -114,6 +114,24 @@ GasCarburizing::State GasCarburizing::start_from(double charge_temperature_degc,
   return state;
 }
 
+GasCarburizing GasCarburizing::lane_alone(std::size_t lane) const {
+  GasCarburizing alone = *this;
+  alone.members_ = {members_[lane]};
+  return alone;
+}
+
+GasCarburizing::State GasCarburizing::lane_alone(const State& state, std::size_t lane) const {
+  State alone = state;
+  alone.field = CarbonField(mesh_, 1, 0.0);
+  for (std::size_t i = 0; i < mesh_->nodes(); ++i)
+    alone.field.set_carbon_wt_pct(0, i, state.field.carbon_wt_pct(lane, i));
+  alone.field.crossed_wt_pct_m = {state.field.crossed_wt_pct_m[lane]};
+  alone.part_temperature_degc = {state.part_temperature_degc[lane]};
+  alone.conditions = {state.conditions[lane]};
+  alone.initial_wt_pct_m = {state.initial_wt_pct_m[lane]};
+  return alone;
+}
+
 // Mean over the interval.
 double GasCarburizing::lane_beta_m_per_s(const State& state, const IntervalInputs& inputs,
                                          const Member& member, double t_k) const {
@@ -140,10 +158,8 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
     const Member& member = members_[lane];
     const double t_k = kelvin(part_degc[lane]);
     LaneConditions& c = state.conditions[lane];
-    const bool austenite = part_degc[lane] > austenite_from_degc_;
-    // A member that is still too cold stands still while the nominal one moves: a vanishing diffusivity.
-    const double scale = austenite ? diffusivity_factor_ * member.diffusivity_scale : 1e-30;
-    c.diffusivity = diffusivity_form(part_.law, t_k, scale, part_.constant_diffusivity_m2_s);
+    c.diffusivity = diffusivity_form(part_.law, t_k, diffusivity_factor_ * member.diffusivity_scale,
+                                     part_.constant_diffusivity_m2_s);
     if (lane == 0) {
       const TemperatureRange range = diffusivity_range(part_.law);
       if (t_k < range.low_k || t_k > range.high_k) notes |= note_outside_diffusivity_range;
@@ -154,11 +170,13 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
     }
     const double potential =
         std::max(0.0, inputs.carbon_potential_wt_pct + carbon_potential_error_wt_pct(member, inputs.doubt));
-    const double limit = cementite_limit_wt_pct(t_k);
+    // A member that lags behind the nominal part moves with it, slowly: were it to start later by itself,
+    // that would be a jump which no step was made small for. Below the austenite range the limit has no
+    // meaning.
+    const double limit = cementite_limit_wt_pct(std::max(t_k, kelvin(austenite_from_degc_)));
     const double equilibrium = potential / alloy_factor_;
     c.surface.equilibrium_wt_pct = std::min(equilibrium, limit);
-    c.surface.resistance_s_per_m =
-        austenite ? 1.0 / (lane_beta_m_per_s(state, inputs, member, t_k) * alloy_factor_) : 1e30;
+    c.surface.resistance_s_per_m = 1.0 / (lane_beta_m_per_s(state, inputs, member, t_k) * alloy_factor_);
     c.surface.forced_wt_pct_m_per_s = 0.0;
     if (lane == 0) {
       if (equilibrium > limit) notes |= note_capped_at_carbide_limit;

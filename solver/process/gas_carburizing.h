@@ -145,6 +145,10 @@ class GasCarburizing {
   State start(double charge_temperature_degc, const Profile& initial) const;
   Outcome advance(State& state, const IntervalInputs& inputs, Workspace& workspace) const;
 
+  // One lane by itself: the same model with that member alone, on the same mesh, and its state.
+  GasCarburizing lane_alone(std::size_t lane) const;
+  State lane_alone(const State& state, std::size_t lane) const;
+
   const Mesh& mesh() const { return *mesh_; }
   const CarburizingPart& part() const { return part_; }
   double alloy_factor() const { return alloy_factor_; }
