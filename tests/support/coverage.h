@@ -39,12 +39,14 @@ struct WrongWorld {
 };
 Verdicts judge_in(const WrongWorld& world, const SyntheticLoad& load, std::uint64_t seed);
 
-// End depth of one true member by the plain integrator with every error of its own spelled out again, over
-// the inputs that `judge_by_priors` would use without a look: for the test that both mean the same.
+// One true member's end depth over a whole load: by the model alone in its lane, and by the plain integrator
+// with every error of the member spelled out again. For the test that both mean the same.
 struct SameTruth {
   double by_model_m, by_plain_m;
 };
 SameTruth truth_twice(const SyntheticLoad& load, std::uint64_t seed);
+double plain_depth_m(const SyntheticLoad& load, const solver::TrueMember& truth,
+                     const std::vector<solver::IntervalInputs>& inputs);
 
 // Shares over many loads.
 class Tally {

@@ -43,8 +43,8 @@ double plain_transfer_m_per_s(double co_fraction, double h2_fraction) {
   return 1.25e-7 * co_fraction * std::sqrt(h2_fraction) / (0.20 * std::sqrt(0.40));
 }
 
-PlainIntegrator::PlainIntegrator(const PlainPart& part, double charge_temperature_degc, double fineness)
-    : part_(part), fineness_(fineness), part_degc_(charge_temperature_degc) {
+PlainIntegrator::PlainIntegrator(const PlainPart& part, double charge_degc, double fineness)
+    : part_(part), fineness_(fineness), part_degc_(charge_degc) {
   const PlainSteel& s = part.steel;
   // Gunnarson 1967; radiotracer data, Trans. JIM 17 (1976) 630; Andrews 1965.
   alloy_factor_ = std::pow(10.0, 0.055 * s.si_wt_pct - 0.013 * s.mn_wt_pct - 0.040 * s.cr_wt_pct +

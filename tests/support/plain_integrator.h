@@ -50,7 +50,7 @@ double plain_transfer_m_per_s(double co_fraction, double h2_fraction);
 class PlainIntegrator {
  public:
   // `fineness` 2 halves every cell and step.
-  PlainIntegrator(const PlainPart& part, double charge_temperature_degc, double fineness = 1);
+  PlainIntegrator(const PlainPart& part, double charge_degc, double fineness = 1);
   // Throws std::runtime_error where Newton's method does not settle.
   void advance(const PlainPiece& piece);
 
