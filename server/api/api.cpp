@@ -20,6 +20,7 @@ void Api::add_routes() {
   add_furnace_routes();
   add_channel_routes();
   add_library_routes();
+  add_outlook_routes();
 }
 
 std::string Api::floor() const {

@@ -8,6 +8,7 @@
 #include <map>
 #include <memory>
 #include <mutex>
+#include <semaphore>
 #include <string>
 #include <tuple>
 #include <utility>
@@ -58,6 +59,7 @@ class Api {
   void add_furnace_routes();
   void add_channel_routes();
   void add_library_routes();
+  void add_outlook_routes();
 
   Response status(const Request& request) const;
   Response ready(const Request& request) const;
@@ -90,6 +92,9 @@ class Api {
   Response add_mask(const Request& request);
   Response withdraw_mask(const Request& request);
   Response refused(const Request& request);
+  Response trial(const Request& request);
+  Response proposal(const Request& request);
+  Response adopt_plan(const Request& request);
   Response library(const Request& request);
   Response library_item(const Request& request);
   Response save_library(const Request& request);
@@ -124,7 +129,14 @@ class Api {
   std::string final_result(const FoundLoad& found, storage::Reader& reader);
   std::shared_ptr<LoadView> derive_view(const FoundLoad& found, storage::Reader& reader);
 
+  // The newest view of an open load with an outlook in it, else Problem 409 that says why there is none.
+  std::shared_ptr<const LoadView> view_with_outlook(const FoundLoad& found);
+  solver::StandingLimits standing_limits() const;
+  template <typename Compute>
+  auto one_of_few(Compute compute);
+
   ApiParts parts_;
+  std::counting_semaphore<> trial_seats_{2};
   ReaderPool readers_;
   std::mutex past_mutex_;
   // By load, its revision, and age of the stored result.

@@ -23,7 +23,7 @@ struct FloorFrame {
 // Furnaces in order of need: stale data first, then inputs that are not measured, then the rest.
 std::string floor_json(const Plant& plant, const Board& board, const FloorFrame& frame);
 std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadNote>& notes);
-std::string history_json(const History& history);
+std::string history_json(const LoadView& view);
 // A load row with its definition body.
 std::string load_json(const storage::LoadRow& row, const LoadDefinition& definition);
 std::string loads_json(const std::vector<storage::LoadRow>& rows, std::optional<std::int64_t> next_cursor);

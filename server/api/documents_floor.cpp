@@ -4,6 +4,7 @@
 
 #include "server/api/document_parts.h"
 #include "server/api/documents.h"
+#include "server/api/documents_outlook.h"
 #include "server/base/time_text.h"
 #include "server/live/result_fields.h"
 
@@ -36,7 +37,7 @@ Json strip_json(const ItemResult& item, const Item& definition) {
 }
 
 Json floor_item_json(const LoadView& view, bool with_strip) {
-  const std::size_t i = controlling_item(view.result);
+  const std::size_t i = controlling_item(view);
   const ItemResult& item = view.result.items[i];
   const Item& definition = view.result.definition->items[i];
   const auto& surface_window = definition.surface_carbon_window_wt_pct;
@@ -52,6 +53,9 @@ Json floor_item_json(const LoadView& view, bool with_strip) {
           {"surface_carbon_wt_pct", item.surface_carbon_wt_pct},
           {"surface_carbon_window_wt_pct", surface_window ? window_json(*surface_window) : Json(nullptr)},
           {"outcome", outcome_word(item.outcome)},
+          {"case_depth_band_mm",
+           view.result.members ? band_json(view.result.members->items[i].case_depth_m, 1e3) : Json(nullptr)},
+          {"outlook", floor_outlook_json(view, i)},
           {"strip", with_strip ? strip_json(item, definition) : Json(nullptr)}};
 }
 
@@ -132,7 +136,7 @@ std::string floor_json(const Plant& plant, const Board& board, const FloorFrame&
                   {"plant", plant.name},
                   {"demo", plant.demo},
                   {"clock_speed", frame.clock_speed},
-                  {"band", band_not_computed},
+                  {"band", band_is},
                   {"furnaces", std::move(furnaces)}};
   return dumped(json);
 }

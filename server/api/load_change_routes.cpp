@@ -130,7 +130,9 @@ Response Api::correct_load(const Request& request) {
     if (const Furnace* copy = found.definition->furnace(furnace.id)) furnace = *copy;
   for (const Furnace& copy : found.definition->furnaces)
     if (!plant.furnace(copy.id)) plant.furnaces.push_back(copy);
-  const LoadDefinition load = read_load_body(with_rework(wanted.dump()), plant);
+  LoadDefinition load = read_load_body(with_rework(wanted.dump()), plant);
+  // Adopted plans are acts of people; a correction that says nothing of them leaves them.
+  if (!wanted.contains("plans")) load.plans = found.definition->plans;
   check_times(load);
   return changed(found, load,
                  {parts_.clock.now_us(), person, "correct load", "", "", Json{{"reason", reason}}.dump()});

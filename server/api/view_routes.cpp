@@ -108,7 +108,7 @@ std::string Api::final_result(const FoundLoad& found, storage::Reader& reader) {
 Response Api::history(const Request& request) {
   const FoundLoad found = find_load(request);
   const auto view = view_of(found);
-  return with_etag(request, "\"" + view_tag(*view) + "\"", history_json(*view->history));
+  return with_etag(request, "\"" + view_tag(*view) + "\"", history_json(*view));
 }
 
 }  // namespace hearthfront::server

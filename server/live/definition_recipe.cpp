@@ -75,6 +75,8 @@ Recipe read_recipe(const Json& json, const std::string& path) {
   Recipe recipe;
   recipe.name = fields.word("name", 80);
   recipe.segments = read_segments(fields, "segments");
+  if (fields.has("temperature_may_change"))
+    recipe.temperature_may_change = fields.flag("temperature_may_change");
   recipe.library = read_library_copy(fields);
   fields.finish();
   return recipe;

@@ -190,6 +190,7 @@ Json recipe_json(const Recipe& recipe) {
   Json segments = Json::array();
   for (const Segment& segment : recipe.segments) segments.push_back(segment_json(segment));
   Json json{{"name", recipe.name}, {"segments", std::move(segments)}};
+  if (recipe.temperature_may_change) json["temperature_may_change"] = true;
   if (recipe.library) json["library"] = library_copy_json(*recipe.library);
   return json;
 }

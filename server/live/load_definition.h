@@ -45,6 +45,7 @@ struct Recipe {
   std::string name;
   std::vector<Segment> segments;
   std::optional<LibraryCopy> library;
+  bool temperature_may_change = false;  // by a proposal
 };
 
 // From when a load was where: a chamber, or outside any furnace (empty names).

@@ -45,6 +45,9 @@ std::vector<Segment> rest_of(const LiveLoad& load) {
   first.duration_min = place.segment_left_min(recipe, load.state_us());
   first.ramp_min = std::clamp(first.ramp_min - elapsed_min, 0.0, first.duration_min);
   if (first.until) first.longest_min = std::max(first.duration_min, first.longest_min - elapsed_min);
+  // A segment that is over, and that the furnace has only not left yet, is nobody's plan any more.
+  constexpr double over_min = 0.5;
+  if (rest.size() > 1 && first.duration_min < over_min) rest.erase(rest.begin());
   return rest;
 }
 
@@ -93,6 +96,11 @@ std::vector<solver::IntervalInputs> merged_history(const LiveLoad& load) {
 
 }  // namespace
 
+bool cools(const Segment& before, const Segment& segment) {
+  constexpr double cools_by_k = 15;
+  return segment.temperature_degc < before.temperature_degc - cools_by_k;
+}
+
 std::vector<solver::PlannedSegment> planned(const LoadDefinition& load, const std::vector<Segment>& rest) {
   std::vector<solver::PlannedSegment> plan;
   for (const Segment& segment : rest) {
@@ -116,6 +124,9 @@ OutlookStart outlook_start(const LiveLoad& load, std::shared_ptr<const LoadDefin
   base->states = members->now();
   base->at_us = load.state_us();
   base->rest = rest_of(load);
+  const SegmentRun& run = load.recipe_place().now();
+  const auto& segments = load.definition().recipe_of(run.plan).segments;
+  base->first_cools = run.index > 0 && cools(segments[run.index - 1], segments[run.index]);
   base->furnace = furnace_response(load);
   const RunPoint* last = nullptr;
   load.each_point([&](const RunPoint& point) { last = &point; });

@@ -31,12 +31,15 @@ struct OutlookBase {
   std::shared_ptr<const MemberModels> members;
   MemberStates states;
   std::int64_t at_us = 0;
-  double charge_temperature_degc = 20;
   std::vector<Segment> rest;
+  bool first_cools = false;  // whether the present segment is colder than the one before it
   solver::FurnaceResponse furnace;
   solver::IntervalInputs now;                   // gas, furnace settings and doubt that go on
   std::vector<solver::IntervalInputs> history;  // from the start to at_us, merged: for members drawn afresh
 };
+
+// Colder than the one before by more than control does: such a segment lets the load cool before the quench.
+bool cools(const Segment& before, const Segment& segment);
 
 // The load must stand level with its members. Throws nothing; where there is no outlook the sentence says
 // why.

@@ -219,6 +219,10 @@ LoadView make_view(const LiveLoad& load, std::shared_ptr<const LoadDefinition> d
   return view;
 }
 
+std::size_t controlling_item(const LoadView& view) {
+  return view.outlook ? view.outlook->ahead.end.controlling_item : controlling_item(view.result);
+}
+
 void Board::publish(std::shared_ptr<LoadView> view) {
   const std::scoped_lock lock(mutex_);
   view->sequence = ++sequence_;

@@ -69,6 +69,10 @@ struct LoadView {
   std::optional<int> line_position;
 };
 
+// The item to watch: the one with the least chance at the end, or where there is no outlook as run_result has
+// it.
+std::size_t controlling_item(const LoadView& view);
+
 // Makes everything but row and sequence.
 LoadView make_view(const LiveLoad& load, std::shared_ptr<const LoadDefinition> definition,
                    std::int64_t now_us, double stale_after_s);

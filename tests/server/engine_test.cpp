@@ -57,6 +57,7 @@ struct Works {
                     board,
                     metrics,
                     300,
+                    {},
                     [this](const std::string& f, const std::string& c) { return channels.at(f + c); },
                     {}});
     engine->start();
@@ -187,6 +188,7 @@ TEST_CASE(
                 works.board,
                 works.metrics,
                 300,
+                {},
                 [&](const std::string& f, const std::string& c) { return works.channels.at(f + c); },
                 {}});
   again.start();

@@ -45,12 +45,12 @@ TEST_CASE("fed reading by reading with a view every half minute, the result equa
   std::int64_t now = def->started_us;
   for (const Arrival& arrival : arrivals(live, log)) {
     while (now < arrival.sample.time_us && now < end) {
-      live.advance_to(now);
+      advance(live, now);
       now += minute / 2;
     }
     take(live, arrival);
   }
-  live.advance_to(end);
+  advance(live, end);
   CHECK(result_of(live, def) == replayed);
 }
 
@@ -66,9 +66,9 @@ TEST_CASE("fed in random order, with views in between, the result equals one rep
     std::shuffle(order.begin(), order.end(), random);
     for (std::size_t i = 0; i < order.size(); ++i) {
       take(live, order[i]);
-      if (i % 40 == 0) live.advance_to(end);
+      if (i % 40 == 0) advance(live, end);
     }
-    live.advance_to(end);
+    advance(live, end);
     CAPTURE(seed);
     CHECK(result_of(live, def) == replayed);
   }
@@ -88,10 +88,10 @@ TEST_CASE("a late block rewinds and ends where it would have ended in time") {
     else
       take(live, arrival);
   }
-  live.advance_to(end);
+  advance(live, end);
   CHECK(result_of(live, def) != replayed);
   for (const Arrival& arrival : late) take(live, arrival);
-  live.advance_to(end);
+  advance(live, end);
   CHECK(result_of(live, def) == replayed);
 }
 
@@ -101,11 +101,11 @@ TEST_CASE("a clock set back shows the earlier moment again, and forward the same
   const std::int64_t end = def->started_us + 150 * minute;
   LiveLoad live(def);
   read_all(live, source_of(log));
-  live.advance_to(end);
+  advance(live, end);
   const std::string first = result_of(live, def);
-  live.advance_to(def->started_us + 60 * minute);
+  advance(live, def->started_us + 60 * minute);
   CHECK(result_of(live, def) == result_of(*derive(def, source_of(log), def->started_us + 60 * minute), def));
-  live.advance_to(end);
+  advance(live, end);
   CHECK(result_of(live, def) == first);
 }
 
@@ -113,7 +113,7 @@ TEST_CASE("marks stay few however long the load") {
   const auto def = definition();
   LiveLoad live(def);
   read_all(live, source_of(noisy_log(*def, 3000)));
-  live.advance_to(def->started_us + 3000 * minute);
+  advance(live, def->started_us + 3000 * minute);
   CHECK(live.marks() < 60);
 }
 

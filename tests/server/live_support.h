@@ -82,4 +82,11 @@ inline std::string result_of(const LiveLoad& load, const std::shared_ptr<const L
   return result_json(read_result(load, def));
 }
 
+// As the engine does: the members follow each look, in small slices.
+inline void advance(LiveLoad& load, std::int64_t now_us) {
+  load.advance_to(now_us);
+  while (!load.bring_members_up(7)) {
+  }
+}
+
 }  // namespace hearthfront::server::test

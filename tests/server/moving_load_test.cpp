@@ -103,9 +103,9 @@ TEST_CASE("late = on time, in any order, across a move") {
   for (std::size_t i = 0; i < all.size(); ++i) {
     const auto& [used, sample] = all[i];
     live.replace_readings(used, sample.time_us, sample.time_us, {sample});
-    if (i % 50 == 0) live.advance_to(end);
+    if (i % 50 == 0) advance(live, end);
   }
-  live.advance_to(end);
+  advance(live, end);
   CHECK(result_of(live, moved) == wanted);
 }
 
