@@ -53,7 +53,7 @@ double film_share(double age_s, double length_s, double constant_s) {
 // Share of the flux that a member too cold by so many kelvins takes up: with a rise at once to all of it, its
 // start would be a jump again.
 double cold_pace(double too_cold_k) {
-  return std::max(0.1, 1.0 - too_cold_k / 60.0);
+  return std::max(0.5, 1.0 - too_cold_k / 60.0);
 }
 
 void check_profile(const Profile& profile, const Mesh& mesh) {

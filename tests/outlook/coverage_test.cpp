@@ -30,3 +30,32 @@ TEST_CASE("a member means what its errors say: the plain integrator reaches the 
     CHECK(std::fabs(truth.by_model_m - truth.by_plain_m) < 1e-6);
   }
 }
+
+TEST_CASE("truth from the priors: the band holds it in 90 % of loads, and chances come true") {
+  constexpr std::size_t loads = 300;
+  std::vector<Tally> tallies{Tally(0), Tally(1), Tally(2)};
+  for (std::size_t i = 0; i < loads; ++i) {
+    const Verdicts verdicts = judge_by_priors(draw_load(1000 + i), 5000 + i);
+    for (Tally& tally : tallies) tally.add(verdicts);
+  }
+  for (const Tally& tally : tallies) {
+    CAPTURE(tally.report());
+    CHECK(std::fabs(tally.coverage_pct() - 90) <= 5);  // 2.9 standard deviations of 300 loads
+    // One decile in a hundred misses its 99 % interval even where all are right.
+    const Tally::Missing missing = tally.outside_99();
+    CHECK(missing.deciles >= 8);
+    CHECK(binomial_up_to(missing.outside, missing.deciles, 0.01) < 0.995);
+  }
+}
+
+TEST_CASE("wrong diffusivity, drift, noise, gaps, an operator who departs: the band still holds 80 %") {
+  std::vector<Tally> tallies{Tally(0), Tally(1), Tally(2)};
+  for (std::size_t i = 0; i < 150; ++i) {
+    const Verdicts verdicts = judge_in({true, true, true, true, true}, draw_load(3000 + i), 7000 + i);
+    for (Tally& tally : tallies) tally.add(verdicts);
+  }
+  for (const Tally& tally : tallies) {
+    CAPTURE(tally.report());
+    CHECK(tally.coverage_pct() >= 80);
+  }
+}

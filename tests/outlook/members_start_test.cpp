@@ -1,5 +1,5 @@
-// Members of an ensemble that is charged cold become austenite minutes apart from one another, while steps are
-// made for the nominal part alone.
+// Members of an ensemble that is charged cold become austenite minutes apart from one another, while steps
+// are made for the nominal part alone.
 #include <doctest/doctest.h>
 
 #include <algorithm>
@@ -36,9 +36,9 @@ Ran run_recipe(const SyntheticLoad& load, const std::vector<solver::Member>& mem
         ran.least_wt_pct = std::min(ran.least_wt_pct, state.field.carbon_wt_pct(lane, node));
   }
   for (std::size_t lane = 0; lane < members.size(); ++lane)
-    ran.depth_m.push_back(depth_at_carbon_m(read_profile(state.field, lane, state.conditions[lane]),
-                                            load.criterion_wt_pct)
-                              .value());
+    ran.depth_m.push_back(
+        depth_at_carbon_m(read_profile(state.field, lane, state.conditions[lane]), load.criterion_wt_pct)
+            .value());
   return ran;
 }
 
@@ -57,8 +57,9 @@ TEST_CASE("charged cold: no member fails or leaves its bounds, whatever its lag"
 }
 
 TEST_CASE("charged cold: lag moves a member's depth in company nearly as it does alone") {
-  // Alone a member decides steps and pause itself. In company its start is only approximated; what is asked is
-  // that the ensemble's spread by lag is neither lost nor made: 10 % of the difference that lag makes, and 6 um.
+  // Alone a member decides steps and pause itself. In company its start is only approximated; what is asked
+  // is that the ensemble's spread by lag is neither lost nor made: 10 % of the difference that lag makes, and
+  // 6 um.
   for (std::uint64_t i = 0; i < 12; ++i) {
     const SyntheticLoad load = draw_load(600 + i);
     for (const double lag_scale : {0.6, 0.8, 1.25, 1.6}) {
