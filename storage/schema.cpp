@@ -156,8 +156,66 @@ CREATE TRIGGER load_stay_no_overlap BEFORE INSERT ON load_stay WHEN NEW.places =
   BEGIN SELECT RAISE(ABORT, 'another load is in this chamber at that time'); END;
 )sql";
 
-constexpr std::array<Migration, 3> all_migrations{
-    {{1, "first tables", first_tables}, {2, "moving loads", moving_loads}, {3, "ends found", ends_found}}};
+// Who or what reads the file later must be able to trust what was told to whom, so what a message said never
+// changes, only how its sending went.
+constexpr const char* alerts = R"sql(
+CREATE TABLE alert(
+  id INTEGER PRIMARY KEY AUTOINCREMENT, key TEXT NOT NULL, kind TEXT NOT NULL,
+  severity TEXT NOT NULL CHECK(severity IN ('note', 'warning', 'urgent')),
+  furnace TEXT NOT NULL, load INTEGER NOT NULL, subject TEXT NOT NULL,
+  sentence TEXT NOT NULL, advice TEXT NOT NULL,
+  state TEXT NOT NULL CHECK(state IN ('waiting', 'active', 'resting', 'cleared')),
+  since_us INTEGER NOT NULL, raised_us INTEGER, last_seen_us INTEGER NOT NULL,
+  clearing_us INTEGER, cleared_us INTEGER, times INTEGER NOT NULL,
+  asking_us INTEGER NOT NULL, escalated INTEGER NOT NULL, escalated_us INTEGER NOT NULL,
+  acknowledged_us INTEGER, acknowledged_by TEXT NOT NULL,
+  shelved_until_us INTEGER, shelved_by TEXT NOT NULL, shelved_reason TEXT NOT NULL,
+  CHECK(state = 'waiting' OR raised_us IS NOT NULL),
+  CHECK((cleared_us IS NOT NULL) = (state IN ('resting', 'cleared')))) STRICT;
+CREATE UNIQUE INDEX alert_open ON alert(key) WHERE state <> 'cleared';
+CREATE INDEX alert_furnace ON alert(furnace, id);
+CREATE INDEX alert_load ON alert(load, id);
+CREATE TRIGGER alert_past BEFORE UPDATE ON alert WHEN OLD.state = 'cleared'
+  BEGIN SELECT RAISE(ABORT, 'a past alert is never changed'); END;
+CREATE TRIGGER alert_same BEFORE UPDATE ON alert
+  WHEN NEW.id <> OLD.id OR NEW.key <> OLD.key OR NEW.kind <> OLD.kind OR NEW.furnace <> OLD.furnace
+    OR NEW.load <> OLD.load OR NEW.subject <> OLD.subject
+  BEGIN SELECT RAISE(ABORT, 'an alert stays about the same condition'); END;
+CREATE TRIGGER alert_no_delete BEFORE DELETE ON alert WHEN OLD.state <> 'waiting'
+  BEGIN SELECT RAISE(ABORT, 'alerts that were raised are never deleted'); END;
+
+CREATE TABLE alert_event(
+  id INTEGER PRIMARY KEY AUTOINCREMENT, alert INTEGER NOT NULL REFERENCES alert(id), at_us INTEGER NOT NULL,
+  person TEXT NOT NULL, what TEXT NOT NULL, text TEXT NOT NULL) STRICT;
+CREATE INDEX alert_event_alert ON alert_event(alert, id);
+CREATE TRIGGER alert_event_no_update BEFORE UPDATE ON alert_event
+  BEGIN SELECT RAISE(ABORT, 'events of alerts are never changed'); END;
+CREATE TRIGGER alert_event_no_delete BEFORE DELETE ON alert_event
+  BEGIN SELECT RAISE(ABORT, 'events of alerts are never deleted'); END;
+
+CREATE TABLE outbox(
+  id INTEGER PRIMARY KEY AUTOINCREMENT, alert INTEGER NOT NULL REFERENCES alert(id), created_us INTEGER NOT NULL,
+  target TEXT NOT NULL, event TEXT NOT NULL, key TEXT NOT NULL UNIQUE, payload_json TEXT NOT NULL,
+  state TEXT NOT NULL CHECK(state IN ('waiting', 'delivered', 'stuck', 'dropped')),
+  attempts INTEGER NOT NULL, next_try_us INTEGER NOT NULL, delivered_us INTEGER, last_error TEXT NOT NULL,
+  CHECK((delivered_us IS NOT NULL) = (state = 'delivered'))) STRICT;
+CREATE INDEX outbox_alert ON outbox(alert, id);
+CREATE INDEX outbox_target ON outbox(target);
+CREATE INDEX outbox_due ON outbox(next_try_us, id) WHERE state = 'waiting';
+CREATE INDEX outbox_left ON outbox(target, state) WHERE state IN ('waiting', 'stuck');
+CREATE INDEX outbox_delivered ON outbox(target, delivered_us) WHERE state = 'delivered';
+CREATE INDEX outbox_error ON outbox(target, id) WHERE last_error <> '';
+CREATE TRIGGER outbox_same BEFORE UPDATE OF id, alert, created_us, target, event, key, payload_json ON outbox
+  BEGIN SELECT RAISE(ABORT, 'what a message says is never changed'); END;
+CREATE TRIGGER outbox_delivered_stays BEFORE UPDATE ON outbox WHEN OLD.state = 'delivered'
+  BEGIN SELECT RAISE(ABORT, 'a delivered message is never changed'); END;
+CREATE TRIGGER outbox_no_delete BEFORE DELETE ON outbox BEGIN SELECT RAISE(ABORT, 'messages are never deleted'); END;
+)sql";
+
+constexpr std::array<Migration, 4> all_migrations{{{1, "first tables", first_tables},
+                                                   {2, "moving loads", moving_loads},
+                                                   {3, "ends found", ends_found},
+                                                   {4, "alerts", alerts}}};
 
 int pragma_number(Connection& connection, const char* pragma) {
   return connection.database().execAndGet(pragma).getInt();

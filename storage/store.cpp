@@ -10,6 +10,7 @@
 #include <set>
 #include <utility>
 
+#include "storage/alerts.h"
 #include "storage/connection.h"
 #include "storage/files.h"
 #include "storage/library.h"
@@ -287,6 +288,26 @@ void Store::save_result(ResultRow row) {
 void Store::add_audit(AuditRow row) {
   impl_->writer().run(0, Writer::Kind::fallible,
                       [&](Tables& tables) { insert_audit(tables.connection, row); });
+}
+
+void Store::save_alerts(AlertWrite write) {
+  if (write.empty()) return;
+  impl_->writer().run(0, Writer::Kind::fallible,
+                      [&](Tables& tables) { storage::save_alerts(tables.connection, write); });
+}
+
+void Store::note_delivery(DeliveryNote note) {
+  impl_->writer().run(0, Writer::Kind::fallible,
+                      [&](Tables& tables) { storage::note_delivery(tables.connection, note); });
+}
+
+std::int64_t Store::retry_stuck(std::string_view target, AuditRow audit) {
+  const std::string name(target);
+  std::int64_t retried = 0;
+  impl_->writer().run(0, Writer::Kind::fallible, [&](Tables& tables) {
+    retried = storage::retry_stuck(tables.connection, name, audit);
+  });
+  return retried;
 }
 
 std::vector<ChangedSpan> Store::take_changes() {

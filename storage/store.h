@@ -16,6 +16,9 @@
 #include <string_view>
 #include <vector>
 
+#include "storage/alert_records.h"
+#include "storage/audit_row.h"
+
 namespace hearthfront::storage {
 
 // Why a store call failed. `unknown_fate`: a sync failed, what is on disk is unknown; the store then
@@ -150,11 +153,6 @@ struct ResultRow {
   bool superseded = false;
 };
 
-struct AuditRow {
-  std::int64_t at_us = 0;
-  std::string person, action, subject, before_json, after_json;
-};
-
 struct ChannelCounts {
   std::int64_t stored = 0;     // rows
   std::int64_t conflicts = 0;  // times with two or more values
@@ -215,6 +213,18 @@ class Reader {
   std::vector<RefusedReading> refused(std::string_view furnace, int limit);  // newest first
   std::vector<RefusedCount> refused_counts(std::string_view furnace);        // empty = every furnace
   std::vector<AuditRow> audit(std::string_view subject, int limit);          // newest first
+
+  std::vector<AlertRow> open_alerts();               // all but the cleared ones, oldest first
+  std::vector<AlertRow> alerts(const AlertFilter&);  // those that were raised, newest first
+  std::optional<AlertRow> alert(std::int64_t id);
+  std::int64_t next_alert_id();                                       // above every number ever given
+  std::vector<AlertEvent> alert_events(std::int64_t alert);           // oldest first
+  std::vector<OutboxRow> outbox_due(std::int64_t now_us, int limit);  // waiting, next try due; oldest first
+  // When the next waiting message is due; none where none waits.
+  std::optional<std::int64_t> outbox_next_us();
+  std::vector<OutboxRow> deliveries(std::int64_t alert);  // oldest first
+  DeliveryCounts delivery_counts(std::int64_t alert);
+  std::vector<TargetState> targets();  // those that ever had a message, by name
 
  private:
   class Impl;
@@ -281,6 +291,16 @@ class Store {
   void withdraw_mask(std::int64_t id, AuditRow audit);  // misuse: no such mask, or withdrawn already
   void save_result(ResultRow row);                      // marks earlier results of the load as superseded
   void add_audit(AuditRow row);                         // a change that is not a load's
+
+  // All of it in one transaction: an alert is never raised without its messages, nor told without being
+  // stored. A row whose id is not there yet is new. misuse: another open alert has its key, it is past, or
+  // has no number; and an outbox key that is there already.
+  void save_alerts(AlertWrite write);
+  // How a try went. misuse: no such message, or it was delivered already.
+  void note_delivery(DeliveryNote note);
+  // Messages of the target that were given up are due again at the audit's time; returns how many. Their
+  // count of attempts starts anew.
+  std::int64_t retry_stuck(std::string_view target, AuditRow audit);
 
   std::vector<ChangedSpan> take_changes();
   // Called after each commit with new rows, on the writer thread with no lock held; set before writing

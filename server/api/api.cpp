@@ -21,10 +21,11 @@ void Api::add_routes() {
   add_channel_routes();
   add_library_routes();
   add_outlook_routes();
+  add_alert_routes();
 }
 
 std::string Api::floor() const {
-  return floor_json(parts_.plant, parts_.board,
+  return floor_json(parts_.plant, parts_.board, *parts_.alerts.list(),
                     {parts_.clock.now_us(), parts_.clock.speed(), parts_.board.sequence()});
 }
 

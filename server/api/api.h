@@ -13,6 +13,7 @@
 #include <tuple>
 #include <utility>
 
+#include "server/alerts/alert_keeper.h"
 #include "server/api/documents.h"
 #include "server/api/http_server.h"
 #include "server/api/reader_pool.h"
@@ -39,6 +40,7 @@ struct ApiParts {
   HttpServer& http;
   const std::atomic<ServiceState>& state;
   std::function<void()> loads_changed;
+  AlertKeeper& alerts;
 };
 
 class Api {
@@ -60,6 +62,7 @@ class Api {
   void add_channel_routes();
   void add_library_routes();
   void add_outlook_routes();
+  void add_alert_routes();
 
   Response status(const Request& request) const;
   Response ready(const Request& request) const;
@@ -98,6 +101,12 @@ class Api {
   Response library(const Request& request);
   Response library_item(const Request& request);
   Response save_library(const Request& request);
+  Response list_alerts(const Request& request);
+  Response show_alert(const Request& request);
+  Response acknowledge_alert(const Request& request);
+  Response shelve_alert(const Request& request);
+  Response unshelve_alert(const Request& request);
+  Response add_alert_note(const Request& request);
 
   struct FoundLoad {
     storage::LoadRow row;
@@ -116,6 +125,8 @@ class Api {
   // The body with each "rework_of" replaced by the final profile of the item it names.
   std::string with_rework(const std::string& body);
   void refuse_ended(const FoundLoad& found) const;
+  // The alert with its events and messages, as it is now.
+  Response alert_document(std::int64_t id);
   // Stores `load` as the next revision and answers with it.
   Response changed(const FoundLoad& found, const LoadDefinition& load, storage::AuditRow audit,
                    bool cancelled = false);

@@ -1,5 +1,7 @@
 #include "server/api/document_parts.h"
 
+#include "server/alerts/alert_json.h"
+
 #include "server/base/time_text.h"
 #include "server/live/result_fields.h"
 
@@ -85,6 +87,21 @@ Json segment_json(const LoadView& view) {
 Json position_json(const LoadView& view, const Furnace& furnace) {
   if (!view.line_position) return nullptr;
   return {{"place", *view.line_position}, {"places", furnace.places()}};
+}
+
+Json load_alerts_json(const AlertList& alerts, std::int64_t load, const std::string& furnace) {
+  Json list = Json::array();
+  for (const storage::AlertRow& row : alerts.active)
+    if (row.load == load || (row.load == 0 && !furnace.empty() && row.furnace == furnace))
+      list.push_back(alert_summary_json(row));
+  return list;
+}
+
+Json furnace_alerts_json(const AlertList& alerts, const std::string& furnace) {
+  Json list = Json::array();
+  for (const storage::AlertRow& row : alerts.active)
+    if (row.load == 0 && row.furnace == furnace) list.push_back(alert_summary_json(row));
+  return list;
 }
 
 }  // namespace hearthfront::server

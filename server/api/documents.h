@@ -7,6 +7,7 @@
 #include <string>
 #include <vector>
 
+#include "server/alerts/alert_list.h"
 #include "server/base/plant.h"
 #include "server/live/channel_health.h"
 #include "server/live/view.h"
@@ -21,8 +22,10 @@ struct FloorFrame {
 };
 
 // Furnaces in order of need: stale data first, then inputs that are not measured, then the rest.
-std::string floor_json(const Plant& plant, const Board& board, const FloorFrame& frame);
-std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadNote>& notes);
+std::string floor_json(const Plant& plant, const Board& board, const AlertList& alerts,
+                       const FloorFrame& frame);
+std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadNote>& notes,
+                          const AlertList& alerts);
 std::string history_json(const LoadView& view);
 // A load row with its definition body.
 std::string load_json(const storage::LoadRow& row, const LoadDefinition& definition);

@@ -59,7 +59,7 @@ Json floor_item_json(const LoadView& view, bool with_strip) {
           {"strip", with_strip ? strip_json(item, definition) : Json(nullptr)}};
 }
 
-Json floor_load_json(const LoadView& view, const Furnace& furnace, bool with_strip) {
+Json floor_load_json(const LoadView& view, const Furnace& furnace, const AlertList& alerts, bool with_strip) {
   return {{"id", view.row.id},
           {"name", view.row.name},
           {"chamber", view.row.chamber},
@@ -73,7 +73,24 @@ Json floor_load_json(const LoadView& view, const Furnace& furnace, bool with_str
           {"segment", segment_json(view)},
           {"minutes_left", view.minutes_left},
           {"item_count", view.result.items.size()},
-          {"item", floor_item_json(view, with_strip)}};
+          {"item", floor_item_json(view, with_strip)},
+          {"alerts", load_alerts_json(alerts, view.row.id)}};
+}
+
+Json floor_alerts_json(const AlertList& alerts) {
+  std::size_t unacknowledged = 0;
+  std::int64_t newest = 0;
+  for (const storage::AlertRow& row : alerts.active) {
+    if (!row.acknowledged_us && !row.shelved_until_us) ++unacknowledged;
+    newest = std::max(newest, row.id);
+  }
+  // The first may be shelved; then all are.
+  const bool any = !alerts.active.empty() && !alerts.active.front().shelved_until_us;
+  return {{"active", alerts.active.size()},
+          {"unacknowledged", unacknowledged},
+          {"worst", any ? Json(alerts.active.front().severity) : Json(nullptr)},
+          {"newest_id", newest == 0 ? Json(nullptr) : Json(newest)},
+          {"plant", furnace_alerts_json(alerts, "")}};
 }
 
 // Lower is more urgent.
@@ -85,7 +102,8 @@ int urgency(const LoadView& view) {
 
 }  // namespace
 
-std::string floor_json(const Plant& plant, const Board& board, const FloorFrame& frame) {
+std::string floor_json(const Plant& plant, const Board& board, const AlertList& alerts,
+                       const FloorFrame& frame) {
   const auto views = board.loads();
   struct Row {
     const Furnace* furnace;
@@ -117,7 +135,7 @@ std::string floor_json(const Plant& plant, const Board& board, const FloorFrame&
     Json loads = Json::array();
     Condition condition = Condition::no_load;
     for (const LoadView* view : row.loads) {
-      loads.push_back(floor_load_json(*view, *row.furnace, loads.size() < strips_a_furnace));
+      loads.push_back(floor_load_json(*view, *row.furnace, alerts, loads.size() < strips_a_furnace));
       if (condition == Condition::no_load || view->condition < condition) condition = view->condition;
     }
     const auto newest = board.newest_reading(row.furnace->id);
@@ -129,7 +147,8 @@ std::string floor_json(const Plant& plant, const Board& board, const FloorFrame&
                         {"condition", text(condition)},
                         {"data_time", time_or_null(newest)},
                         {"data_age_s", age_or_null(newest, frame.now_us)},
-                        {"loads", std::move(loads)}});
+                        {"loads", std::move(loads)},
+                        {"alerts", furnace_alerts_json(alerts, row.furnace->id)}});
   }
   const Json json{{"sequence", frame.sequence},
                   {"now", format_time(frame.now_us)},
@@ -137,6 +156,7 @@ std::string floor_json(const Plant& plant, const Board& board, const FloorFrame&
                   {"demo", plant.demo},
                   {"clock_speed", frame.clock_speed},
                   {"band", band_is},
+                  {"alerts", floor_alerts_json(alerts)},
                   {"furnaces", std::move(furnaces)}};
   return dumped(json);
 }

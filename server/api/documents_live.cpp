@@ -47,7 +47,8 @@ std::string furnace_name(const LoadDefinition& load, const std::string& id) {
 
 }  // namespace
 
-std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadNote>& notes) {
+std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadNote>& notes,
+                          const AlertList& alerts) {
   const LoadDefinition& load = *view.result.definition;
   Json shift_notes = Json::array();
   for (const storage::LoadNote& note : notes)
@@ -87,7 +88,8 @@ std::string snapshot_json(const LoadView& view, const std::vector<storage::LoadN
       {"controlling_item", load.items[controlling_item(view)].name},
       {"notes", result_notes_json(view.result)},
       {"gaps", result_gaps_json(view.result)},
-      {"shift_notes", std::move(shift_notes)}};
+      {"shift_notes", std::move(shift_notes)},
+      {"alerts", load_alerts_json(alerts, view.row.id, view.row.ended_us ? "" : view.row.furnace)}};
   return dumped(json);
 }
 

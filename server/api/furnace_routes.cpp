@@ -5,6 +5,7 @@
 #include "server/api/documents.h"
 #include "server/api/route_guard.h"
 #include "server/base/time_text.h"
+#include "server/live/stored_health.h"
 
 namespace hearthfront::server {
 namespace {
@@ -42,39 +43,11 @@ Response Api::furnace(const Request& request) {
   return {200, "application/json", furnace_json(state_of(find_furnace(request)), parts_.clock.now_us()), {}};
 }
 
-namespace {
-
-std::vector<Sample> recent_samples(storage::Reader& reader, std::int64_t channel, std::int64_t now_us) {
-  std::vector<Sample> samples;
-  for (const storage::Reading& reading : reader.accepted(channel, now_us - health_window_us, now_us))
-    samples.push_back({reading.time_us, reading.value});
-  return samples;
-}
-
-// Furnace and load thermocouple of one chamber stand beside each other.
-const Channel* partner_of(const Furnace& furnace, const Channel& channel) {
-  if (channel.role != Role::load_temperature) return nullptr;
-  for (const Channel& other : furnace.channels)
-    if (other.role == Role::temperature && other.chamber == channel.chamber) return &other;
-  return nullptr;
-}
-
-}  // namespace
-
 ChannelHealth Api::health_of(const Furnace& furnace, const Channel& channel, storage::Reader& reader) const {
-  const std::int64_t now = parts_.clock.now_us();
-  const std::int64_t id = parts_.acceptor.channel_id(furnace.id, channel.name).value();
-  std::vector<TimeSpan> marks;
-  for (const storage::MaskRow& mask : reader.masks(id, now - health_window_us, now))
-    if (!mask.withdrawn) marks.push_back({mask.from_us, mask.to_us});
-  std::optional<Partner> partner;
-  if (const Channel* other = partner_of(furnace, channel)) {
-    partner =
-        Partner{other->name,
-                recent_samples(reader, parts_.acceptor.channel_id(furnace.id, other->name).value(), now)};
-    for (Sample& sample : partner->samples) sample.value = convert(sample.value, other->unit, channel.unit);
-  }
-  return judge(channel, recent_samples(reader, id, now), marks, partner, now);
+  const auto id = [this](const std::string& furnace_id, const std::string& name) {
+    return parts_.acceptor.channel_id(furnace_id, name).value();
+  };
+  return stored_health(furnace, channel, id, reader, parts_.clock.now_us());
 }
 
 FurnaceState Api::state_of(const Furnace& furnace) {

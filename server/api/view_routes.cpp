@@ -83,8 +83,10 @@ Response Api::snapshot(const Request& request) {
   const auto view = view_of(found);
   auto reader = readers_.take();
   const auto notes = reader->notes(found.row.id);
-  const std::string etag = "\"" + view_tag(*view) + "-" + std::to_string(notes.size()) + "\"";
-  return with_etag(request, etag, snapshot_json(*view, notes));
+  const auto alerts = parts_.alerts.list();
+  const std::string etag = "\"" + view_tag(*view) + "-" + std::to_string(notes.size()) + "-" +
+                           std::to_string(alerts->sequence) + "\"";
+  return with_etag(request, etag, snapshot_json(*view, notes, *alerts));
 }
 
 Response Api::result(const Request& request) {

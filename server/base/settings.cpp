@@ -36,6 +36,14 @@ void each_option(AnySettings& s, Visitor&& visit) {
   visit("outlook", "inside_from", s.outlook.inside_from, 0.5, 0.99);
   visit("outlook", "missed_from", s.outlook.missed_from, 0.5, 0.99);
   visit("outlook", "asked_chance", s.outlook.asked_chance, 0.5, 0.99);
+  visit("alerts", "chance_drop", s.alerts.chance_drop, 0.05, 0.9);
+  visit("alerts", "hold_min", s.alerts.hold_min, 0, 120);
+  visit("alerts", "clear_hold_min", s.alerts.clear_hold_min, 0, 240);
+  visit("alerts", "cooling_min", s.alerts.cooling_min, 0, 1440);
+  visit("alerts", "segment_due_lead_min", s.alerts.segment_due_lead_min, 0, 240);
+  visit("alerts", "off_temperature_k", s.alerts.off_temperature_k, 1, 200);
+  visit("alerts", "off_carbon_potential_wt_pct", s.alerts.off_carbon_potential_wt_pct, 0.01, 1);
+  visit("alerts", "least_free_mb", s.alerts.least_free_mb, 1, 1'000'000);
   visit("log", "level", s.log.level, 1, 10);
   visit("clock", "speed", s.clock.speed, 0.1, 3600);
   visit("clock", "anchor_real", s.clock.anchor_real_us, 0, 40);

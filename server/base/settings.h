@@ -53,6 +53,17 @@ struct Settings {
     double asked_chance = 0.9;  // that a proposal has to reach for all windows of a load together
   } outlook;
 
+  struct Alerts {
+    double chance_drop = 0.25;   // joint chance this far below what the recipe offered is a projected miss
+    double hold_min = 5;         // data time: a condition lasts so long before it is told
+    double clear_hold_min = 10;  // data time: it has been gone for so long before its alert is past
+    double cooling_min = 60;     // clock: one that comes back within it is the same alert
+    double segment_due_lead_min = 10;           // a segment's end is told so long before
+    double off_temperature_k = 10;              // steady part of shown minus set; common practice, no source
+    double off_carbon_potential_wt_pct = 0.08;  // likewise
+    double least_free_mb = 500;                 // on the database's disk; months of readings of a plant
+  } alerts;
+
   struct Log {
     std::string level = "info";  // debug, info, warn, error
   } log;

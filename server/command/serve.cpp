@@ -2,6 +2,7 @@
 #include <atomic>
 #include <cstdio>
 
+#include "server/alerts/alert_keeper.h"
 #include "server/api/api.h"
 #include "server/base/json_fields.h"
 #include "server/base/log.h"
@@ -55,9 +56,21 @@ int serve(const Settings& settings, const Plant& plant) {
   std::atomic<ServiceState> state{ServiceState::starting};
   HttpServer http(limits_from(settings));
   Engine* running = nullptr;
-  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, state, [&running] {
+  // Nobody is told beyond the screens until there are targets.
+  AlertKeeper alerts({settings, plant, *clock, store, board,
+                      [](const storage::AlertRow&, std::string_view) { return std::vector<Route>{}; },
+                      [&](const std::string& furnace, const std::string& channel) {
+                        return acceptor.channel_id(furnace, channel).value_or(-1);
+                      },
+                      [&running] { return running && running->caught_up(); },
+                      [&http, &board](std::uint64_t sequence, bool) {
+                        http.publish("alerts", Json{{"sequence", sequence}}.dump(), board.sequence());
+                      }});
+  Api api({settings, plant, *clock, store, board, acceptor, metrics, http, state,
+           [&running] {
              if (running) running->loads_changed();
-           }});
+            },
+            alerts});
   Engine engine({plant,
                  *clock,
                  store,
@@ -68,7 +81,10 @@ int serve(const Settings& settings, const Plant& plant) {
                  [&](const std::string& furnace, const std::string& channel) {
                    return acceptor.channel_id(furnace, channel).value_or(-1);
                  },
-                 [&](const std::vector<std::int64_t>& loads) { broadcast(http, api, board, loads); }});
+                 [&](const std::vector<std::int64_t>& loads) {
+                   alerts.wake();
+                   broadcast(http, api, board, loads);
+                 }});
   running = &engine;
   store.on_change([&engine] { engine.wake(); });
 
@@ -78,6 +94,7 @@ int serve(const Settings& settings, const Plant& plant) {
   http.on_error([](std::string_view what) { log_error("request failed", {{"what", what}}); });
   const int port = http.start(settings.listen.address, settings.listen.port);
   engine.start();
+  alerts.start();  // after the engine: it judges nothing before every open load has a view
   log_info("hearthfront serves", {{"version", version},
                                   {"address", settings.listen.address},
                                   {"port", port},
@@ -113,6 +130,7 @@ int serve(const Settings& settings, const Plant& plant) {
   notifier.stopping("stopping");
   log_info("stopping");
   http.stop();    // no new work; running requests get their answer
+  alerts.stop();  // before engine and store: it looks at the one and writes to the other
   engine.stop();  // before the store: it reads and saves results
   store.close();  // last: stores what is queued, checkpoints
   log_info("stopped");

@@ -107,8 +107,13 @@ std::vector<Segment> with_plan(std::vector<Segment> rest, const std::vector<solv
     rest[i].carbon_potential_wt_pct = std::round(plan[i].carbon_potential_wt_pct * 100) / 100;
     rest[i].ramp_min = std::min(rest[i].ramp_min, rest[i].duration_min);
   }
-  if (rest.size() > 1)
-    std::erase_if(rest, [](const Segment& segment) { return segment.duration_min < least_segment_min; });
+  // To end at once is a plan too: its last segment then lasts a minute.
+  const Segment last = rest.back();
+  std::erase_if(rest, [](const Segment& segment) { return segment.duration_min < least_segment_min; });
+  if (rest.empty()) {
+    rest.push_back(last);
+    rest.back().duration_min = least_segment_min;
+  }
   return rest;
 }
 

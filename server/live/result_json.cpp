@@ -223,14 +223,14 @@ std::string result_table(const RunResult& result) {
     for (std::size_t i = 0; i < result.items.size(); ++i) {
       const solver::ItemOutlook& members = result.members->items[i];
       std::snprintf(line, sizeof line,
-                    "  %-14.14s finished depth %.2f to %.2f mm in 90 of 100 cases; in its window: %.0f %%\n",
+                    "\n  %s: finished depth %.2f to %.2f mm, 9 times in 10; chance of its window %.0f %%",
                     load.items[i].name.c_str(), members.case_depth_m.low * 1e3,
                     members.case_depth_m.high * 1e3, members.case_depth.inside * 100);
       out += line;
     }
   else
-    out += "  Band not computed.\n";
-  out += "\n  A prediction releases nothing: measure a coupon or a part.\n";
+    out += "\n  Band not computed.";
+  out += "\n\n  A prediction releases nothing: measure a coupon or a part.\n";
   for (const NoteSpan& note : result.notes)
     out += "  " + format_time(note.from_us) + " to " + format_time(note.to_us) + ", item " + note.item +
            ": " + note_sentence(note.note) + "\n";

@@ -56,7 +56,8 @@ TEST_CASE("the API description and the routes are the same list") {
     Metrics metrics;
     HttpServer http{HttpLimits{}};
     const std::atomic<ServiceState> state{ServiceState::ready};
-    Api api({settings, plant, clock, store, board, acceptor, metrics, http, state, [] {}});
+    AlertKeeper alerts({settings, plant, clock, store, board, {}, {}, [] { return false; }, {}});
+    Api api({settings, plant, clock, store, board, acceptor, metrics, http, state, [] {}, alerts});
     api.add_routes();
 
     Routes served;

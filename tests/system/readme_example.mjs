@@ -32,7 +32,9 @@ await check('the result document has the members the README names', () => {
   for (const member of ['case_depth_mm', 'surface_carbon_wt_pct', 'total_depth_mm', 'depth_at_0p35_mm', 'depth_at_0p40_mm',
     'turnover_depth_mm', 'carbon_uptake_g_m2', 'balance_residual_relative', 'profile'])
     expect(member in result.items[0], `no items[].${member}`);
-  expect(result.band === 'band not computed', result.band);
+  expect(result.band === '5 to 95 %', result.band);
+  const band = result.items[0].case_depth_band_mm;
+  expect(band.low < band.median && band.median < band.high, JSON.stringify(band));
   expect(Math.abs(result.items[0].balance_residual_relative) < 1e-12, 'carbon is not conserved');
 });
 
