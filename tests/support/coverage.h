@@ -74,7 +74,7 @@ class Tally {
   Missing outside_99() const;
 
  private:
-  std::size_t look_, loads_ = 0, covered_ = 0, below_ = 0;
+  std::size_t look_, loads_ = 0, covered_ = 0;
   double width_pct_ = 0;
   std::array<std::size_t, 10> histogram_{};
   std::array<std::array<Decile, 10>, 3> deciles_{};

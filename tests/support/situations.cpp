@@ -111,12 +111,12 @@ std::vector<Situation> ten_situations() {
   s.items[0].high_share = 0.85;
   s.items[1].low_share = 1.0;
   s.items[1].high_share = 1.2;
-  s.can_be_saved = false;
+  s.end = solver::SearchEnd::conflict;
   all.push_back(s);
 
   s = in_boost("window already passed");
   s.past[1].duration_s = 9 * hour;
-  s.can_be_saved = false;
+  s.end = solver::SearchEnd::window_passed;
   all.push_back(s);
 
   s = in_boost("soot limit binds: rich surface asked of a cool furnace");
@@ -126,7 +126,7 @@ std::vector<Situation> ten_situations() {
   s.items[0].surface_window_wt_pct = solver::Window{1.06, 1.25};
   s.rest = {{8400, 870, 0.90, 0, {}}, {5400, 870, 0.90, 0, {}}};
   s.freedom[1].carbon_potential = true;
-  s.can_be_saved = false;
+  s.end = solver::SearchEnd::ceiling;
   all.push_back(s);
 
   s = in_boost("two items of different shape");
