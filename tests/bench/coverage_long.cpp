@@ -2,7 +2,7 @@
 // where they are not as honest as claimed. Never part of the tests (tests/outlook has the short form).
 //   coverage_long [priors|wrong|split] [loads a seed]
 //     priors   truth drawn from the priors: 90 +/- 2 % in the band, chances come true (2000)
-//     wrong    another diffusivity, drift, noise, gaps, an operator who departs: at least 80 % (400)
+//     wrong    another diffusivity, drift, noise, gaps, an operator who departs: at least 80 % (1000)
 //     split    the same, each ingredient alone and all but each, first seed (400)
 #include <cmath>
 #include <cstdio>
@@ -111,7 +111,7 @@ int main(int argc, char** argv) {
   };
   bool fine = true;
   if (!*what || !std::strcmp(what, "priors")) fine = priors_hold(loads(2000)) && fine;
-  if (!*what || !std::strcmp(what, "wrong")) fine = wrong_holds(loads(400)) && fine;
+  if (!*what || !std::strcmp(what, "wrong")) fine = wrong_holds(loads(1000)) && fine;
   if (!std::strcmp(what, "split")) split(loads(400));
   return fine ? 0 : 1;
 }
