@@ -50,6 +50,12 @@ double film_share(double age_s, double length_s, double constant_s) {
   return 1.0 + constant_s / length_s * std::exp(-age_s / constant_s) * std::expm1(-length_s / constant_s);
 }
 
+// Share of the flux that a member too cold by so many kelvins takes up: with a rise at once to all of it, its
+// start would be a jump again.
+double cold_pace(double too_cold_k) {
+  return std::max(0.5, 1.0 - too_cold_k / 60.0);
+}
+
 void check_profile(const Profile& profile, const Mesh& mesh) {
   const auto& x = profile.depth_m;
   const auto& c = profile.carbon_wt_pct;
@@ -102,6 +108,7 @@ GasCarburizing::State GasCarburizing::start_from(double charge_temperature_degc,
   State state{CarbonField(mesh_, lanes(), part_.core_carbon_wt_pct),
               std::vector<double>(lanes(), charge_temperature_degc),
               std::vector<LaneConditions>(lanes()),
+              std::vector<double>(lanes()),
               {}};
   for (std::size_t lane = 0; lane < lanes(); ++lane) {
     for (std::size_t i = 0; i < mesh_->nodes(); ++i)
@@ -150,6 +157,19 @@ double GasCarburizing::lane_beta_m_per_s(const State& state, const IntervalInput
   return film_s > 0.0 ? beta * film_share(state.film_age_s, inputs.duration_s, film_s) : beta;
 }
 
+// How fast time passes in a member. Were one that lags behind the nominal part to start later by itself, that
+// would be a jump which no step was made small for; one that is ahead has to wait for it. So all start
+// together: a member that is still too cold slowly, one that is owed time as austenite at twice the pace
+// until it has it.
+double GasCarburizing::member_pace(State& state, const IntervalInputs& inputs, std::size_t lane,
+                                   double part_degc) const {
+  if (lane == 0) return 1.0;
+  if (part_degc <= austenite_from_degc_) return cold_pace(austenite_from_degc_ - part_degc);
+  const double paid = std::min(state.owed_s[lane], inputs.duration_s);
+  state.owed_s[lane] -= paid;
+  return 1.0 + paid / inputs.duration_s;
+}
+
 // Fills state.conditions for every lane; returns the notes of the nominal lane.
 std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs& inputs,
                                              std::span<const double> part_degc) const {
@@ -158,8 +178,10 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
     const Member& member = members_[lane];
     const double t_k = kelvin(part_degc[lane]);
     LaneConditions& c = state.conditions[lane];
-    c.diffusivity = diffusivity_form(part_.law, t_k, diffusivity_factor_ * member.diffusivity_scale,
-                                     part_.constant_diffusivity_m2_s);
+    const double pace = member_pace(state, inputs, lane, part_degc[lane]);
+    c.diffusivity =
+        diffusivity_form(part_.law, t_k, std::max(1.0, pace) * diffusivity_factor_ * member.diffusivity_scale,
+                         part_.constant_diffusivity_m2_s);
     if (lane == 0) {
       const TemperatureRange range = diffusivity_range(part_.law);
       if (t_k < range.low_k || t_k > range.high_k) notes |= note_outside_diffusivity_range;
@@ -170,13 +192,12 @@ std::uint32_t GasCarburizing::set_conditions(State& state, const IntervalInputs&
     }
     const double potential =
         std::max(0.0, inputs.carbon_potential_wt_pct + carbon_potential_error_wt_pct(member, inputs.doubt));
-    // A member that lags behind the nominal part moves with it, slowly: were it to start later by itself,
-    // that would be a jump which no step was made small for. Below the austenite range the limit has no
-    // meaning.
+    // Below the austenite range the limit has no meaning.
     const double limit = cementite_limit_wt_pct(std::max(t_k, kelvin(austenite_from_degc_)));
     const double equilibrium = potential / alloy_factor_;
     c.surface.equilibrium_wt_pct = std::min(equilibrium, limit);
-    c.surface.resistance_s_per_m = 1.0 / (lane_beta_m_per_s(state, inputs, member, t_k) * alloy_factor_);
+    c.surface.resistance_s_per_m =
+        1.0 / (pace * lane_beta_m_per_s(state, inputs, member, t_k) * alloy_factor_);
     c.surface.forced_wt_pct_m_per_s = 0.0;
     if (lane == 0) {
       if (equilibrium > limit) notes |= note_capped_at_carbide_limit;
@@ -224,6 +245,8 @@ Outcome GasCarburizing::advance(State& state, const IntervalInputs& inputs, Work
 
   if (!(ws.part_mean_degc_[0] > austenite_from_degc_)) {
     state.moving = false;
+    for (std::size_t lane = 1; lane < lanes(); ++lane)
+      if (inputs.gas && ws.part_mean_degc_[lane] > austenite_from_degc_) state.owed_s[lane] += dt;
     for (LaneConditions& c : state.conditions) {
       c.surface = {0.0, std::numeric_limits<double>::infinity(), 0.0};
     }

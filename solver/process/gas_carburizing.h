@@ -108,6 +108,7 @@ class GasCarburizing {
     CarbonField field;
     std::vector<double> part_temperature_degc;  // each lane, at the end of the last interval
     std::vector<LaneConditions> conditions;     // each lane, of the last interval
+    std::vector<double> owed_s;                 // each lane: as austenite while the nominal one was not
     std::vector<double> initial_wt_pct_m;       // inventory at the start
     double settled_s = 0;                       // since the last jump of the inputs
     double last_carbon_potential_wt_pct = 0, last_part_temperature_degc = 0;
@@ -159,6 +160,7 @@ class GasCarburizing {
   State start_from(double charge_temperature_degc, CarbonAtNode carbon_at) const;
   double lane_beta_m_per_s(const State& state, const IntervalInputs& inputs, const Member& member,
                            double temperature_k) const;
+  double member_pace(State& state, const IntervalInputs& inputs, std::size_t lane, double part_degc) const;
   std::uint32_t set_conditions(State& state, const IntervalInputs& inputs,
                                std::span<const double> part_degc) const;
   bool note_jump(State& state, const IntervalInputs& inputs, double part_degc) const;
