@@ -21,6 +21,7 @@ class FurnacePath {
     double temperature_degc = 0, carbon_potential_wt_pct = 0;
   };
   Shown advance(std::size_t segment, double elapsed_s, double duration_s);
+  double shown_degc() const { return followed_degc_ + furnace_.offset_k; }  // at this moment
 
  private:
   Shown set_points(std::size_t segment, double elapsed_s) const;

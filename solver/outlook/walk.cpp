@@ -1,6 +1,7 @@
 #include "solver/outlook/walk.h"
 
 #include <algorithm>
+#include <cmath>
 
 #include "solver/outlook/members.h"
 
@@ -8,6 +9,7 @@ namespace hearthfront::solver {
 namespace {
 
 constexpr double watchful_step_s = 120;  // while what ends a segment may happen at any moment
+constexpr double trails_k = 10;          // a part so far behind its furnace is still changing quickly
 
 }  // namespace
 
@@ -41,7 +43,10 @@ void Walk::bind() {
 
 double Walk::step(std::size_t segment, double elapsed_s, double most_s) {
   double longest = longest_step_s_;
-  if ((*plan_)[segment].until) longest = std::min(longest, watchful_step_s);
+  const bool trails = std::any_of(states_.begin(), states_.end(), [&](const GasCarburizing::State& state) {
+    return std::fabs(state.part_temperature_degc[0] - path_.shown_degc()) > trails_k;
+  });
+  if (trails || (*plan_)[segment].until) longest = std::min(longest, watchful_step_s);
   const double duration = std::min(most_s, path_.step_s(segment, elapsed_s, longest));
   const auto shown = path_.advance(segment, elapsed_s, duration);
   inputs_.duration_s = duration;

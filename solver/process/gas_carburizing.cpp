@@ -135,6 +135,7 @@ GasCarburizing::State GasCarburizing::lane_alone(const State& state, std::size_t
   alone.field.crossed_wt_pct_m = {state.field.crossed_wt_pct_m[lane]};
   alone.part_temperature_degc = {state.part_temperature_degc[lane]};
   alone.conditions = {state.conditions[lane]};
+  alone.owed_s = {state.owed_s[lane]};
   alone.initial_wt_pct_m = {state.initial_wt_pct_m[lane]};
   return alone;
 }
