@@ -17,16 +17,17 @@ export function AlertLine({ alert, age = true }: { alert: AlertSummary; age?: bo
   const feed = useStore(live);
   return <p class={`alert-line ${alert.acknowledged || alert.shelved ? 'answered' : ''}`} data-testid="alert-line" data-alert={alert.id}>
     <SeverityTag alert={alert} />
-    <span class="alert-said"><b>{withUnits(alert.sentence, units)}</b> {alert.advice && withUnits(alert.advice, units)}
+    <span class="alert-said"><b>{withUnits(alert.sentence, units)}</b> {alert.advice && !alert.acknowledged && !alert.shelved && withUnits(alert.advice, units)}
       <small>{age && ` for ${sinceAge(alert.since, daemonNowMs(feed))}`}{alert.shelved ? ' · shelved' : alert.acknowledged ? ' · acknowledged' : ''}</small></span>
   </p>;
 }
 
+// What is shelved keeps out of the way; it stands on the alerts page.
 export function AlertLines({ alerts }: { alerts: readonly AlertSummary[] | null | undefined }) {
-  if (!alerts || alerts.length === 0) return null;
-  const [first, ...rest] = [...alerts].sort(worstFirst);
+  const [first, ...rest] = (alerts ?? []).filter((each) => !each.shelved).sort(worstFirst);
+  if (!first) return null;
   return <div class="alert-lines">
-    <AlertLine alert={first!} />
+    <AlertLine alert={first} />
     {rest.length > 0 && <p class="alert-more">{rest.map((each) => <span key={each.id}><Shape name={severityShape(each.severity)} /> {each.severity}: {each.kind}</span>)}</p>}
   </div>;
 }

@@ -53,7 +53,7 @@ const deliveryShape: Record<Delivery['state'], MarkShape> = { waiting: 'waiting'
 function Deliveries({ delivery }: { delivery: Alert['delivery'] }) {
   const said = (['stuck', 'waiting', 'delivered'] as const).filter((state) => delivery[state] > 0);
   if (said.length === 0) return <span data-testid="delivery">no message asked for</span>;
-  return <>{said.map((state) => <span key={state} class={state} data-testid="delivery"><Shape name={deliveryShape[state]} /> {delivery[state]} {state}</span>)}</>;
+  return <>{said.map((state) => <span key={state} class={`is-${state}`} data-testid="delivery"><Shape name={deliveryShape[state]} /> {delivery[state]} {state}</span>)}</>;
 }
 
 function More({ alert }: { alert: Alert }) {
@@ -74,7 +74,7 @@ function More({ alert }: { alert: Alert }) {
     {problem && <p class="said">{problem}</p>}
     {record && <div class="alert-record">
       <div><h3>Events</h3><ol class="list">{record.events.map((each, i) => <li key={i}><p><b>{each.what}</b>{each.person && ` by ${each.person}`}, {at(each.at)}{each.text && <><br />{withUnits(each.text, units)}</>}</p></li>)}</ol></div>
-      <div><h3>Messages</h3>{record.deliveries.length === 0 ? <p class="nothing">None was asked for.</p> : <ul class="list">{record.deliveries.map((each) => <li key={each.key} class={each.state}><Shape name={deliveryShape[each.state]} /><p>
+      <div><h3>Messages</h3>{record.deliveries.length === 0 ? <p class="nothing">None was asked for.</p> : <ul class="list">{record.deliveries.map((each) => <li key={each.key} class={`is-${each.state}`}><Shape name={deliveryShape[each.state]} /><p>
         <b>{each.target}</b>: {each.state}, {each.event}{each.delivered_at ? `, ${at(each.delivered_at)}` : ''}<small> {each.attempts} {each.attempts === 1 ? 'attempt' : 'attempts'}{each.next_try && each.state === 'waiting' ? `, next ${at(each.next_try)}` : ''}</small>
         {each.error && <><br /><span class="error">{each.error}</span></>}</p></li>)}</ul>}</div>
     </div>}

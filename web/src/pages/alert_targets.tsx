@@ -39,8 +39,8 @@ function TargetRow({ target, again }: { target: Target; again: () => void }) {
       <p>{target.routes}</p>
       <p class="alert-facts">
         <span>{target.last_delivered_at ? `last arrived ${at(target.last_delivered_at)}` : 'nothing has arrived yet'}</span>
-        {target.waiting > 0 && <span class="waiting-one"><Shape name="waiting" /> {target.waiting} waiting</span>}
-        {target.stuck > 0 && <span class="stuck"><Shape name="not delivered" /> {target.stuck} stuck</span>}
+        {target.waiting > 0 && <span class="is-waiting"><Shape name="waiting" /> {target.waiting} waiting</span>}
+        {target.stuck > 0 && <span class="is-stuck"><Shape name="not delivered" /> {target.stuck} stuck</span>}
       </p>
       {target.last_error && (target.stuck > 0 || target.waiting > 0) && <p class="error">{target.last_error}</p>}
       {said && <p class={said.good ? 'hint' : 'said'} role="status" data-testid="target-said"><Shape name={said.good ? 'delivered' : 'not delivered'} /> {said.text}</p>}

@@ -60,7 +60,6 @@ export function CardBody({ furnace, load, band, heading, alerts = load.alerts ??
       {item?.outlook && <StandingMark standing={item.outlook.standing} chance={item.outlook.joint_chance} />}
       <Times load={load} />
       {marks.length > 0 && <div class="marks">{marks.map((mark) => <MarkRow key={mark.shape} mark={mark} />)}</div>}
-      <AlertLines alerts={alerts} />
     </div>
     <div class="depth">
       {old && <p class="then" data-testid="then"><span>old: {clockText(feed.received.wallMs, true)}</span></p>}
@@ -76,6 +75,7 @@ export function CardBody({ furnace, load, band, heading, alerts = load.alerts ??
     <div class="picture">
       {item?.strip && <Strip item={stripOf(item, item.strip, item.outlook?.case_depth_mm)} unit={length} metalPx={76} fontPx={17} guessed={anyGuess(load.inputs) || old} labels="few" />}
     </div>
+    <AlertLines alerts={alerts} />
   </div>;
 }
 

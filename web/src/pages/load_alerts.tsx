@@ -1,7 +1,6 @@
 // The alerts of one load, each with the way to answer it.
 import { worstFirst } from '../alert_words.ts';
 import type { AlertSummary } from '../contract_alerts.ts';
-import { alertsLink } from '../routes.ts';
 import { Acknowledge } from './alert_acts.tsx';
 import { AlertLine } from './alert_line.tsx';
 
@@ -10,6 +9,5 @@ export function LoadAlerts({ alerts, again }: { alerts: readonly AlertSummary[] 
   return <section class="panel load-alerts" aria-label="Alerts of this load" data-testid="load-alerts">
     {[...alerts].sort(worstFirst).map((each) => <div class="load-alert" key={each.id}>
       <AlertLine alert={each} />{!each.acknowledged && !each.shelved && <Acknowledge alert={each} again={again} />}</div>)}
-    <a class="to-alerts" href={alertsLink()}>All alerts</a>
   </section>;
 }
