@@ -61,7 +61,7 @@ export const withTemperatures = (text: string, shown: TemperatureUnit): string =
 export const withDepths = (text: string, shown: LengthUnit): string => (shown === 'mm' ? text
   : text.replace(/(\d+\.\d+)( to | – )?(\d+\.\d+)? mm\b/g, (whole, first: string, between?: string, second?: string) =>
     (between && second ? `${depthNumber(Number(first), shown)}${between}${depthText(Number(second), shown)}` : between || second ? whole : depthText(Number(first), shown))));
-export const withUnits = (text: string, { length, temperature }: { length: LengthUnit; temperature: TemperatureUnit }): string => withDepths(withTemperatures(text, temperature), length);
+export const withUnits = (text: string, { length, temperature }: { length: LengthUnit; temperature: TemperatureUnit }): string => withDepths(withTemperatures(text, temperature), length).replaceAll(' -> ', ' → ');
 export const capital = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
 
 // What a person types: decimal comma or point, blanks around. null when it is no number.

@@ -24,7 +24,7 @@ export function Compared({ snapshot, present, other, otherName, item }: Props) {
         <tr class="strong"><th scope="row">{several ? 'all items inside' : 'all windows'}</th><td>{percentText(present.joint_chance)}</td><td data-testid="compared-chance">{percentText(other.joint_chance)}</td></tr>
         <tr><th scope="row">end</th><td>{endsText(present.minutes_left)}</td><td>{moreMinutesText(minutes)}</td></tr>
         {present.items.map((each) => { const there = otherOf(each.name); return [
-          <tr key={`${each.name}s`}><th scope="row">{several ? partOf(each.name) : 'standing'}</th><td><Shape name={each.standing} /> {standingLine(each)}</td><td>{there && <><Shape name={there.standing} /> {standingLine(there)}</>}</td></tr>,
+          <tr key={`${each.name}s`} class="of-item"><th scope="row">{several ? partOf(each.name) : 'standing'}</th><td><Shape name={each.standing} /> {standingLine(each)}</td><td>{there && <><Shape name={there.standing} /> {standingLine(there)}</>}</td></tr>,
           <tr key={`${each.name}d`}><th scope="row">case depth</th><td>{depthBandText(each.case_depth_mm, length)}</td><td>{there && depthBandText(there.case_depth_mm, length)}</td></tr>,
           <tr key={`${each.name}c`}><th scope="row">surface carbon</th><td>{carbonBandText(each.surface_carbon_wt_pct)}</td><td>{there && carbonBandText(there.surface_carbon_wt_pct)}</td></tr>,
         ]; })}

@@ -28,9 +28,10 @@ export function Ends({ window, rows, unit }: EndsProps) {
   const x = (mm: number) => 12 + (width - 24) * (mm - from + margin) / (to - from + 2 * margin);
   const text = rows.map((row) => `${row.name}: ${depthBand(row.band, unit)} ${lengthName(unit)}`).join('; ');
   return <div class="ends" ref={box} role="img" aria-label={`Case depth at the end. ${text}. Asked ${depthBand({ low: window[0], median: 0, high: window[1] }, unit)} ${lengthName(unit)}.`}>
-    {width > 60 && <svg width={width} height={rows.length * 52 + 8} font-size="16" aria-hidden="true">
+    {width > 60 && <svg width={width} height={rows.length * 52 + 30} font-size="16" aria-hidden="true">
       <defs><Hatch id={id} /></defs>
       <rect class="end-asked" x={x(window[0])} y="0" width={x(window[1]) - x(window[0])} height={rows.length * 52 + 8} />
+      <text class="end-asked-text" x={Math.min(Math.max((x(window[0]) + x(window[1])) / 2, 90), width - 90)} y={rows.length * 52 + 25} text-anchor="middle">asked {depthBand({ low: window[0], median: 0, high: window[1] }, unit)} {lengthName(unit)}</text>
       {rows.map((row, i) => <g key={row.name}>
         <text x="12" y={i * 52 + 18}>{row.name}: {depthBand(row.band, unit)} {lengthName(unit)}</text>
         <EndMark low={x(row.band.low)} median={x(row.band.median)} high={x(row.band.high)} y={i * 52 + 38} hatch={id} />

@@ -38,13 +38,18 @@ function stateWords(state: SoundState, sound: SoundPrefs): string {
 function Sound({ state, sound }: { state: SoundState; sound: SoundPrefs }) {
   const dialog = useRef<HTMLDialogElement>(null);
   const words = stateWords(state, sound);
+  // Any touch lets the page sound, so by the time of the click the state may be another than the one that was touched.
+  const touched = useRef<SoundState>(state);
+  const touch = () => { touched.current = state; };
   const press = () => {
-    if (state === 'blocked') void unlock().then(() => play('warning'));
+    const was = touched.current;
+    touched.current = 'quiet';
+    if (state === 'blocked' || was === 'blocked') void unlock().then(() => play('warning'));
     else dialog.current?.showModal();
   };
   return <>
     {state === 'sounding' && <button type="button" class="button" data-testid="silence" onClick={silence}><Shape name="silenced" />Silence 10 min</button>}
-    <button type="button" class={`sound ${state}`} data-testid="sound" data-state={state} onClick={press} aria-label={state === 'blocked' ? words : `${words}. Press to change.`}><Shape name={shapes[state]} />{words}</button>
+    <button type="button" class={`sound ${state}`} data-testid="sound" data-state={state} onPointerDown={touch} onKeyDown={touch} onClick={press} aria-label={state === 'blocked' ? words : `${words}. Press to change.`}><Shape name={shapes[state]} />{words}</button>
     <dialog ref={dialog} class="ask" aria-labelledby="sound-title"><div class="stack">
       <h2 id="sound-title">Sound of this screen</h2>
       <div class="pick" role="group" aria-label="What sounds here">
@@ -72,5 +77,5 @@ export function AlertBadge() {
   const { floor } = useStore(live);
   const counts = floor?.alerts;
   if (!counts || counts.unacknowledged === 0 || !counts.worst) return null;
-  return <span class="badge" aria-label={`${counts.unacknowledged} not acknowledged`}><Shape name={severityShape(counts.worst)} />{counts.unacknowledged}</span>;
+  return <span class="badge"><Shape name={severityShape(counts.worst)} />{counts.unacknowledged}<span class="aside"> not acknowledged</span></span>;
 }
