@@ -23,6 +23,12 @@ export function alertsOnFloor(floor: Floor | null): AlertSummary[] {
   return [...found.values()].sort(worstFirst);
 }
 
+// The worst of what nobody has answered; of all that is active where everything is answered.
+export function worstOf(floor: Floor | null): Severity | null {
+  const open = alertsOnFloor(floor).filter((each) => !each.acknowledged && !each.shelved);
+  return open[0]?.severity ?? floor?.alerts?.worst ?? null;
+}
+
 // The name under which an alert is silenced: one that became worse is another.
 export const silenceKey = (alert: AlertSummary): string => `${alert.id} ${alert.severity}`;
 

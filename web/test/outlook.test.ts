@@ -1,6 +1,6 @@
 import assert from 'node:assert/strict';
 import { test } from 'node:test';
-import { alertsOnFloor, calling, countWords, heard, silenceKey } from '../src/alert_words.ts';
+import { alertsOnFloor, calling, countWords, heard, silenceKey, worstOf } from '../src/alert_words.ts';
 import type { Floor, History } from '../src/contract.ts';
 import type { AlertSummary } from '../src/contract_alerts.ts';
 import type { Outlook, OutlookItem } from '../src/contract_outlook.ts';
@@ -128,6 +128,8 @@ test('the Floor’s alerts are found everywhere, once, worst first; an older Flo
   const floor = { alerts: { plant: [alert(5, 'warning', { shelved: true })] }, furnaces: [{ alerts: [alert(2, 'note')], loads: [{ alerts: [alert(3, 'urgent'), alert(2, 'note')] }] }] } as unknown as Floor;
   assert.deepEqual(alertsOnFloor(floor).map((each) => each.id), [3, 2, 5]);
   assert.deepEqual(alertsOnFloor({ furnaces: [{ loads: [{}] }] } as unknown as Floor), []);
+  assert.equal(worstOf(floor), 'urgent');
+  assert.equal(worstOf({ alerts: { active: 2, unacknowledged: 1, worst: 'urgent', newest_id: 2, plant: [alert(1, 'urgent', { acknowledged: true }), alert(2, 'warning')] }, furnaces: [] } as unknown as Floor), 'warning', 'an answered one does not call');
   assert.equal(countWords(3, 2), '3 alerts, 2 not acknowledged');
   assert.equal(countWords(0, 0), 'no alert');
 });

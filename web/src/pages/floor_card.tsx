@@ -66,9 +66,9 @@ export function CardBody({ furnace, load, band, heading, alerts = load.alerts ??
       <p class="figure"><span data-testid="depth">{item ? depthNumber(depth, length) : '–'}</span>{depth !== null && <small>{lengthName(length)}</small>}</p>
       <div class="said-of">
         {item && <p class="asked-line">asked <b>{rangeText(item.case_depth_window_mm, length)}</b></p>}
+        {item?.outlook && <p class="ahead-line">at the end <b>{depthBand(item.outlook.case_depth_mm, length)}</b></p>}
         {item && <p class="reach">{reachText(item, length)}</p>}
         <p class="age" data-testid="data-age">{dataAgeS === null ? 'no reading yet' : `data ${ageText(dataAgeS)} old`}</p>
-        {item?.outlook && <p class="ahead-line">at the end <b>{depthBand(item.outlook.case_depth_mm, length)}</b></p>}
         <p class="band" data-testid="band">{item?.case_depth_band_mm && 'now '}{nowBandText(item?.case_depth_band_mm, band, length)}{item?.grinding_stock_mm ? ', after grinding' : ''}</p>
       </div>
     </div>

@@ -113,11 +113,11 @@ function Present({ view, snapshot, item, old, speed }: PresentProps) {
         <p class="big"><span data-testid="depth">{depthNumber(judgedDepthMm(item), length)}</span>{judgedDepthMm(item) !== null && <small>{lengthName(length)}</small>}</p>
         {ahead && <StandingMark standing={ahead.standing} chance={ahead.joint_chance} />}
         <p class="asked-line">asked <b>{windowText(item.case_depth_window_mm, length)}</b></p>
+        {ahead && <p class="ahead-line">at the end <b>{depthBand(ahead.case_depth_mm, length)}</b> {lengthName(length)}</p>}
         <p class="reach">{reachText(item, length, !open)}</p>
         {!!item.grinding_stock_mm && <p class="band">finished: {depthText(item.grinding_stock_mm, length)} ground off {depthText(item.case_depth_mm, length)}</p>}
         {open && snapshot.segment && <p class="asked-line now-line"><b>{snapshot.segment.name}</b>: {snapshot.segment.minutes_left >= 0 ? `${minutesText(snapshot.segment.minutes_left)} left` : `${minutesText(-snapshot.segment.minutes_left)} over`}</p>}
         <p class="age" data-testid="data-age">{open ? (ageS === null ? 'no reading yet' : `data ${ageText(ageS)} old`) : snapshot.load.state === 'cancelled' ? 'cancelled: not a result' : 'final'}</p>
-        {ahead && <p class="ahead-line">at the end <b>{depthBand(ahead.case_depth_mm, length)}</b> {lengthName(length)}</p>}
         <p class="band">{item.case_depth_band_mm ? 'now ' : ''}{nowBandText(item.case_depth_band_mm, snapshot.band, length)}{item.case_depth_band_mm && `, ${snapshot.band}`}</p>
       </div>
       <div class="picture">

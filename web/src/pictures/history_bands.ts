@@ -1,7 +1,7 @@
 // The band of a curve over time, on canvas: a wash over what was, hatching over what is ahead, the diamond at its end.
 import type uPlot from 'uplot';
 import type { Bands } from './history_plots.tsx';
-import { type Palette, inside } from './plot.tsx';
+import type { Palette } from './plot.tsx';
 
 // Runs of points where both edges are known, as polygons; `from` to `to` of the list.
 function outline(plot: uPlot, ctx: CanvasRenderingContext2D, { time_s, low, high }: Bands, from: number, to: number): void {
@@ -22,6 +22,7 @@ export function drawBands(plot: uPlot, bands: Bands, colours: Palette): void {
   const { ctx, bbox } = plot;
   const ratio = devicePixelRatio;
   ctx.save();
+  ctx.setLineDash([]);
   ctx.globalAlpha = 0.28;
   ctx.fillStyle = colours.mid;
   outline(plot, ctx, bands, 0, bands.from);
@@ -42,15 +43,18 @@ export function drawBands(plot: uPlot, bands: Bands, colours: Palette): void {
 export function drawEnd(plot: uPlot, bands: Bands, colours: Palette): void {
   const last = bands.time_s.length - 1, median = bands.median[last];
   if (last < bands.from || typeof median !== 'number') return;
-  inside(plot, (ctx, ratio) => {
-    const x = plot.valToPos(bands.time_s[last]!, 'x', true) - 2 * ratio, y = plot.valToPos(median, 'y', true), half = 9 * ratio;
-    ctx.beginPath();
-    ctx.moveTo(x, y - half); ctx.lineTo(x + half * 0.75, y); ctx.lineTo(x, y + half); ctx.lineTo(x - half * 0.75, y);
-    ctx.closePath();
-    ctx.fillStyle = colours.card;
-    ctx.fill();
-    ctx.strokeStyle = colours.ink;
-    ctx.lineWidth = 2.5 * ratio;
-    ctx.stroke();
-  });
+  const { ctx } = plot;
+  const ratio = devicePixelRatio, half = 9 * ratio;
+  const x = plot.valToPos(bands.time_s[last]!, 'x', true), y = plot.valToPos(median, 'y', true);
+  ctx.save();  // not clipped: the end lies on the edge of the picture
+  ctx.setLineDash([]);
+  ctx.beginPath();
+  ctx.moveTo(x, y - half); ctx.lineTo(x + half * 0.75, y); ctx.lineTo(x, y + half); ctx.lineTo(x - half * 0.75, y);
+  ctx.closePath();
+  ctx.fillStyle = colours.card;
+  ctx.fill();
+  ctx.strokeStyle = colours.ink;
+  ctx.lineWidth = 2.5 * ratio;
+  ctx.stroke();
+  ctx.restore();
 }

@@ -1,7 +1,7 @@
 // How many alerts there are and whether this screen sounds. Stands in the Floor's and the alerts' heading; on other
 // pages only while somebody should come.
 import { useRef } from 'preact/hooks';
-import { countWords } from '../alert_words.ts';
+import { countWords, worstOf } from '../alert_words.ts';
 import { live, pulse } from '../live.ts';
 import type { MarkShape } from '../marks.ts';
 import { Shape, severityShape } from '../pictures/mark_shape.tsx';
@@ -18,11 +18,11 @@ export function Watch({ quiet = false }: { quiet?: boolean }) {
   const { sound } = useStore(prefs);
   const counts = floor?.alerts;
   if (!counts || (quiet && counts.unacknowledged === 0 && state !== 'sounding')) return null;
-  const worst = counts.worst;
+  const worst = worstOf(floor);
   const call = counts.unacknowledged > 0 && worst !== null;
   return <div class="watch" role="group" aria-label="Alerts and sound">
     <a class={`watch-count ${call ? `calls ${worst}` : ''}`} href={alertsLink()} data-testid="alert-count">
-      <Shape name={worst ? severityShape(worst) : 'all clear'} /><span>{worst && <b>{worst}</b>} {countWords(counts.active, counts.unacknowledged)}</span></a>
+      <Shape name={worst ? severityShape(worst) : 'all clear'} /><span>{call && <b>{worst}</b>} {countWords(counts.active, counts.unacknowledged)}</span></a>
     <Sound state={state} sound={sound} />
   </div>;
 }
@@ -76,6 +76,7 @@ function turn(change: { on: boolean; from?: 'warning' | 'urgent' }): void {
 export function AlertBadge() {
   const { floor } = useStore(live);
   const counts = floor?.alerts;
-  if (!counts || counts.unacknowledged === 0 || !counts.worst) return null;
-  return <span class="badge"><Shape name={severityShape(counts.worst)} />{counts.unacknowledged}<span class="aside"> not acknowledged</span></span>;
+  const worst = worstOf(floor);
+  if (!counts || counts.unacknowledged === 0 || !worst) return null;
+  return <span class="badge"><Shape name={severityShape(worst)} />{counts.unacknowledged}<span class="aside"> not acknowledged</span></span>;
 }
