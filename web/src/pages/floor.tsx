@@ -19,7 +19,7 @@ export function Floor() {
     : (furnace.chambers?.length ?? 1) > 1 ? <GroupCard key={furnace.id} furnace={furnace} band={floor.band} />
       : furnace.loads.map((load) => <FloorCard key={load.id} furnace={furnace} load={load} band={floor.band} />)));
   return <>
-    <div class="load-title"><h1 class="title">Floor <small>{count(floor.furnaces.length, 'furnace')}, {count(loads, 'load')} · worst first</small></h1><Watch /></div>
+    <div class="load-title"><h1 class="title">Floor <small>{count(floor.furnaces.length, 'furnace')}, {count(loads, 'load')} · worst first{/\d/.test(floor.band) && ` · bands ${floor.band}`}</small></h1><Watch /></div>
     <AlertLines alerts={floor.alerts?.plant} />
     <div class={`cards ${cards.length > 4 ? 'many' : ''}`}>{cards}</div>
     {idle.length > 0 && <div class="idles">{idle.map((furnace) => <Idle key={furnace.id} furnace={furnace} />)}</div>}
