@@ -56,7 +56,7 @@ async function look(size) {
   await page.locator('[data-testid="card"]').first().waitFor({ timeout: 60_000 });
   const now = (await api('floor')).furnaces.reduce((sum, furnace) => sum + (furnace.line ? Math.min(1, furnace.loads.length) : furnace.loads.length), 0);
   check(`${size.name}: a card or row for each open load that is not on a line, and one for each line`, await page.locator('[data-testid="card"]').count() === now, now);
-  check(`${size.name}: the words stand in the band's place`, (await page.locator('.card .band').first().textContent()).startsWith(floor.band));
+  check(`${size.name}: a band, or the words in its place`, /^(now \d.* – \d|band not computed)/.test(await page.locator('.card .band').first().textContent()), await page.locator('.card .band').first().textContent());
   const figure = await page.locator('.figure').first().evaluate((element) => parseFloat(getComputedStyle(element).fontSize));
   check(`${size.name}: the depth is at least 56 px high`, figure >= 56, figure);
   const marked = floor.demo || floor.clock_speed !== 1;

@@ -56,7 +56,7 @@ export function openingLoads(nowMs) {
     load(3, 'batch-2', '2294', 70, recipe(200, 80), [item('A', 'cam disc', '16MnCr5', [0.7, 0.9], 16)], 'planned'),
     load(4, 'pit-1', '2290', 455, recipe(240, 90), [item('A', 'planet gear', '20MnCr5', [0.9, 1.2], 30)], 'overdue'),
     load(5, 'ring-1', '2295', 4, recipe(120, 45), [item('A', 'small bevel gear', '20MnCr5', [0.5, 0.7], 14)], 'no data yet'),
-    load(6, 'batch-3', '2296', 150, recipe(240, 90), [item('A', 'planet gear', '20MnCr5', [0.9, 1.2], 30)], 'none'),
+    load(6, 'batch-3', '2296', 150, recipe(240, 90), [item('A', 'planet gear', '20MnCr5', [0.9, 1.2], 30)], 'miss'),
   ];
 }
 
@@ -69,7 +69,7 @@ export function segmentAt(load, nowMs) {
     const last = index === segments.length - 1;
     if (elapsed < begun + duration || last) {
       return { index, name, elapsed_min: elapsed - begun, minutes_left: begun + duration - elapsed, overdue: last && elapsed > begun + duration, started_at: new Date(nowMs - (elapsed - begun) * minute).toISOString().slice(0, 19) + 'Z',
-        by: load.trouble === 'none' ? 'readings' : segments[index].until ? 'model' : 'recipe time', long_by_min: Math.max(0, elapsed - begun - duration - 10),
+        by: load.trouble === 'none' || load.trouble === 'miss' ? 'readings' : segments[index].until ? 'model' : 'recipe time', long_by_min: Math.max(0, elapsed - begun - duration - 10),
         doubt: load.trouble === 'doubt' ? 'Unsure where the recipe is: the readings fit the end of boost and the start of diffuse alike. Recipe time decides.' : null };
     }
     begun += duration;

@@ -1,12 +1,15 @@
 // DEVELOPMENT ONLY: answers the routes of /api/v1 with the invented plant of mock_plant.mjs and serves
 // dist/, so that the dashboard can be worked on and photographed without the daemon. Loopback only.
-//   node dev/mock_server.mjs [--port 8090] [--speed 60] [--loads 35]
+//   node dev/mock_server.mjs [--port 8090] [--speed 60] [--loads 35] [--plain 1]     plain: as before there was an outlook
+//   POST /dev/alert   a new urgent alert;   POST /dev/revise?load=6   somebody else changes a load
 //   POST /dev/away?seconds=20   answers nothing for so long;   POST /dev/unready?seconds=20   answers 503
 import { createReadStream, existsSync } from 'node:fs';
 import { createServer } from 'node:http';
 import { dirname, extname, join, normalize } from 'node:path';
 import { fileURLToPath } from 'node:url';
+import { MockAlerts } from './mock_alerts.mjs';
 import { answerPlant, pathOf } from './mock_desk.mjs';
+import { floorItem, historyOutlook, missingOf, nowBand, proposal, segmentOf, segmentsNow, snapshotMembers, trial } from './mock_outlook.mjs';
 import { chamberOf, conditionOf, furnaceOf, furnaces, inputsAt, itemsAt, messageOf, openingLoads, plannedMinutes, segmentAt, steels } from './mock_plant.mjs';
 
 const argument = (name, otherwise) => { const i = process.argv.indexOf(`--${name}`); return i > 0 ? Number(process.argv[i + 1]) : otherwise; };
@@ -16,8 +19,10 @@ const begun = Date.now();
 const nowMs = () => begun + (Date.now() - begun) * speed;
 const stamp = (ms) => `${new Date(ms).toISOString().slice(0, 19)}Z`;
 const loads = openingLoads(nowMs()).slice(-argument('loads', 35));
+const plain = argument('plain', 0) === 1;
+const alerts = new MockAlerts(nowMs(), furnaces, loads);
 let sequence = 1, nextId = 200, awayUntil = 0, unreadyUntil = 0;
-const band = 'band not computed';
+const band = plain ? 'band not computed' : '5 to 95 %';
 const rank = { stale: 0, 'no data yet': 1, live: 2, 'no load': 9 };
 
 const dataAge = (load) => ({ stale: 1500, 'no data yet': null }[load.trouble] === undefined ? 20 : { stale: 1500 }[load.trouble] ?? null);
@@ -27,9 +32,13 @@ function controllingOf(load) {
 }
 function live(load) {
   const now = nowMs();
-  return { inputs: inputsAt(load, now), segment: load.ended_at ? null : segmentAt(load, now), minutes_left: plannedMinutes(load) - (now - Date.parse(load.definition.started_at)) / 60_000 };
+  return { inputs: inputsAt(load, now), segment: load.ended_at ? null : segmentOf(load, now), minutes_left: leftOf(load, now) };
 }
-const worst = (load) => ({ stale: 0, 'no data yet': 1, overdue: 2, planned: 3, held: 4, disagree: 5, doubt: 5 }[load.trouble] ?? 9);
+function leftOf(load, now) {
+  const plan = load.plans?.at(-1);
+  return plan ? segmentsNow(load).reduce((sum, each) => sum + each.duration_min, 0) - (now - Date.parse(plan.at)) / 60_000 : plannedMinutes(load) - (now - Date.parse(load.definition.started_at)) / 60_000;
+}
+const worst = (load) => ({ miss: -1, stale: 0, 'no data yet': 1, overdue: 2, planned: 3, held: 4, disagree: 5, doubt: 5 }[load.trouble] ?? 9);
 const positionOf = (load) => (load.place ? { place: load.place, places: 30 } : null);
 function floor() {
   const rows = furnaces.map((furnace) => {
@@ -39,10 +48,10 @@ function floor() {
       chambers: furnace.chambers, line: furnace.line,
       loads: open.sort((a, b) => worst(a) - worst(b)).map((load, i) => { const { profile, hardness, ...item } = controllingOf(load);
         return { id: load.id, name: load.definition.name, chamber: load.definition.chamber, person: load.definition.person, started_at: load.definition.started_at,
-          condition: conditionOf(load), message: messageOf(load), ...live(load), item_count: load.definition.items.length, position: positionOf(load), data_age_s: dataAge(load), item: { ...item, strip: i < 4 ? profile : null } }; }) };
+          condition: conditionOf(load), message: messageOf(load), ...live(load), item_count: load.definition.items.length, position: positionOf(load), data_age_s: dataAge(load), ...(plain ? {} : { alerts: alerts.ofLoad(load.id) }), item: { ...(plain ? item : floorItem(load, nowMs(), item)), strip: i < 4 ? profile : null } }; }), ...(plain ? {} : { alerts: alerts.ofFurnace(furnace.id) }) };
   });
   rows.sort((a, b) => rank[a.condition] - rank[b.condition]);
-  return { sequence, now: stamp(nowMs()), plant: 'Invented demo plant', demo: true, clock_speed: speed, band, furnaces: rows };
+  return { sequence, now: stamp(nowMs()), plant: 'Invented demo plant', demo: true, clock_speed: speed, band, furnaces: rows, ...(plain ? {} : { alerts: alerts.floor() }) };
 }
 const rowOf = (load) => ({ id: load.id, name: load.definition.name, furnace: load.definition.furnace, furnace_name: furnaces.find((each) => each.id === load.definition.furnace).name, chamber: load.definition.chamber ?? 'main',
   person: load.definition.person, started_at: load.definition.started_at, ended_at: load.ended_at, state: load.cancelled ? 'cancelled' : load.ended_at ? 'ended' : 'open', path: pathOf(load), recipe: load.definition.recipe, revision: load.revision });
@@ -51,13 +60,13 @@ function snapshot(load) {
   const here = pathOf(load).at(-1);
   const place = here.outside ? null : { furnace: here.furnace, furnace_name: here.furnace_name, chamber: here.chamber, chamber_name: here.chamber_name, since: here.from, position: positionOf(load) };
   return { load: rowOf(load), sequence, place, now: stamp(now), data_time: stamp(now - (dataAge(load) ?? 0) * 1000), data_age_s: dataAge(load), state_time: stamp(now), condition: conditionOf(load), message: messageOf(load), band,
-    ...live(load), items: itemsAt(load, now), controlling_item: controllingOf(load).name,
+    ...live(load), ...(plain ? {} : { ...snapshotMembers(load, now, !load.ended_at), alerts: alerts.ofLoad(load.id) }), items: itemsAt(load, now).map((each) => (plain ? each : { ...each, case_depth_band_mm: nowBand(load, now, each), surface_carbon_band_wt_pct: missingOf(load) ? null : { low: each.surface_carbon_wt_pct - 0.03, median: each.surface_carbon_wt_pct, high: each.surface_carbon_wt_pct + 0.03 } })), controlling_item: controllingOf(load).name,
     notes: load.trouble === 'held' ? [{ kind: 'capped at carbide limit', item: 'A', from: at(60), to: at(75), text: 'The gas would form carbide at this temperature: the surface is held at the carbide limit.' }] : [],
     gaps: load.trouble === 'none' ? [] : [{ input: 'carbon_potential', basis: 'held', from: at(60), to: at(72) }, { input: 'temperature', basis: 'planned', from: at(80), to: at(95) }], shift_notes: load.notes };
 }
 function history(load) {
   const begin = Date.parse(load.definition.started_at), end = load.ended_at ? Date.parse(load.ended_at) : nowMs(), many = 240;
-  const out = { time_s: [], temperature_degc: [], temperature_basis: [], carbon_potential_wt_pct: [], carbon_potential_basis: [], items: load.definition.items.map((each) => ({ name: each.name, case_depth_mm: [], surface_carbon_wt_pct: [], part_temperature_degc: [] })) };
+  const out = { time_s: [], temperature_degc: [], temperature_basis: [], carbon_potential_wt_pct: [], carbon_potential_basis: [], items: load.definition.items.map((each) => ({ name: each.name, case_depth_mm: [], surface_carbon_wt_pct: [], part_temperature_degc: [], ...(plain ? {} : { case_depth_low_mm: [], case_depth_high_mm: [] }) })), ...(plain ? {} : { outlook: historyOutlook(load, nowMs()) }) };
   for (let i = 0; i <= many; ++i) {
     const at = begin + (end - begin) * i / many, min = (at - begin) / 60_000;
     out.time_s.push(at / 1000);
@@ -66,7 +75,8 @@ function history(load) {
     const segment = segmentAt(load, at);
     out.carbon_potential_wt_pct.push(load.definition.recipe.segments[segment.index].carbon_potential_wt_pct * (1 - 0.3 * Math.exp(-segment.elapsed_min / 12)) + Math.sin(at / 300_000) * 0.015);
     out.carbon_potential_basis.push(load.trouble !== 'none' && min > 60 && min < 72 ? 'held' : 'measured');
-    itemsAt(load, at, 4).forEach((each, k) => { out.items[k].case_depth_mm.push(each.case_depth_mm); out.items[k].surface_carbon_wt_pct.push(each.surface_carbon_wt_pct); out.items[k].part_temperature_degc.push(each.part_temperature_degc); });
+    itemsAt(load, at, 4).forEach((each, k) => { out.items[k].case_depth_mm.push(each.case_depth_mm); out.items[k].surface_carbon_wt_pct.push(each.surface_carbon_wt_pct); out.items[k].part_temperature_degc.push(each.part_temperature_degc);
+      const now = nowBand(load, at, each); out.items[k].case_depth_low_mm?.push(now?.low ?? null); out.items[k].case_depth_high_mm?.push(now?.high ?? null); });
   }
   return out;
 }
@@ -96,6 +106,8 @@ async function answer(request, response) {
   const url = new URL(request.url, 'http://localhost'), path = url.pathname;
   if (path.startsWith('/dev/')) {
     const until = Date.now() + 1000 * Number(url.searchParams.get('seconds') ?? 20);
+    if (path === '/dev/alert') { const id = alerts.raise(nowMs()); tellAlerts(); return send(response, 200, { id }); }
+    if (path === '/dev/revise') { loads.find((each) => each.id === Number(url.searchParams.get('load'))).revision += 1; ++sequence; return send(response, 200, {}); }
     if (path === '/dev/away') awayUntil = until; else unreadyUntil = until;
     return send(response, 200, {});
   }
@@ -105,6 +117,7 @@ async function answer(request, response) {
   if (path === '/api/v1/floor') return send(response, 200, floor());
   if (path === '/api/v1/steels') return send(response, 200, { steels });
   const plant = { path, url, request, response, send, problem, bodyOf, loads, rowOf, nowMs, stamp, bump: () => ++sequence };
+  if (!plain && await alerts.answer(plant)) { if (request.method === 'POST') tellAlerts(); return undefined; }
   if (await answerPlant(plant)) return undefined;
   if (path === '/api/v1/events') {
     response.writeHead(200, { 'content-type': 'text/event-stream', 'cache-control': 'no-store' });
@@ -137,6 +150,11 @@ async function answer(request, response) {
   if (rest === 'revisions') return send(response, 200, { revisions: load.revisions ?? [] });
   if (rest === 'history') return send(response, 200, history(load));
   const body = await bodyOf(request);
+  if (rest === 'trial' || rest === 'proposal') {
+    if (missingOf(load)) return problem(response, 409, 'No outlook', missingOf(load));
+    if (rest === 'trial' && body.segments.some((each) => each.temperature_degc > 1000)) return problem(response, 422, 'Trial not accepted', 'Segment 1 asks 1005 degC; this furnace goes to 980 degC. Enter less.', 'segments[0].temperature_degc');
+    return send(response, 200, rest === 'trial' ? trial(load, nowMs(), body.segments) : await new Promise((go) => setTimeout(() => go(proposal(load, nowMs(), body.asked_chance ?? 0.9)), 600)));
+  }
   if (rest && !String(body.person ?? '').trim()) return problem(response, 422, 'Name missing', 'The name of the person is empty.', 'person');
   const revise = (what, reason, changes) => {
     load.revision += 1;
@@ -152,6 +170,12 @@ async function answer(request, response) {
     const before = JSON.stringify(load.definition.items.map((each) => each.steel.name ?? each.steel)), after = JSON.stringify(body.load.items.map((each) => each.steel.name ?? each.steel));
     load.definition = body.load;
     return revise('corrected', body.reason, before === after ? [{ field: 'recipe', before: 'as it was', after: 'as it is' }] : [{ field: 'items[0].steel', before, after }]);
+  }
+  if (rest === 'plan') {
+    if (body.expected_revision !== load.revision) return problem(response, 409, 'Load changed', 'Somebody changed this load meanwhile.', 'expected_revision');
+    if (!String(body.reason ?? '').trim()) return problem(response, 422, 'Reason missing', 'The reason is empty.', 'reason');
+    (load.plans ??= []).push({ at: stamp(nowMs()), person: body.person, reason: body.reason, segments: body.segments });
+    return revise('plan changed', body.reason, []);
   }
   if (rest === 'move') {
     const at = body.at ?? stamp(nowMs()), last = (load.definition.path ??= [{ from: load.definition.started_at, furnace: load.definition.furnace, chamber: load.definition.chamber }]).at(-1);
@@ -171,6 +195,7 @@ function file(path, response) {
   response.writeHead(200, { 'content-type': types[extname(place)] ?? 'application/octet-stream', 'content-security-policy': policy, 'x-content-type-options': 'nosniff' });
   return createReadStream(place).pipe(response);
 }
+function tellAlerts() { for (const stream of streams) stream.write(`event: alerts\ndata: ${JSON.stringify({ sequence: alerts.sequence })}\n\n`); }
 setInterval(() => {
   ++sequence;
   if (Date.now() < awayUntil || Date.now() < unreadyUntil) return;

@@ -1,5 +1,7 @@
 // What the daemon says and takes: one type per document of /api/v1, field for field, units in the names.
 // Nothing is converted here; units.ts does that at the last moment before a figure is shown.
+import type { AlertSummary, FloorAlerts } from './contract_alerts.ts';
+import type { AdoptedPlan, Band3, FloorOutlook, HistoryOutlook, Outlook, RestSegment } from './contract_outlook.ts';
 
 export type Basis = 'measured' | 'held' | 'planned' | 'masked';
 export type LoadState = 'open' | 'ended' | 'cancelled';
@@ -46,6 +48,8 @@ export interface FloorItem {
   surface_carbon_window_wt_pct: Window2 | null;
   finished_case_depth_mm?: number | null;
   grinding_stock_mm?: number;
+  case_depth_band_mm?: Band3 | null;  // now, finished part
+  outlook?: FloorOutlook | null;
   strip: Profile | null;  // null beyond the first four loads of a furnace
 }
 
@@ -66,6 +70,7 @@ export interface FloorLoad {
   item: FloorItem | null;
   position?: Position | null;
   data_age_s?: number | null;
+  alerts?: AlertSummary[];
 }
 
 export interface FloorFurnace {
@@ -78,6 +83,7 @@ export interface FloorFurnace {
   chambers?: Chamber[];
   line?: boolean;         // chambers are the zones of a pusher line, in order
   loads: FloorLoad[];     // worst first
+  alerts?: AlertSummary[];  // of the furnace, of no load
 }
 export interface Chamber { id: string; name: string; places?: number }
 
@@ -89,6 +95,7 @@ export interface Floor {
   clock_speed: number;
   band: string;
   furnaces: FloorFurnace[];
+  alerts?: FloorAlerts;
 }
 
 export type Until =
@@ -174,6 +181,8 @@ export interface Item {
   hardness?: Hardness | null;
   surface_carbon_wt_pct: number | null;
   surface_carbon_window_wt_pct: Window2 | null;
+  case_depth_band_mm?: Band3 | null;        // now, finished part
+  surface_carbon_band_wt_pct?: Band3 | null;
   total_depth_mm: number | null;
   turnover_depth_mm: number | null;
   depth_at_0p35_mm?: number | null;
@@ -240,6 +249,11 @@ export interface Snapshot {
   notes: ModelNote[];
   gaps: Gap[];
   shift_notes: ShiftNote[];
+  outlook?: Outlook | null;
+  outlook_missing?: string | null;  // why there is none
+  rest?: RestSegment[] | null;      // the plan from now on; the first is what is left of the present segment
+  plans?: AdoptedPlan[];            // oldest first; the last one's segments are those valid now
+  alerts?: AlertSummary[];
 }
 
 export interface HistoryItem {
@@ -247,6 +261,8 @@ export interface HistoryItem {
   case_depth_mm: (number | null)[];
   surface_carbon_wt_pct: (number | null)[];
   part_temperature_degc: (number | null)[];
+  case_depth_low_mm?: (number | null)[];
+  case_depth_high_mm?: (number | null)[];
 }
 export interface History {
   time_s: number[];
@@ -255,6 +271,7 @@ export interface History {
   carbon_potential_wt_pct: (number | null)[];
   carbon_potential_basis: Basis[];
   items: HistoryItem[];
+  outlook?: HistoryOutlook | null;
 }
 
 export interface Steel { id: string; standard: string; composition_wt_pct: Composition }

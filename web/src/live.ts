@@ -21,8 +21,9 @@ const wakeGraceMs = 5_000;         // after being hidden: time to catch up befor
 export const live = new Store<Live>({ floor: null, received: moment(), link: 'starting', trouble: null });
 export const pulse = new Store(Date.now());  // moves once a second: ages and clocks redraw on it
 export const loadMoved = new Store<{ id: number; sequence: number }>({ id: 0, sequence: 0 });
+export const alertsMoved = new Store<{ sequence: number }>({ sequence: 0 });
 
-type Passed = { kind: 'floor'; floor: Floor } | { kind: 'load'; id: number; sequence: number };
+type Passed = { kind: 'floor'; floor: Floor } | { kind: 'load'; id: number; sequence: number } | { kind: 'alerts'; sequence: number };
 
 export class Feed {
   private heard_ = moment();
@@ -112,6 +113,7 @@ export class Feed {
       this.streamRefused_ = moment();
     };
     stream.addEventListener('floor', (event) => this.fromStream_(() => ({ kind: 'floor', floor: JSON.parse(event.data) as Floor })));
+    stream.addEventListener('alerts', (event) => this.fromStream_(() => ({ kind: 'alerts', ...JSON.parse(event.data) as { sequence: number } })));
     stream.addEventListener('load', (event) => this.fromStream_(() => ({ kind: 'load', ...JSON.parse(event.data) as { id: number; sequence: number } })));
   }
 
@@ -131,7 +133,10 @@ export class Feed {
   private take_(passed: Passed): void {
     this.streamHeard_ = moment();
     if (passed.kind === 'floor') this.accept_(passed.floor);
-    else loadMoved.set({ id: passed.id, sequence: passed.sequence });
+    else if (passed.kind === 'alerts') {
+      alertsMoved.set({ sequence: passed.sequence });
+      void this.ask_();  // counts and marks of the Floor, and with them the sound, follow at once
+    } else loadMoved.set({ id: passed.id, sequence: passed.sequence });
     this.judge_();
   }
 

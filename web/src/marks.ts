@@ -4,12 +4,15 @@
 //   metal - the plan or the part itself
 // Nothing to say gives an empty list, and the screen stays quiet.
 import type { Basis, Condition, FloorItem, Inputs, SegmentNow } from './contract.ts';
+import type { Severity } from './contract_alerts.ts';
+import type { Standing } from './contract_outlook.ts';
 import type { HealthState } from './contract_plant.ts';
 import { type LengthUnit, carbonText, depthText, leastDepthMm } from './units.ts';
 import { ageText, minutesText } from './words.ts';
 
 export type MarkColour = 'link' | 'guess' | 'metal' | 'quiet';
-export type MarkShape = 'no load' | 'no data yet' | 'stale' | 'held' | 'planned' | 'past window' | 'overdue' | 'outside range' | 'ended' | 'away' | 'note' | 'demo' | 'masked' | 'unsure' | 'disagree' | 'cancelled' | HealthState;
+export type MarkShape = 'no load' | 'no data yet' | 'stale' | 'held' | 'planned' | 'past window' | 'overdue' | 'outside range' | 'ended' | 'away' | 'note' | 'demo' | 'masked' | 'unsure' | 'disagree' | 'cancelled' | HealthState
+  | Standing | Exclude<Severity, 'note'> | 'notice' | 'acknowledged' | 'shelved' | 'waiting' | 'delivered' | 'not delivered' | 'sound on' | 'sound off' | 'sounding' | 'silenced' | 'touch' | 'by hand' | 'all clear';
 export interface Mark { shape: MarkShape; colour: MarkColour; word: string; sentence: string }
 
 export type Judged = Pick<FloorItem, 'case_depth_mm' | 'case_depth_window_mm' | 'finished_case_depth_mm' | 'grinding_stock_mm'>;

@@ -1,13 +1,16 @@
 // What this screen prefers: units and light or dark. Kept in the browser where it allows that; where it
 // does not (private mode, storage switched off) the choice lasts until the page is left.
 import { Store } from './store.ts';
+import type { Severity } from './contract_alerts.ts';
 import type { LengthUnit, TemperatureUnit } from './units.ts';
 
 export type Theme = 'auto' | 'light' | 'dark';
-export interface Prefs { temperature: TemperatureUnit; length: LengthUnit; theme: Theme; person: string }
+// The sound of this screen. `silenced` are alerts (id and severity) that stay quiet until `untilMs` of the wall clock.
+export interface SoundPrefs { on: boolean; from: Exclude<Severity, 'note'>; untilMs: number; silenced: string[] }
+export interface Prefs { temperature: TemperatureUnit; length: LengthUnit; theme: Theme; person: string; sound: SoundPrefs }
 
 const key = 'hearthfront.prefs';
-const usual: Prefs = { temperature: 'degc', length: 'mm', theme: 'auto', person: '' };
+const usual: Prefs = { temperature: 'degc', length: 'mm', theme: 'auto', person: '', sound: { on: true, from: 'warning', untilMs: 0, silenced: [] } };
 
 function recalled(): Prefs {
   try {
@@ -17,10 +20,19 @@ function recalled(): Prefs {
       length: kept.length === 'inch' ? 'inch' : 'mm',
       theme: kept.theme === 'light' || kept.theme === 'dark' ? kept.theme : 'auto',
       person: typeof kept.person === 'string' ? kept.person.slice(0, 80) : '',
+      sound: soundFrom(kept.sound),
     };
   } catch {
     return usual;
   }
+}
+
+function soundFrom(kept: Partial<SoundPrefs> | undefined): SoundPrefs {
+  const { on, from, untilMs, silenced } = kept ?? {};
+  return {
+    on: on !== false, from: from === 'urgent' ? 'urgent' : 'warning',
+    untilMs: typeof untilMs === 'number' ? untilMs : 0, silenced: Array.isArray(silenced) ? silenced.filter((each) => typeof each === 'string').slice(0, 500) : [],
+  };
 }
 
 export const prefs = new Store<Prefs>(recalled());
@@ -30,6 +42,9 @@ export function prefer(change: Partial<Prefs>): void {
   prefs.set(next);
   try { localStorage.setItem(key, JSON.stringify(next)); } catch { /* works without it */ }
 }
+
+// Another tab of this browser changed them: a silence asked for in one holds in all.
+addEventListener('storage', (event) => { if (event.key === key) prefs.set(recalled()); });
 
 const darkScreen = matchMedia('(prefers-color-scheme: dark)');
 export const shownTheme = new Store<'light' | 'dark'>('light');

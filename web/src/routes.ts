@@ -6,6 +6,7 @@ export type Route =
   | { page: 'correct'; id: number }
   | { page: 'start'; furnace: string }
   | { page: 'loads' }
+  | { page: 'alerts'; furnace: string }
   | { page: 'furnace'; id: string }
   | { page: 'files'; id: string }
   | { page: 'library'; shelf: Shelf; key: string | null };  // key '' is a new entry, null the list
@@ -23,12 +24,14 @@ export function routeOf(hash: string): Route {
   const library = /^library(?:\/(parts|recipes)(?:\/(new|entry\/([^/]+)))?)?$/.exec(path);
   if (library) return { page: 'library', shelf: (library[1] ?? 'parts') as Shelf, key: library[3] !== undefined ? plain(library[3]) : library[2] === 'new' ? '' : null };
   if (path === 'start') return { page: 'start', furnace: new URLSearchParams(query).get('furnace') ?? '' };
+  if (path === 'alerts') return { page: 'alerts', furnace: new URLSearchParams(query).get('furnace') ?? '' };
   if (path === 'loads') return { page: 'loads' };
   return { page: 'floor' };
 }
 
 export const floorLink = '#/';
 export const loadsLink = '#/loads';
+export const alertsLink = (furnace?: string): string => `#/alerts${furnace ? `?furnace=${encodeURIComponent(furnace)}` : ''}`;
 export const loadLink = (id: number): string => `#/load/${id}`;
 export const correctLink = (id: number): string => `#/load/${id}/correct`;
 export const startLink = (furnace?: string): string => `#/start${furnace ? `?furnace=${encodeURIComponent(furnace)}` : ''}`;

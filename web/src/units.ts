@@ -19,7 +19,7 @@ export const differenceName = (unit: TemperatureUnit): string => (unit === 'degc
 export const lengthName = (unit: LengthUnit): string => (unit === 'mm' ? 'mm' : 'in');
 export const temperatureName = (unit: TemperatureUnit): string => (unit === 'degc' ? '°C' : '°F');
 
-const fixed = (value: number, digits: number): string => {
+export const fixed = (value: number, digits: number): string => {
   const text = value.toFixed(digits);
   return Number(text) === 0 ? (0).toFixed(digits) : text;  // no "-0.00"
 };
@@ -57,6 +57,11 @@ export const unitName = (unit: string): string => ({ degC: '°C', degF: '°F', w
 // A sentence of the daemon's with its temperatures as this screen shows them: "60 degC" becomes "60 °C" or "140 °F".
 export const withTemperatures = (text: string, shown: TemperatureUnit): string =>
   text.replace(/(-?\d+(?:\.\d+)?) degC\b/g, (_, value: string) => temperatureText(Number(value), shown));
+// The same for depths: "0.87 mm", "0.95 to 1.25 mm". Only decimal fractions are depths here; "24 mm" is a part's size.
+export const withDepths = (text: string, shown: LengthUnit): string => (shown === 'mm' ? text
+  : text.replace(/(\d+\.\d+)( to | – )?(\d+\.\d+)? mm\b/g, (whole, first: string, between?: string, second?: string) =>
+    (between && second ? `${depthNumber(Number(first), shown)}${between}${depthText(Number(second), shown)}` : between || second ? whole : depthText(Number(first), shown))));
+export const withUnits = (text: string, { length, temperature }: { length: LengthUnit; temperature: TemperatureUnit }): string => withDepths(withTemperatures(text, temperature), length).replaceAll(' -> ', ' → ');
 export const capital = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
 
 // What a person types: decimal comma or point, blanks around. null when it is no number.

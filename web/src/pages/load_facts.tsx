@@ -1,6 +1,7 @@
 // What the model reads off this item's profile, one line each.
 import type { ComponentChildren } from 'preact';
 import type { ComparedValue, Item } from '../api.ts';
+import { noBand, nowBandText } from '../outlook_words.ts';
 import { type LengthUnit, type TemperatureUnit, capital, carbonNumber, carbonText, carbonWindowText, channelText, depthText, temperatureText, windowText, withTemperatures } from '../units.ts';
 
 interface Props { item: Item; band: string; length: LengthUnit; temperature: TemperatureUnit }
@@ -11,9 +12,9 @@ export function Facts({ item, band, length, temperature }: Props) {
   return <section class="panel">
     <h2>Read off the profile <small>{item.part}</small></h2>
     <dl class="facts">
-      <Fact name="case depth" value={depthText(item.case_depth_mm, length)}>{item.criterion.text}{limit !== null && `, that is ${carbonNumber(limit)} % C`}. {item.grinding_stock_mm ? '' : `Asked ${windowText(item.case_depth_window_mm, length)}. `}{band}.</Fact>
+      <Fact name="case depth" value={depthText(item.case_depth_mm, length)}>{item.criterion.text}{limit !== null && `, that is ${carbonNumber(limit)} % C`}. {item.grinding_stock_mm ? '' : `Asked ${windowText(item.case_depth_window_mm, length)}. `}{item.case_depth_band_mm === undefined ? band : item.case_depth_band_mm ? `${item.grinding_stock_mm ? 'Finished' : 'Band'} ${nowBandText(item.case_depth_band_mm, band, length)}, ${band}` : capital(noBand)}.</Fact>
       {!!item.grinding_stock_mm && <Fact name="finished case depth" value={depthText(item.finished_case_depth_mm ?? null, length)}>After {depthText(item.grinding_stock_mm, length)} are ground off. Asked {windowText(item.case_depth_window_mm, length)}.</Fact>}
-      <Fact name="surface carbon" value={carbonText(item.surface_carbon_wt_pct)}>{item.surface_carbon_window_wt_pct ? `Asked at the end ${carbonWindowText(item.surface_carbon_window_wt_pct)}.` : 'No window asked.'}</Fact>
+      <Fact name="surface carbon" value={carbonText(item.surface_carbon_wt_pct)}>{item.surface_carbon_window_wt_pct ? `Asked at the end ${carbonWindowText(item.surface_carbon_window_wt_pct)}.` : 'No window asked.'}{item.surface_carbon_band_wt_pct && ` Now ${carbonWindowText([item.surface_carbon_band_wt_pct.low, item.surface_carbon_band_wt_pct.high])}, ${band}.`}</Fact>
       {hardness && <Fact name="surface hardness" value={hardness.surface_hv === null ? '–' : `${hardness.surface_hv.toFixed(0)} HV`}>{hardness.surface_hrc !== null && `${hardness.surface_hrc.toFixed(1)} HRC. `}{hardness.surface_retained_austenite_pct !== null && `${hardness.surface_retained_austenite_pct.toFixed(0)} % retained austenite. `}{withTemperatures(capital(hardness.as), temperature)}.</Fact>}
       <Fact name="total depth" value={depthText(item.total_depth_mm, length)}>As deep as carbon has risen above the core.</Fact>
       <Fact name="turnover depth" value={item.turnover_depth_mm === null ? 'none' : depthText(item.turnover_depth_mm, length)}>{item.turnover_depth_mm === null ? 'The whole case is gaining carbon.' : 'Nearer the surface the steel is giving carbon up.'}</Fact>

@@ -1,5 +1,7 @@
 // The recipe of the load, the present segment marked by a bar, a word and weight.
-import type { Recipe, SegmentNow } from '../api.ts';
+import type { Recipe, SegmentNow, Snapshot } from '../api.ts';
+import { restLine } from '../outlook_words.ts';
+import { Shape } from '../pictures/mark_shape.tsx';
 import { PlanRibbon } from '../pictures/plan_ribbon.tsx';
 import { segmentExtras } from '../draft/describe.ts';
 import { segmentFrom } from '../draft/take.ts';
@@ -28,5 +30,20 @@ export function Plan({ recipe, segment, minutesLeft, open, now }: Props) {
         <td>{minutesText(each.duration_min)}</td><td>{temperatureText(each.temperature_degc, temperature)}</td><td>{carbonText(each.carbon_potential_wt_pct)}</td>
       </tr>)}</tbody>
     </table>
+  </section>;
+}
+
+// Changes of plan that people took, the newest first. The furnace does not know of them.
+export function AdoptedPlans({ snapshot }: { snapshot: Snapshot }) {
+  const { temperature } = useStore(prefs);
+  const plans = snapshot.plans ?? [];
+  const open = snapshot.load.state === 'open';
+  if (plans.length === 0) return null;
+  return <section class="panel" data-testid="plans">
+    <h2>Changed plans</h2>
+    {open && <p class="mark metal by-hand"><Shape name="by hand" /><span><b>set by hand</b> <span class="mark-sentence">The furnace’s controller does not know of a changed plan. See that it is set to the newest one.</span></span></p>}
+    <ol class="list plans">{[...plans].reverse().map((plan, i) => <li key={plan.at} class={i > 0 ? 'gone-by' : ''}><p>
+      <b>{momentText(Date.parse(plan.at), Date.parse(snapshot.now))}</b> by {plan.person}: {plan.reason}{i > 0 && ' (replaced)'}
+      {plan.segments.map((each, k) => <span class="change" key={k}>{restLine(each, temperature)}</span>)}</p></li>)}</ol>
   </section>;
 }

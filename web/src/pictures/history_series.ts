@@ -1,5 +1,6 @@
 // The history document prepared for drawing: stretches of guessed input and the recipe as steps. Pure.
-import type { Basis, Recipe } from '../contract.ts';
+import type { Basis, History, Recipe, RecipeSegment } from '../contract.ts';
+import type { AdoptedPlan, RestSegment } from '../contract_outlook.ts';
 
 export interface Stretch { from_s: number; to_s: number; basis: Exclude<Basis, 'measured'> }
 
@@ -25,6 +26,45 @@ export function recipeSteps(recipe: Recipe, startedS: number): RecipeStep[] {
     at += segment.duration_min * 60;
     return { from_s, to_s: at, ramp_s: Math.min(segment.ramp_min ?? 0, segment.duration_min) * 60, name: segment.name, temperature_degc: segment.temperature_degc, carbon_potential_wt_pct: segment.carbon_potential_wt_pct };
   });
+}
+
+const clippedTo = (steps: RecipeStep[], untilS: number): RecipeStep[] =>
+  steps.filter((step) => step.from_s < untilS).map((step) => (step.to_s > untilS ? { ...step, to_s: untilS } : step));
+const stepsFrom = (segments: readonly RecipeSegment[], startedS: number) => recipeSteps({ name: '', segments: [...segments] }, startedS);
+
+// What was asked and what is: the recipe until the first changed plan, each plan until the next, and from now on what
+// the daemon takes to be left.
+export function plannedSteps(recipe: Recipe, startedS: number, plans: readonly AdoptedPlan[], rest: readonly RestSegment[] | null, nowS: number | null): RecipeStep[] {
+  let steps = recipeSteps(recipe, startedS);
+  for (const plan of plans) {
+    const at = Date.parse(plan.at) / 1000;
+    steps = [...clippedTo(steps, at), ...stepsFrom(plan.segments, at)];
+  }
+  return rest && nowS !== null ? [...clippedTo(steps, nowS), ...stepsFrom(rest, nowS)] : steps;
+}
+// The segments that `segment.index` counts in.
+export const validRecipe = (recipe: Recipe, plans: readonly AdoptedPlan[] | undefined): Recipe => {
+  const last = plans?.[plans.length - 1];
+  return last ? { name: `${recipe.name}, changed`, segments: last.segments } : recipe;
+};
+
+// Depth over time with its band, then the outlook to the end: one list of times for both, in millimetres as hardened.
+export interface DepthCourse { time_s: number[]; depth: (number | null)[]; ahead: (number | null)[]; low: (number | null)[]; high: (number | null)[]; aheadFrom: number }
+export function depthCourse(history: History, name: string, stockMm: number): DepthCourse {
+  const item = history.items.find((each) => each.name === name);
+  const ahead = history.outlook?.items.find((each) => each.name === name);
+  const past = history.time_s, none = past.map(() => null);
+  const lastS = past[past.length - 1] ?? -Infinity;
+  const kept = (history.outlook?.time_s ?? []).flatMap((time, i) => (ahead && time > lastS ? [{ time, i }] : []));
+  const withStock = (list: (number | null)[] | undefined): (number | null)[] => (list && list.length === past.length ? list.map((mm) => (mm === null ? null : mm + stockMm)) : none);
+  const later = (list: number[]) => kept.map(({ i }) => list[i]! + stockMm);
+  return {
+    time_s: [...past, ...kept.map(({ time }) => time)], aheadFrom: past.length,
+    depth: [...item?.case_depth_mm ?? none, ...kept.map(() => null)],
+    ahead: [...none, ...(ahead ? later(ahead.case_depth_median_mm) : [])],
+    low: [...withStock(item?.case_depth_low_mm), ...(ahead ? later(ahead.case_depth_low_mm) : [])],
+    high: [...withStock(item?.case_depth_high_mm), ...(ahead ? later(ahead.case_depth_high_mm) : [])],
+  };
 }
 
 // Ends of a scale that hold all values, with a margin; null values are passed over.

@@ -1,6 +1,7 @@
 // The section strip in numbers: tone of each carbon content, how far the axis reaches, where the ticks are.
 // Pure functions, millimetres in, pixels out; strip.tsx draws what these say.
 import type { Item, Profile } from '../contract.ts';
+import type { Band3 } from '../contract_outlook.ts';
 import { type LengthUnit, carbonNumber, depthText, fromMm, lengthName, toMm, windowText } from '../units.ts';
 
 // Tone is absolute: the same carbon content has the same tone on every strip, whatever the load or theme.
@@ -28,22 +29,27 @@ export interface StripItem {
   turnover_mm?: number | null;
   stock_mm?: number;  // ground off after hardening: the window is for what is left
   ended?: boolean;  // the depth is the load's last, not "now"
+  band_mm?: Band3 | null;     // of the depth now; like the window of the finished part
+  outlook_mm?: Band3 | null;  // at the end of the plan, finished part
 }
 
 // Round ends, so that the picture does not creep as the case grows.
 const ends = [0.2, 0.3, 0.4, 0.5, 0.6, 0.8, 1, 1.25, 1.5, 2, 2.5, 3, 4, 5, 6, 8, 10, 12, 16, 20];
 export function axisEndMm(item: StripItem): number {
-  const highest = item.window_mm[1] + (item.stock_mm ?? 0);
-  const reach = Math.max(highest * 1.5, (item.case_depth_mm ?? 0) * 1.15, 0.15);
+  const stock = item.stock_mm ?? 0;
+  const highest = item.window_mm[1] + stock;
+  const farthest = Math.max(item.case_depth_mm ?? 0, (item.band_mm?.high ?? 0) + stock, (item.outlook_mm?.high ?? 0) + stock);
+  const reach = Math.max(highest * 1.5, farthest * 1.15, 0.15);
   const round = ends.find((end) => end >= reach) ?? reach;
   const metal = item.depth_mm[item.depth_mm.length - 1] ?? round;
   // A thin part ends before the round figure: its centre is the end of the picture.
-  return Math.min(round, Math.max(metal, highest * 1.04, (item.case_depth_mm ?? 0) * 1.02));
+  return Math.min(round, Math.max(metal, highest * 1.04, farthest * 1.02));
 }
 
 // An item of the contract as the strip takes it.
-export const stripOf = (item: { case_depth_mm: number | null; case_depth_window_mm: readonly [number, number]; grinding_stock_mm?: number }, profile: Profile): StripItem =>
-  ({ ...profile, case_depth_mm: item.case_depth_mm, window_mm: item.case_depth_window_mm, stock_mm: item.grinding_stock_mm ?? 0 });
+interface Stripped { case_depth_mm: number | null; case_depth_window_mm: readonly [number, number]; grinding_stock_mm?: number; case_depth_band_mm?: Band3 | null }
+export const stripOf = (item: Stripped, profile: Profile, outlook: Band3 | null = null): StripItem =>
+  ({ ...profile, case_depth_mm: item.case_depth_mm, window_mm: item.case_depth_window_mm, stock_mm: item.grinding_stock_mm ?? 0, band_mm: item.case_depth_band_mm ?? null, outlook_mm: outlook });
 export const itemEndMm = (item: Item): number => axisEndMm(stripOf(item, item.profile));
 
 export interface Tick { mm: number; label: string | null }
@@ -93,14 +99,18 @@ export function carbonAt(item: StripItem, mm: number): number | null {
   return carbon[after - 1]! + (carbon[after]! - carbon[after - 1]!) * share;
 }
 
+const bandWords = (band: Band3, unit: LengthUnit): string => windowText([band.low, band.high], unit).replace('–', 'to');
+
 // The same strip in words, for a screen reader.
 export function stripText(item: StripItem, unit: LengthUnit, guessed: boolean): string {
   const end = axisEndMm(item);
   const surface = carbonAt(item, 0);
   const words = [`Section from the surface inward to ${depthText(end, unit)}.`];
   words.push(item.case_depth_mm === null ? (item.ended ? 'No case.' : 'No case yet.') : `Case depth ${item.ended ? 'at the end' : 'now'} ${depthText(item.case_depth_mm, unit)}${guessed ? ', computed from inputs that are not measured' : ''}.`);
+  if (item.band_mm) words.push(`Its band is ${bandWords(item.band_mm, unit)}.`);
   words.push(`The drawing asks ${windowText(item.window_mm, unit).replace('–', 'to')}.`);
   if (item.stock_mm) words.push(`${depthText(item.stock_mm, unit)} are ground off before that is measured.`);
+  if (item.outlook_mm) words.push(`At the end of the plan ${depthText(item.outlook_mm.median, unit)}, band ${bandWords(item.outlook_mm, unit)}.`);
   if (surface !== null) words.push(`Carbon ${carbonNumber(surface)} % at the surface, ${carbonNumber(carbonAt(item, end))} % at ${depthText(end, unit)}.`);
   if (item.turnover_mm) words.push(`Turnover at ${depthText(item.turnover_mm, unit)}: nearer the surface the steel gives carbon up.`);
   return words.join(' ');

@@ -1,10 +1,12 @@
 // Plant, pages, clock, the demo marker and this screen's preferences.
+import type { ComponentChildren } from 'preact';
 import { daemonNowMs, live, pulse } from '../live.ts';
 import { Shape } from '../pictures/mark_shape.tsx';
 import { type Prefs, type Theme, prefer, prefs } from '../prefs.ts';
-import { type Route, floorLink, libraryLink, loadsLink, startLink } from '../routes.ts';
+import { type Route, alertsLink, floorLink, libraryLink, loadsLink, startLink } from '../routes.ts';
 import { useStore } from '../store.ts';
 import { clockText, dayText } from '../words.ts';
+import { AlertBadge } from './watch.tsx';
 
 export function Header({ on }: { on: Route }) {
   const feed = useStore(live);
@@ -19,6 +21,7 @@ export function Header({ on }: { on: Route }) {
       <nav aria-label="Pages">
         <PageLink to={floorLink} here={on.page === 'floor' || on.page === 'furnace' || on.page === 'files'}>Floor</PageLink>
         <PageLink to={loadsLink} here={on.page === 'loads' || on.page === 'load' || on.page === 'correct'}>Loads</PageLink>
+        <PageLink to={alertsLink()} here={on.page === 'alerts'}>Alerts<AlertBadge /></PageLink>
         <PageLink to={libraryLink('parts')} here={on.page === 'library'}>Library</PageLink>
         <PageLink to={startLink()} here={on.page === 'start'}>Start a load</PageLink>
       </nav>
@@ -37,7 +40,7 @@ function demoText(demo: boolean, speed: number): string {
   return words.join(' · ');
 }
 
-function PageLink({ to, here, children }: { to: string; here: boolean; children: string }) {
+function PageLink({ to, here, children }: { to: string; here: boolean; children: ComponentChildren }) {
   return <a class="page-link" href={to} aria-current={here ? 'page' : undefined}>{children}</a>;
 }
 
