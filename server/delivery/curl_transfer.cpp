@@ -1,5 +1,8 @@
 #include "server/delivery/curl_transfer.h"
 
+#include <sys/socket.h>
+#include <unistd.h>
+
 #include <algorithm>
 #include <stdexcept>
 
@@ -67,6 +70,23 @@ void CurlTransfer::begin(const std::string& url, const std::string& protocol, in
   set(CURLOPT_WRITEDATA, static_cast<void*>(this));
   set(CURLOPT_HEADERFUNCTION, &CurlTransfer::on_line);
   set(CURLOPT_HEADERDATA, static_cast<void*>(this));
+  set(CURLOPT_OPENSOCKETFUNCTION, &CurlTransfer::on_open);
+  set(CURLOPT_OPENSOCKETDATA, static_cast<void*>(this));
+  set(CURLOPT_CLOSESOCKETFUNCTION, &CurlTransfer::on_close);
+  set(CURLOPT_CLOSESOCKETDATA, static_cast<void*>(this));
+}
+
+// Sockets are kept account of, so that a stop request can cut them.
+curl_socket_t CurlTransfer::on_open(void* self, curlsocktype, curl_sockaddr* address) {
+  const int made = socket(address->family, address->socktype | SOCK_CLOEXEC, address->protocol);
+  if (made < 0) return CURL_SOCKET_BAD;
+  static_cast<CurlTransfer*>(self)->sockets_.push_back(made);
+  return made;
+}
+
+int CurlTransfer::on_close(void* self, curl_socket_t socket) {
+  std::erase(static_cast<CurlTransfer*>(self)->sockets_, socket);
+  return close(socket);
 }
 
 void CurlTransfer::upload(std::string text) {
@@ -95,6 +115,9 @@ CurlTransfer::Ended CurlTransfer::run(const std::stop_token& stop) {
     }
     ended.stopped = stop.stop_requested() && running != 0;
   }
+  // Or the library would take its leave of a mail server that is silent, and wait for the answer.
+  if (ended.stopped)
+    for (const curl_socket_t each : sockets_) shutdown(each, SHUT_RDWR);
   int left = 0;
   while (const CURLMsg* message = curl_multi_info_read(multi_, &left))
     if (message->msg == CURLMSG_DONE) ended.code = message->data.result;

@@ -60,11 +60,14 @@ class CurlTransfer {
   static std::size_t on_answer(char* data, std::size_t size, std::size_t count, void* self);
   static std::size_t on_line(char* data, std::size_t size, std::size_t count, void* self);
   static std::size_t on_upload(char* into, std::size_t size, std::size_t count, void* self);
+  static curl_socket_t on_open(void* self, curlsocktype purpose, curl_sockaddr* address);
+  static int on_close(void* self, curl_socket_t socket);
 
   CURL* easy_ = nullptr;
   CURLM* multi_ = nullptr;
   char words_[CURL_ERROR_SIZE] = "";
   std::string upload_, answer_;
+  std::vector<curl_socket_t> sockets_;  // open ones, at most a few
   std::size_t uploaded_ = 0, answer_bytes_ = 0;
   std::vector<std::string> lines_;
 };

@@ -6,6 +6,7 @@
 #include <mosquitto.h>
 #include <mqtt_protocol.h>
 #include <poll.h>
+#include <sys/socket.h>
 
 #include <cerrno>
 #include <chrono>
@@ -22,7 +23,14 @@ namespace {
 
 using Instant = std::chrono::steady_clock::time_point;
 constexpr int step_ms = 100;  // how late a stop request may be seen
-constexpr int keep_alive_s = 60;
+constexpr int keep_alive_s = 60, packets_at_a_time = 10;
+
+// What the socket failed with since it was last asked, 0: nothing.
+int error_of(int descriptor) {
+  int error = 0;
+  socklen_t size = sizeof error;
+  return getsockopt(descriptor, SOL_SOCKET, SO_ERROR, &error, &size) == 0 ? error : errno;
+}
 
 // What the callbacks saw, all on the thread that drives the connection.
 struct Seen {
@@ -79,11 +87,17 @@ class Connection {
     pollfd wait{socket, POLLIN, 0};
     if (mosquitto_want_write(mosquitto_)) wait.events |= POLLOUT;
     if (poll(&wait, 1, step_ms) < 0 && errno != EINTR) return MOSQ_ERR_ERRNO;
+    if (const int error = error_of(socket); error != 0) {
+      errno = error;
+      return MOSQ_ERR_ERRNO;
+    }
     int code = MOSQ_ERR_SUCCESS;
     if ((wait.revents & POLLOUT) != 0) code = mosquitto_loop_write(mosquitto_, 1);
     if (code == MOSQ_ERR_SUCCESS && (wait.revents & (POLLIN | POLLHUP | POLLERR)) != 0)
-      code = mosquitto_loop_read(mosquitto_, 1);
+      code = mosquitto_loop_read(mosquitto_, packets_at_a_time);
     if (code == MOSQ_ERR_SUCCESS) code = mosquitto_loop_misc(mosquitto_);
+    // The library's TLS takes a refused connection for one that is still being made.
+    if (code == MOSQ_ERR_SUCCESS && (wait.revents & POLLHUP) != 0) code = MOSQ_ERR_CONN_LOST;
     return code;
   }
   std::string words_of(int connack) const {
