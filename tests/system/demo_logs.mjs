@@ -3,7 +3,7 @@ import { spawnSync } from 'node:child_process';
 import { readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { carbonActivity, probeEmf_mV } from '../../config/demo/gas.mjs';
-import { GAP, LATE } from '../../config/demo/generate.mjs';
+import { COLD, GAP, LATE } from '../../config/demo/furnace_logs.mjs';
 import { FURNACES, SOURCE, check, demoDay, expect, finish, temporaryFolder } from './support.mjs';
 
 const START = Date.parse('2026-03-02T00:00:00Z');
