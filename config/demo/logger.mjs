@@ -51,7 +51,7 @@ class LiveLog {
   }
 
   minuteOf(time) {
-    return (Date.parse(time) - this.start_ms) / MINUTE_MS;
+    return (new Date(time).getTime() - this.start_ms) / MINUTE_MS;
   }
 
   // What the daemon knows of a load: a plan not seen before is followed from the next row on, and kept first, so that
