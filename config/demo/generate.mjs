@@ -5,21 +5,17 @@
 //
 //   node generate.mjs --out FOLDER [--start 2026-03-02T00:00:00Z] [--hours 48] [--seed 2606]
 //
-// Told on purpose: batch-4 loses 25 minutes each day from 06:10, and pit-2 delivers the rows of 10:30 to 10:50
-// late, after that of 10:58 (day times count from the start).
+// What goes wrong on purpose is told in furnace_logs.mjs.
 
 import { mkdirSync, readFileSync, readdirSync, writeFileSync } from 'node:fs';
 import { dirname, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import { probeEmf_mV } from './gas.mjs';
-import { LINE, lineEntries, lineLog, linePath } from './line.mjs';
-import { randomSource, simulateFurnace } from './simulate.mjs';
+import { FURNACES, furnaceLog, iso } from './furnace_logs.mjs';
+import { LINE, lineEntries, linePath } from './line.mjs';
 
 const here = dirname(fileURLToPath(import.meta.url));
 const FIRST_DAY_MS = Date.parse('2026-03-02T00:00:00Z'); // the day the files in loads/ are written for
 const DAY_MIN = 1440;
-
-export const iso = (ms) => new Date(ms).toISOString().replace('.000Z', 'Z');
 
 export const loadMinutes = (load) => load.recipe.segments.reduce((sum, part) => sum + part.duration_min, 0);
 
@@ -66,127 +62,6 @@ export function schedule(start_ms, hours) {
   return [...entries, ...lineEntries(start_ms, hours)];
 }
 
-const decimalComma = (value, digits) => value.toFixed(digits).replace('.', ',');
-const two = (number) => String(number).padStart(2, '0');
-
-// One logger each: header lines and how a sample becomes a row.
-const LOGGERS = {
-  'pit-2': {
-    second: 0,
-    header: ['time,emf_mV,CO_pct,temp_C'],
-    simulation: { load_lag_min: 18, load_mass_ratio: 0.28 },
-    row(time_ms, sample, random) {
-      const emf = probeEmf_mV(sample.carbon_potential_wt_pct, sample.co_fraction, sample.temperature_degc);
-      const shown = emf + 0.5 * random.normal();
-      const co = (100 * sample.co_fraction).toFixed(2);
-      return `${iso(time_ms)},${shown.toFixed(1)},${co},${sample.temperature_degc.toFixed(1)}`;
-    },
-  },
-  'batch-4': {
-    second: 12,
-    header: ['Invented demo logger; decimal comma; local time is UTC plus one hour', 'Local time;Furnace F;Carbon;Door'],
-    simulation: { load_lag_min: 15, load_mass_ratio: 0.22 },
-    row(time_ms, sample) {
-      const local = new Date(time_ms + 3600000);
-      const day = `${two(local.getUTCDate())}.${two(local.getUTCMonth() + 1)}.${local.getUTCFullYear()}`;
-      const clock = `${two(local.getUTCHours())}:${two(local.getUTCMinutes())}:${two(local.getUTCSeconds())}`;
-      const fahrenheit = sample.temperature_degc * 1.8 + 32;
-      return `${day} ${clock};${decimalComma(fahrenheit, 1)};${decimalComma(sample.carbon_potential_wt_pct, 3)};0`;
-    },
-  },
-  'batch-5': {
-    second: 31,
-    header: ['time,control_C,load_C,carbon_wt_pct,fan_rpm'],
-    simulation: { load_lag_min: 21, load_mass_ratio: 0.3 },
-    row(time_ms, sample) {
-      // The load thermocouple is unplugged between loads: an empty cell, not a zero.
-      const inLoad = sample.load_temperature_degc === null ? '' : sample.load_temperature_degc.toFixed(1);
-      const carbon = sample.carbon_potential_wt_pct.toFixed(3);
-      return `${iso(time_ms)},${sample.temperature_degc.toFixed(1)},${inLoad},${carbon},1450`;
-    },
-  },
-  'twin-6': {
-    second: 44,
-    header: ['time;heat C;heat CP;second C;second CP'],
-    chambers: {
-      heating: { load_lag_min: 17, load_mass_ratio: 0.26 },
-      second: { load_lag_min: 17, load_mass_ratio: 0.2, arrives_degc: 900, gas_kept: 0.9 },
-    },
-    row(time_ms, heating, second) {
-      const cells = [heating, second].flatMap((s) => [s.temperature_degc.toFixed(1), s.carbon_potential_wt_pct.toFixed(3)]);
-      return [iso(time_ms), ...cells].join(';');
-    },
-  },
-};
-
-// The stretches of loads that one chamber sees, with the segments run there.
-function chamberStays(entries, chamber) {
-  const stays = [];
-  for (const entry of entries) {
-    const cuts = [{ after_min: 0, chamber: entry.body.chamber }, ...entry.moves, { after_min: Infinity }];
-    let at_min = 0;
-    const segments = entry.body.recipe.segments.map((segment) => {
-      const begin_min = at_min;
-      at_min += segment.duration_min;
-      return { ...segment, begin_min };
-    });
-    for (let i = 0; i + 1 < cuts.length; i++) {
-      if (cuts[i].chamber !== chamber) continue;
-      const here = segments.filter((s) => s.begin_min >= cuts[i].after_min && s.begin_min < cuts[i + 1].after_min);
-      stays.push({
-        start_min: entry.start_min + cuts[i].after_min,
-        end_min: Math.min(entry.end_min, entry.start_min + cuts[i + 1].after_min),
-        segments: here,
-      });
-    }
-  }
-  return stays;
-}
-
-function twoChamberLog(logger, entries, start_ms, hours, seed) {
-  const each = Object.entries(logger.chambers).map(([chamber, simulation], i) =>
-    simulateFurnace({ ...simulation, loads: chamberStays(entries, chamber), minutes: hours * 60, seed: seed + 17 * i }));
-  const lines = [...logger.header];
-  for (let minute = 0; minute < hours * 60; minute++) {
-    const samples = each.map((simulation) => simulation.next().value);
-    lines.push(logger.row(start_ms + minute * 60000 + logger.second * 1000, ...samples));
-  }
-  return lines.join('\n') + '\n';
-}
-
-export const FURNACES = [...Object.keys(LOGGERS), LINE];
-
-export const GAP = { furnace: 'batch-4', from_min: 370, to_min: 395 };
-export const LATE = { furnace: 'pit-2', from_min: 630, to_min: 651, delivered_min: 658 };
-
-// The text of one furnace's log.
-export function furnaceLog(id, entries, start_ms, hours, seed) {
-  if (id === LINE) return lineLog(start_ms, hours, seed);
-  const logger = LOGGERS[id];
-  const order = Object.keys(LOGGERS).indexOf(id);
-  const random = randomSource(seed + 7919 * (order + 1));
-  const loads = entries
-    .filter((entry) => entry.body.furnace === id)
-    .map((entry) => ({ ...entry, segments: entry.body.recipe.segments }));
-  if (logger.chambers) return twoChamberLog(logger, entries.filter((e) => e.body.furnace === id), start_ms, hours, seed + order);
-  const lines = [...logger.header];
-  const held = [];
-  const samples = simulateFurnace({ ...logger.simulation, loads, minutes: hours * 60, seed: seed + order });
-  for (const sample of samples) {
-    const row = logger.row(start_ms + sample.minute * 60000 + logger.second * 1000, sample, random);
-    const minute = sample.minute % DAY_MIN;
-    if (id === GAP.furnace && minute >= GAP.from_min && minute < GAP.to_min) continue;
-    if (id === LATE.furnace && minute >= LATE.from_min && minute < LATE.to_min) {
-      held.push(row);
-      continue;
-    }
-    lines.push(row);
-    if (id === LATE.furnace && minute === LATE.delivered_min) lines.push(...held.splice(0));
-  }
-  lines.push(...held);
-  return lines.join('\n') + '\n';
-}
-
 function options(words) {
   const chosen = { start: '2026-03-02T00:00:00Z', hours: '48', seed: '2606' };
   for (let i = 0; i < words.length; i += 2) {
@@ -221,6 +96,7 @@ function main() {
     note: 'Invented demo plant.',
     start: iso(start_ms),
     end: iso(start_ms + hours * 3600000),
+    seed,
     loads: entries.map(({ body, ended_at, moves = [], pushed = false }) => ({ body, ended_at, moves, pushed })),
   };
   writeFileSync(join(out, 'schedule.json'), JSON.stringify(plan, null, 1) + '\n');

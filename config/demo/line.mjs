@@ -26,7 +26,7 @@ const body = (name, started_ms) => ({
   charge_temperature_degc: 20,
   quench: { temperature_degc: 60, tempering: { temperature_degc: 180, hours: 2 } },
   recipe: {
-    name: 'invented: line, case 1.3 mm',
+    name: 'invented: line, case 0.9 mm',
     segments: ZONES.map((zone) => ({
       name: zone.id,
       duration_min: zone.places * PUSH_MIN,
@@ -42,7 +42,7 @@ const body = (name, started_ms) => ({
       steel: '20MnCr5',
       section: { shape: 'cylinder', diameter_mm: 32 },
       criterion: { kind: 'hardness_hv', limit_hv: 550, martensite_pct: 95 },
-      case_depth_window_mm: [0.8, 1.05],
+      case_depth_window_mm: [0.75, 1.1],
       surface_carbon_window_wt_pct: [0.65, 0.9],
       grinding_stock_mm: 0.1,
       lag_min: 25,

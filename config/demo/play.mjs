@@ -1,7 +1,8 @@
 #!/usr/bin/env node
 // Plays the people of the INVENTED demo plant over the public API: puts loads in when their data time comes (and
-// those already begun), leaves a shift note, ends each load on time. Follows the daemon's own clock. May be
-// stopped and started at will: what is already there is left alone. Needs node 18 or newer.
+// those already begun), leaves a shift note, ends each load on time or at the end of the plan that somebody adopted
+// for it. Follows the daemon's own clock. May be stopped and started at will: what is already there is left alone.
+// Needs node 18 or newer.
 //
 //   node play.mjs --url http://127.0.0.1:8473 --schedule FOLDER/schedule.json [--clock-file FILE]
 //
@@ -10,6 +11,7 @@
 
 import { readFileSync, renameSync, writeFileSync } from 'node:fs';
 import { setTimeout as sleep } from 'node:timers/promises';
+import { Refused, client, endOf, keyOf, knownLoads, options, stopSignal } from './api.mjs';
 
 const POLL_MS = 1000;
 
@@ -17,62 +19,6 @@ const NOTES = [
   { after_min: 95, person: 'Early shift', text: 'Invented note: charge fans quiet, seal pot topped up.' },
   { after_min: 190, person: 'Late shift', text: 'Invented note: foil taken at the sample port, sent to the lab.' },
 ];
-
-function options(words) {
-  const chosen = {};
-  for (let i = 0; i < words.length; i += 2) {
-    const name = words[i].replace(/^--/, '');
-    if (!['url', 'schedule', 'clock-file'].includes(name) || words[i + 1] === undefined) {
-      throw new Error(`I do not know "${words[i]}" here. Use --url URL --schedule FILE [--clock-file FILE].`);
-    }
-    chosen[name] = words[i + 1];
-  }
-  if (!chosen.url || !chosen.schedule) throw new Error('Both --url and --schedule are needed.');
-  return chosen;
-}
-
-class Refused extends Error {
-  constructor(status, body) {
-    super(`${status} ${body?.title ?? ''}: ${body?.detail ?? 'no detail'}`);
-    this.status = status;
-  }
-}
-
-function client(base) {
-  return async (method, path, body) => {
-    const answer = await fetch(base + path, {
-      method,
-      headers: body ? { 'content-type': 'application/json' } : {},
-      body: body ? JSON.stringify(body) : undefined,
-      signal: AbortSignal.timeout(10000),
-    });
-    const text = await answer.text();
-    let document = null;
-    try {
-      document = JSON.parse(text);
-    } catch {
-      document = { detail: text.slice(0, 200) };
-    }
-    if (!answer.ok) throw new Refused(answer.status, document);
-    return document;
-  };
-}
-
-const keyOf = (load) => `${load.furnace}/${load.name}/${Date.parse(load.started_at)}`;
-
-// Every load the daemon has, by furnace, number and start.
-async function knownLoads(api) {
-  const known = new Map();
-  for (const state of ['open', 'ended']) {
-    let cursor = '';
-    do {
-      const page = await api('GET', `/api/v1/loads?state=${state}&limit=100${cursor}`);
-      for (const load of page.loads) known.set(keyOf(load), { id: load.id, state });
-      cursor = page.next_cursor ? `&cursor=${encodeURIComponent(page.next_cursor)}` : '';
-    } while (cursor);
-  }
-  return known;
-}
 
 async function writeNotes(api, entry, state, now_ms) {
   const due = NOTES.filter((note) => now_ms >= Date.parse(entry.body.started_at) + note.after_min * 60000);
@@ -101,8 +47,10 @@ async function actOn(api, entry, known, now_ms) {
   await move(api, entry, state, now_ms);
   // The push signal takes trays out; nobody ends them by hand.
   if (entry.pushed) return;
-  if (now_ms >= Date.parse(entry.ended_at)) {
-    const end = { person: entry.body.person, ended_at: entry.ended_at };
+  // Looked at each time: a plan may shorten a load as well.
+  const end_ms = endOf((await api('GET', `/api/v1/loads/${state.id}`)).definition, entry.ended_at);
+  if (now_ms >= end_ms) {
+    const end = { person: entry.body.person, ended_at: new Date(end_ms).toISOString() };
     await api('POST', `/api/v1/loads/${state.id}/end`, end);
     state.state = 'ended';
     console.log(`Load ${entry.body.name} is out of ${entry.body.furnace}.`);
@@ -144,21 +92,14 @@ function keepClock(file, now) {
 }
 
 async function main() {
-  const chosen = options(process.argv.slice(2));
+  const chosen = options(process.argv.slice(2), ['url', 'schedule'], ['clock-file']);
   const plan = JSON.parse(readFileSync(chosen.schedule, 'utf8'));
   plan.loads.sort((a, b) => Date.parse(a.body.started_at) - Date.parse(b.body.started_at));
   const api = client(chosen.url.replace(/\/$/, ''));
-  let stopped = false;
-  const stop = new AbortController();
-  for (const signal of ['SIGINT', 'SIGTERM']) {
-    process.on(signal, () => {
-      stopped = true;
-      stop.abort();
-    });
-  }
+  const stop = stopSignal();
   let known = null;
   let told = '';
-  while (!stopped) {
+  while (!stop.aborted) {
     try {
       const status = await api('GET', '/api/v1/status');
       known ??= await knownLoads(api);
@@ -170,13 +111,13 @@ async function main() {
         return 0;
       }
     } catch (error) {
-      if (stopped) break;
+      if (stop.aborted) break;
       known = null; // after a restart of the daemon, look again at what it has
       const text = error instanceof Refused ? error.message : `the daemon does not answer (${error.message})`;
       if (text !== told) console.error(`play: ${text}. Trying again.`);
       told = text;
     }
-    await sleep(POLL_MS, undefined, { signal: stop.signal }).catch(() => {});
+    await sleep(POLL_MS, undefined, { signal: stop }).catch(() => {});
   }
   return 0;
 }

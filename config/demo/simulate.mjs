@@ -1,6 +1,9 @@
 // An invented furnace, minute by minute: a heater with a PI controller, the load as one lagging mass, a gas that
 // follows its set point slowly, thermocouples and probes with noise. Enough to look like a log, no more: the
 // figures are plausible, not measured. Deterministic from its seed; no clock, no files.
+//
+// A heater may fail: troubles [{from_min, to_min, holds_degc}] name the minutes of each day in which the furnace
+// cannot hold more than that.
 
 // Small counter-based generator (Weyl sequence through a 32-bit mixer): the same numbers on every machine.
 export function randomSource(seed) {
@@ -24,22 +27,32 @@ export function randomSource(seed) {
 const STEP_MIN = 1 / 6;
 const IDLE = { temperature_degc: 870, carbon_potential_wt_pct: 0.35 }; // empty, hot, lean gas
 
-// Set points at `minute` for loads [{start_min, end_min, segments}], in order of time.
+const DAY_MIN = 1440;
+const SINKS_K_PER_MIN = 0.6; // with part of the heater out; without any it would be 3
+
+// Set points at `minute` for loads [{start_min, end_min, segments, plans}], in order of time. `plans`, where a load
+// has some: [{at_min, from_min, segments}], oldest first; its segments count from at_min, and the controller runs
+// them from from_min on.
 function setPoint(loads, minute) {
   const load = loads.find((one) => minute >= one.start_min && minute < one.end_min);
   if (!load) return { load: null, ...IDLE };
-  let left = minute - load.start_min;
-  for (const segment of load.segments) {
+  const plan = load.plans?.findLast((one) => minute >= one.from_min);
+  const segments = plan?.segments ?? load.segments;
+  let left = minute - (plan?.at_min ?? load.start_min);
+  for (const segment of segments) {
     if (left < segment.duration_min) return { load, ...segment };
     left -= segment.duration_min;
   }
-  return { load, ...load.segments.at(-1) };
+  return { load, ...segments.at(-1) };
 }
 
 // Yields one sample a minute: {minute, temperature_degc, load_temperature_degc | null,
 // carbon_potential_wt_pct, co_fraction}, as the instruments show them (noise included).
 // `arrives_degc`: how hot a load comes in; `gas_kept`: what of the gas is left after the door was open.
-export function* simulateFurnace({ loads, minutes, seed, load_lag_min, load_mass_ratio, arrives_degc = 20, gas_kept = 0.45 }) {
+// `loads` is looked at minute by minute: what is added between two samples counts from then on.
+export function* simulateFurnace({
+  loads, minutes, seed, load_lag_min, load_mass_ratio, arrives_degc = 20, gas_kept = 0.45, troubles = [],
+}) {
   const random = randomSource(seed);
   let furnace = IDLE.temperature_degc;
   let part = 20;
@@ -49,8 +62,10 @@ export function* simulateFurnace({ loads, minutes, seed, load_lag_min, load_mass
   let wave = random.uniform() * 2 * Math.PI;
   let gasWave = random.uniform() * 2 * Math.PI;
   let current = null;
+  let ceiling = Infinity; // what the heater can hold
 
   for (let minute = 0; minute < minutes; minute++) {
+    const trouble = troubles.find((one) => minute % DAY_MIN >= one.from_min && minute % DAY_MIN < one.to_min);
     for (let step = 0; step < 6; step++) {
       const wanted = setPoint(loads, minute + step * STEP_MIN);
       if (wanted.load !== current) {
@@ -61,7 +76,10 @@ export function* simulateFurnace({ loads, minutes, seed, load_lag_min, load_mass
         }
         current = wanted.load;
       }
-      const error = wanted.temperature_degc - furnace;
+      if (!trouble) ceiling = Infinity;
+      else if (ceiling === Infinity) ceiling = Math.max(furnace, trouble.holds_degc);
+      else ceiling = Math.max(ceiling - SINKS_K_PER_MIN * STEP_MIN, trouble.holds_degc);
+      const error = Math.min(wanted.temperature_degc, ceiling) - furnace;
       const heat = Math.min(1, Math.max(0, integral + 0.06 * error));
       if (Math.abs(error) < 30) integral = Math.min(0.8, Math.max(0.1, integral + 0.0025 * error * STEP_MIN));
       const toLoad = current ? (load_mass_ratio / load_lag_min) * (furnace - part) : 0;

@@ -3,7 +3,7 @@ import { spawnSync } from 'node:child_process';
 import { readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { carbonActivity, probeEmf_mV } from '../../config/demo/gas.mjs';
-import { GAP, LATE } from '../../config/demo/generate.mjs';
+import { COLD, GAP, LATE } from '../../config/demo/furnace_logs.mjs';
 import { FURNACES, SOURCE, check, demoDay, expect, finish, temporaryFolder } from './support.mjs';
 
 const START = Date.parse('2026-03-02T00:00:00Z');
@@ -65,8 +65,10 @@ await check('the gap and the late block are where the header of the writer says'
   expect(new Set(rows.map((row) => row.slice(0, 20))).size === 1440, 'a minute is missing or doubled');
 });
 
+const undisturbed = loads.find((one) => one.body.furnace === COLD.furnace && one.start_min >= COLD.to_min);
+
 await check('furnaces hold temperature and carbon potential in the boost as a shop would expect', () => {
-  const entry = loads.find((one) => one.body.furnace === 'batch-5');
+  const entry = undisturbed;
   const [heat, boost] = entry.body.recipe.segments;
   const rows = logs['batch-5'].rows.slice(entry.start_min + heat.duration_min + 60, entry.start_min + heat.duration_min + boost.duration_min);
   const mean = (column) => rows.reduce((sum, row) => sum + Number(row.split(',')[column]), 0) / rows.length;
@@ -77,12 +79,27 @@ await check('furnaces hold temperature and carbon potential in the boost as a sh
 });
 
 await check('the load thermocouple starts cold, lags the furnace and is silent between loads', () => {
-  const entry = loads.find((one) => one.body.furnace === 'batch-5');
+  const entry = undisturbed;
   const at = (minute) => logs['batch-5'].rows[minute].split(',').map(Number);
   expect(logs['batch-5'].rows[entry.start_min - 5].split(',')[2] === '', 'a value between loads');
   expect(at(entry.start_min)[2] < 120, 'the load is hot at once');
   expect(at(entry.start_min + 30)[1] - at(entry.start_min + 30)[2] > 80, 'no lag after half an hour');
   expect(Math.abs(at(entry.start_min + 180)[1] - at(entry.start_min + 180)[2]) < 8, 'still cold after three hours');
+});
+
+await check('the failing heater sinks slowly to what it can hold, while the gas stays', () => {
+  const entry = loads.find((one) => one.body.furnace === COLD.furnace && one.start_min < COLD.from_min);
+  const [heat, boost] = entry.body.recipe.segments;
+  expect(entry.end_min < COLD.to_min && entry.start_min + heat.duration_min < COLD.from_min, 'the trouble is not in its boost');
+  const mean = (minute, column) => logs[COLD.furnace].rows.slice(minute - 5, minute + 5)
+    .reduce((sum, row) => sum + Number(row.split(',')[column]) / 10, 0);
+  expect(Math.abs(mean(COLD.from_min - 10, 1) - boost.temperature_degc) < 3, `${mean(COLD.from_min - 10, 1)} °C before`);
+  // Gas furnaces cool by some tens of kelvin an hour when part of the heating is out: from memory.
+  expect(Math.abs(mean(COLD.from_min + 30, 1) - (boost.temperature_degc - 18)) < 5, `${mean(COLD.from_min + 30, 1)} °C after half an hour`);
+  for (const minute of [COLD.from_min + 80, COLD.from_min + 190]) {
+    expect(Math.abs(mean(minute, 1) - COLD.holds_degc) < 3, `${mean(minute, 1)} °C at ${minute}`);
+    expect(Math.abs(mean(minute, 3) - boost.carbon_potential_wt_pct) < 0.03, `${mean(minute, 3)} % C at ${minute}`);
+  }
 });
 
 finish();

@@ -2,7 +2,7 @@
 // 06:10 of the invented day). The snapshot says `held`, then `planned`, and the result names the stretch.
 // Limits as in plant.h: a reading speaks for 300 s, is held until 600 s, then the recipe is assumed.
 import { Daemon, MINUTE_MS, binary, check, demoDay, expect, finish, iso, replay, temporaryFolder, waitFor } from './support.mjs';
-import { GAP } from '../../config/demo/generate.mjs';
+import { GAP } from '../../config/demo/furnace_logs.mjs';
 
 binary();
 const HOURS = 10;

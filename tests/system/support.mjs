@@ -9,7 +9,8 @@ import { tmpdir } from 'node:os';
 import { dirname, join, resolve } from 'node:path';
 import { setTimeout as sleep } from 'node:timers/promises';
 import { fileURLToPath } from 'node:url';
-import { furnaceLog, pathOf, schedule } from '../../config/demo/generate.mjs';
+import { furnaceLog } from '../../config/demo/furnace_logs.mjs';
+import { pathOf, schedule } from '../../config/demo/generate.mjs';
 
 export { sleep };
 export const SOURCE = resolve(dirname(fileURLToPath(import.meta.url)), '../..');
