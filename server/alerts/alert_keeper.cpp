@@ -17,10 +17,11 @@ constexpr auto longest_pause = std::chrono::milliseconds(1000);
 // Channels, disk and stuck messages are read from disk.
 constexpr auto slow_pause = std::chrono::seconds(20);
 
+// Of equal ones a miss that can still be saved comes first: it is the one that waits for a decision.
 bool more_pressing(const AlertRow& a, const AlertRow& b) {
   const auto rank = [](const AlertRow& row) {
     return std::tuple(row.shelved_until_us.has_value(), -static_cast<int>(severity_from(row.severity)),
-                      row.acknowledged_us.has_value(), -row.id);
+                      row.acknowledged_us.has_value(), row.kind != "projected miss", -row.id);
   };
   return rank(a) < rank(b);
 }
@@ -130,7 +131,8 @@ Findings AlertKeeper::findings(std::int64_t now_us) {
     all.add(judge_furnace(furnace, views, parts_.settings.alerts, now_us));
   for (const auto& view : views) {
     load_names_[view->row.id] = view->row.name;
-    all.add(judge_outlook(*view, parts_.settings.alerts));
+    all.add(judge_outlook(*view, parts_.settings.alerts,
+                          {parts_.settings.outlook.inside_from, parts_.settings.outlook.missed_from}));
     all.add(judge_recipe(*view, parts_.settings.alerts));
     all.add(judge_model(*view, parts_.settings.alerts));
   }

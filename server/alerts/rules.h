@@ -25,7 +25,8 @@ namespace hearthfront::server {
 using AlertSettings = Settings::Alerts;
 
 // "projected miss": nothing is judged without an outlook.
-Findings judge_outlook(const LoadView& view, const AlertSettings& settings);
+Findings judge_outlook(const LoadView& view, const AlertSettings& settings,
+                       const solver::StandingLimits& limits = {});
 // "segment due", "off recipe": the load against its recipe.
 Findings judge_recipe(const LoadView& view, const AlertSettings& settings);
 // "carbide limit", "model out of range": what the model says of its own numbers.

@@ -81,7 +81,8 @@ Situation item_situation(const LoadView& view, std::size_t i, double minutes_lef
 
 }  // namespace
 
-Findings judge_outlook(const LoadView& view, const AlertSettings& settings) {
+Findings judge_outlook(const LoadView& view, const AlertSettings& settings,
+                       const solver::StandingLimits& limits) {
   Findings findings;
   if (!view.outlook || view.outlook->ahead.failed) return findings;
   const LoadOutlook& outlook = *view.outlook;
@@ -104,8 +105,7 @@ Findings judge_outlook(const LoadView& view, const AlertSettings& settings) {
   whole.condition = of_load(view, kind, "");
   whole.at_us = view.result.state_us;
   // Where an item misses its window, that says more than the chance of all: one alert is enough.
-  whole.present =
-      fallen > settings.chance_drop && chance < solver::StandingLimits{}.inside_from && !item_misses;
+  whole.present = fallen > settings.chance_drop && chance < limits.inside_from && !item_misses;
   whole.severity = left < last_chance_min ? Severity::urgent : Severity::warning;
   whole.sentence = "The chance that all items end inside their windows has fallen to " + percent(chance) +
                    " from " + percent(outlook.offered_joint_chance) + " at the start.";

@@ -3,6 +3,7 @@ import { useState } from 'preact/hooks';
 import { ApiProblem, type Snapshot, addNote } from '../api.ts';
 import { Shape } from '../pictures/mark_shape.tsx';
 import { prefer, prefs } from '../prefs.ts';
+import { groupedNotes } from '../note_groups.ts';
 import { clockText, dayClockText, minutesText } from '../words.ts';
 
 const span = (from: string, to: string): string => `${clockText(Date.parse(from))} – ${clockText(Date.parse(to))}`;
@@ -10,8 +11,8 @@ const span = (from: string, to: string): string => `${clockText(Date.parse(from)
 export function ModelNotes({ snapshot }: { snapshot: Snapshot }) {
   return <section class="panel">
     <h2>Model notes</h2>
-    {snapshot.notes.length === 0 ? <p class="nothing">None.</p> : <ul class="list">{snapshot.notes.map((note, i) => <li key={i}>
-      <Shape name="note" /><p><b>{note.kind}</b>{note.item && `, item ${note.item}`}, {span(note.from, note.to)}<br />{note.text}</p></li>)}</ul>}
+    {snapshot.notes.length === 0 ? <p class="nothing">None.</p> : <ul class="list">{groupedNotes(snapshot.notes).map((group) => <li key={group.kind + group.item}>
+      <Shape name="note" /><p><b>{group.kind}</b>{group.item && `, item ${group.item}`}, {span(group.from, group.to)}{group.times > 1 && ` (${group.times} times, ${minutesText(group.minutes)} in all)`}<br />{group.text}</p></li>)}</ul>}
   </section>;
 }
 
