@@ -172,6 +172,55 @@ await check('the definition that comes back starts the same load again', async (
   expect(validate(again), ajv.errorsText(validate.errors));
 });
 
+// Until `ask` gives something; the daemon's own threads are at work meanwhile.
+async function soon(what, ask) {
+  for (let i = 0; i < 100; i++) {
+    const found = await ask();
+    if (found) return found;
+    await new Promise((done) => setTimeout(done, 100));
+  }
+  throw new Error(`${what} did not come in 10 s`);
+}
+
+await check('outlook, trial, proposal and plan of a load whose furnace has fallen silent', async () => {
+  const begin = Date.now() - 80 * MINUTE_MS;
+  const readings = [];
+  for (let m = 0; m < 50; m++)
+    readings.push({ furnace: 'batch-5', channel: 'temperature', time: iso(begin + m * MINUTE_MS), value: 925 }, { furnace: 'batch-5', channel: 'carbon_potential', time: iso(begin + m * MINUTE_MS), value: 1.05 });
+  const taken = await call(daemon, '/api/v1/readings', 'post', '/api/v1/readings', json({ readings }));
+  expect(taken.body.stored === 100, JSON.stringify(taken.body).slice(0, 300));
+  const created = await post('/api/v1/loads', '/api/v1/loads', { ...body, furnace: 'batch-5', name: 'silent', started_at: iso(begin) });
+  expect(created.status === 201, JSON.stringify(created.body));
+  const load = created.body.id;
+  const at = (tail) => [`/api/v1/loads/{load}${tail}`, `/api/v1/loads/${load}${tail}`];
+  const snapshot = await soon('an outlook', async () => {
+    const { body: seen } = await get(...at('/snapshot'));
+    return seen.outlook && seen.band === '5 to 95 %' ? seen : null;
+  });
+  await get(...at('/history'));
+  await get(...at('/result'));
+  const trial = await post(...at('/trial'), { segments: snapshot.rest });
+  expect(trial.status === 200 && Math.abs(trial.body.minutes_more) < 2, JSON.stringify(trial.body).slice(0, 300));
+  const proposal = await post(...at('/proposal'), { asked_chance: 0.5 });
+  expect(proposal.status === 200 && proposal.body.sentence.length > 20, JSON.stringify(proposal.body).slice(0, 300));
+  const plan = { person: 'Test', reason: 'the described plan', expected_revision: proposal.body.revision, segments: proposal.body.segments };
+  const adopted = await post(...at('/plan'), plan);
+  expect(adopted.status === 200 && adopted.body.definition.plans.length === 1, JSON.stringify(adopted.body).slice(0, 300));
+  expect((await post(...at('/plan'), plan)).status === 409, 'a plan for an earlier revision was adopted');
+  await soon('the plan', async () => (await get(...at('/snapshot'))).body.plans.length === 1);
+});
+
+await check('alerts and what people say to them', async () => {
+  const alert = await soon('an alert', async () => (await get('/api/v1/alerts', '/api/v1/alerts?state=active')).body.alerts.find((each) => each.kind === 'no reading'));
+  const at = (tail) => [`/api/v1/alerts/{alert}${tail}`, `/api/v1/alerts/${alert.id}${tail}`];
+  expect((await get(...at(''))).body.events.length > 0, 'no event');
+  expect((await post(...at('/notes'), { person: 'Test', text: 'asked the electrician' })).status === 200, 'note');
+  expect((await post(...at('/acknowledge'), { person: 'Test' })).body.acknowledged.person === 'Test', 'acknowledged');
+  const shelved = await post(...at('/shelve'), { person: 'Test', reason: 'the logger is being mended', until: iso(Date.now() + 30 * MINUTE_MS) });
+  expect(shelved.body.shelved.reason === 'the logger is being mended', JSON.stringify(shelved.body));
+  expect((await post(...at('/unshelve'), { person: 'Test' })).body.shelved === null, 'unshelved');
+});
+
 await check('where alerts are sent', async () => {
   expect((await get('/api/v1/targets', '/api/v1/targets')).body.targets.length === 1, 'one target');
   const test = await post('/api/v1/targets/{target}/test', '/api/v1/targets/hook/test', { person: 'Test' });
