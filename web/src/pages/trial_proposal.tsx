@@ -47,7 +47,7 @@ function Found({ proposal, snapshot, item, again, take, used }: FoundProps) {
     <p class="sentence"><Shape name={found ? 'inside' : 'not delivered'} /><span>{found ? withUnits(proposal.sentence, units)
       : <><b>No plan reaches {percentText(proposal.asked_chance)}.</b> {withUnits(proposal.reason ?? proposal.sentence, units)}</>}</span></p>
     {!found && segments && <p>The best there is: {withUnits(proposal.sentence, units)}</p>}
-    {proposal.changes.length > 0 && <ul class="changes">{proposal.changes.map((each) => <li key={each}>{withUnits(each, units)}</li>)}</ul>}
+    {proposal.changes.length > 1 && <ul class="changes">{proposal.changes.map((each) => <li key={each}>{withUnits(each, units)}</li>)}</ul>}
     {(proposal.minutes_more !== null || confirmed) && <p class="cost">
       {proposal.minutes_more !== null && <b>{moreMinutesText(proposal.minutes_more)}</b>}
       {confirmed && <span>confirmed on {confirmed.members.toLocaleString('en')} further draws: {percentText(confirmed.joint_chance)}</span>}
