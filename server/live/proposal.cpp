@@ -221,24 +221,24 @@ Proposal propose(const OutlookBase& base, const ProposalAsk& ask) {
   if (!proposal.outlook) throw std::runtime_error("the plan found cannot be projected: the model failed");
   proposal.minutes_more = end_min(*proposal.outlook) - end_min(*proposal.present);
   proposal.changes = changes_between(unparted, proposal.rest);
-  const double before = 100 * proposal.present->ahead.end.joint_chance;
   if (!proposal.found) {
     if (found.end == solver::SearchEnd::found) found.end = solver::SearchEnd::too_wide;
     found.joint_chance = proposal.confirmed_joint_chance;
     proposal.reason = reason_of(base, found);
-    proposal.sentence = "No schedule reaches " + words("%.0f %%. ", 100 * ask.asked_chance) + proposal.reason;
-    return proposal;
   }
+  const double before = 100 * proposal.present->ahead.end.joint_chance;
   const std::string cost = std::fabs(proposal.minutes_more) < 0.5
                                ? "ends as planned"
                                : words("ends %.0f min %s", std::fabs(proposal.minutes_more),
                                        proposal.minutes_more > 0 ? "later" : "earlier");
-  proposal.sentence =
-      proposal.changes.empty()
-          ? "The present plan already reaches it: " + words("chance %.0f %%.", before)
-          : joined(proposal.changes) + ". " +
-                words("Chance %.0f %% -> %.0f %%, ", before, 100 * proposal.confirmed_joint_chance) + cost +
-                ".";
+  if (!proposal.changes.empty())
+    proposal.sentence = joined(proposal.changes) + ". " +
+                        words("Chance %.0f %% -> %.0f %%, ", before, 100 * proposal.confirmed_joint_chance) +
+                        cost + ".";
+  else if (proposal.found)
+    proposal.sentence = words("The present plan already reaches it: chance %.0f %%.", before);
+  else
+    proposal.sentence = words("The present plan, with a chance of %.0f %%.", before);
   return proposal;
 }
 

@@ -12,10 +12,10 @@ namespace hearthfront::server {
 
 struct Proposal {
   bool found = false;
-  std::string sentence;                                 // what to do and what it brings, or why there is none
-  std::string reason;                                   // empty where found
-  std::vector<std::string> changes;                     // "boost: 40 min longer", ...
-  std::vector<Segment> rest;                            // the best there is; whole minutes
+  std::string sentence;              // what `rest` does and what it brings, also where that is not enough
+  std::string reason;                // why nothing reaches the asked chance; empty where found
+  std::vector<std::string> changes;  // "boost: 40 min longer", ...
+  std::vector<Segment> rest;         // the best there is; whole minutes
   std::shared_ptr<const LoadOutlook> present, outlook;  // along the present plan, and along `rest`
   double minutes_more = 0;
   double confirmed_joint_chance = 0;  // on solver::confirming_members others

@@ -179,7 +179,8 @@ void bench_proposal() {
     const double t2 = thread_seconds();
     const Proposal proposal = propose(*start.base, {asked, {}});
     std::printf("  a proposal for %.2f takes %.0f ms (asked: 1 s): %s\n", asked,
-                1e3 * (thread_seconds() - t2), proposal.sentence.c_str());
+                1e3 * (thread_seconds() - t2),
+                (proposal.found ? proposal.sentence : proposal.reason).c_str());
   }
 }
 
