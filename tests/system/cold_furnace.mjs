@@ -99,6 +99,7 @@ await check('with it failed a miss is projected more than an hour before the end
   if (miss === null) return;
   miss = await waitFor('the alert', 15000, projectedMiss);
   expect(minuteOf(miss.since) <= entry.end_min - 60, `since ${miss.since}`);
+  console.log(`     ${miss.sentence} (since ${miss.since}, load ends ${entry.ended_at})`);
   expect(miss.advice && minuteOf(shown.now) <= entry.end_min - 60, JSON.stringify(miss));
 });
 
@@ -151,6 +152,7 @@ await check('within 20 minutes of furnace time the miss is gone', async () => {
       const alert = await daemon.must('GET', `/api/v1/alerts/${miss.id}`);
       return alert.state === 'past' && alert;
     });
+    console.log(`     adopted ${plan.at}, cleared ${past.cleared_at}`);
     expect(Date.parse(past.cleared_at) <= limit_ms, `cleared ${past.cleared_at}, adopted ${plan.at}`);
   }
   const shown = await outlookFrom('the furnace on the plan', adopted_min + 10);
