@@ -55,7 +55,8 @@ async function stop() {
   players = [];
   for (const player of leaving) player.kill('SIGTERM');
   const ends = await Promise.all(leaving.map((player) => player.over));
-  expect(ends.every((end) => end.endsWith('with 0')), ends.join('; '));
+  // SIGTERM itself ends one that had not yet begun to listen.
+  expect(ends.every((end) => /with (0|SIGTERM)$/.test(end)), ends.join('; '));
   await daemon.stop();
 }
 process.on('exit', () => players.forEach((player) => player.kill('SIGKILL')));
@@ -98,17 +99,21 @@ await check('with it failed a miss is projected more than an hour before the end
   if (miss === null) return;
   miss = await waitFor('the alert', 15000, projectedMiss);
   expect(minuteOf(miss.since) <= entry.end_min - 60, `since ${miss.since}`);
+  console.log(`     ${miss.sentence} (since ${miss.since}, load ends ${entry.ended_at})`);
   expect(miss.advice && minuteOf(shown.now) <= entry.end_min - 60, JSON.stringify(miss));
 });
 
 let proposal;
 await check('the proposal finds a plan that a person can adopt before the next load comes', async () => {
-  proposal = await waitFor('a proposal', 30000, async () => {
+  // A plan that the confirming members see a hair below 90 % is not found; a minute later another one is.
+  proposal = await waitFor('a proposal', 40000, async () => {
     const answer = await daemon.request('POST', `${await base()}/proposal`, { asked_chance: 0.9 });
     if (answer.status !== 200) throw new Error(answer.text);
+    if (!answer.json.found) throw new Error(answer.json.sentence);
     return answer.json;
   });
-  expect(proposal.found && proposal.confirmed.joint_chance >= 0.9, JSON.stringify(proposal).slice(0, 800));
+  console.log(`     ${proposal.sentence}`);
+  expect(proposal.confirmed.joint_chance >= 0.9, JSON.stringify(proposal.confirmed));
   const next = own[own.indexOf(entry) + 1];
   const room_min = next.start_min - entry.end_min;
   expect(proposal.minutes_more > 15 && proposal.minutes_more < room_min, `${proposal.minutes_more} min longer, ${room_min} are free`);
@@ -147,6 +152,7 @@ await check('within 20 minutes of furnace time the miss is gone', async () => {
       const alert = await daemon.must('GET', `/api/v1/alerts/${miss.id}`);
       return alert.state === 'past' && alert;
     });
+    console.log(`     adopted ${plan.at}, cleared ${past.cleared_at}`);
     expect(Date.parse(past.cleared_at) <= limit_ms, `cleared ${past.cleared_at}, adopted ${plan.at}`);
   }
   const shown = await outlookFrom('the furnace on the plan', adopted_min + 10);
@@ -154,8 +160,16 @@ await check('within 20 minutes of furnace time the miss is gone', async () => {
   expect(shown.outlook.joint_chance >= 0.8, `joint chance ${shown.outlook.joint_chance}`);
 });
 
-await check('the logger goes on where it was, on the plan', async () => {
+await check('an hour later, the furnace as cold as before, no miss is projected', async () => {
   await waitFor('the logger to follow', 10000, () => readFileSync(join(folder, 'logger.log'), 'utf8').includes('adopted plan'));
+  await stop();
+  await begin(adopted_min + 60, 60);
+  const shown = await outlookFrom('an outlook', adopted_min + 60, (one) => one.outlook.offset.temperature_k < -20);
+  console.log(`     joint chance ${shown.outlook.joint_chance.toFixed(2)}`);
+  expect(shown.outlook.joint_chance >= 0.8 && !(await projectedMiss()), `joint chance ${shown.outlook.joint_chance}`);
+});
+
+await check('the logger goes on where it was, on the plan', async () => {
   await stop();
   const before = written();
   await begin(adopted_min + plan.segments.reduce((sum, one) => sum + one.duration_min, 0) - 6, 120);
