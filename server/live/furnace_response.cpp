@@ -9,7 +9,7 @@ namespace {
 // Common practice, no source.
 constexpr double looked_back_min = 90, mean_of_min = 30, followed_after_min = 25, trend_over_min = 12;
 constexpr double heating_k_per_min = 0.3, near_set_k = 5;
-constexpr double steady_k = 8, steady_wt_pct = 0.06;
+constexpr double steady_k = 8;
 constexpr std::size_t least_points = 8;
 
 double minutes(std::int64_t span_us) {
@@ -29,11 +29,22 @@ bool measured(const RunPoint& point) {
          point.input.carbon_potential_basis == Basis::measured;
 }
 
-// Whether a run before asked for the same: then there was nothing to follow.
-bool same(const SetPoints& set, const SegmentRun& before, const LoadDefinition& def) {
-  const Segment& segment = def.recipe_of(before.plan).segments[before.index];
-  return std::fabs(set.temperature_degc - segment.temperature_degc) < 2 &&
-         std::fabs(set.carbon_potential_wt_pct - segment.carbon_potential_wt_pct) < 0.015;
+// Shown minus set over the newest minutes in which the furnace had had time to follow.
+struct SteadyOffset {
+  double sum = 0;
+  std::size_t points = 0;
+  void add(double shown, double set, double lattice_s) {
+    if (static_cast<double>(points) * lattice_s >= mean_of_min * 60) return;
+    sum += shown - set;
+    ++points;
+  }
+  double mean() const { return points < least_points ? 0 : sum / static_cast<double>(points); }
+};
+
+// Whether the furnace had had time to follow a set point: it is that of the run before, or it stands for
+// long.
+bool had_time(double elapsed_min, double set, double set_before, double alike) {
+  return elapsed_min >= followed_after_min || std::fabs(set - set_before) < alike;
 }
 
 struct Trend {
@@ -56,8 +67,7 @@ solver::FurnaceResponse furnace_response(const LiveLoad& load) {
   response.carbon_potential_wt_pct = present.carbon_potential_wt_pct;
 
   bool newest = true;
-  double sum_k = 0, sum_wt_pct = 0;
-  std::size_t points = 0;
+  SteadyOffset temperature, carbon;
   Trend trend;
   auto run = place.runs().rbegin();
   each_point_back(load, [&](const RunPoint& point) {
@@ -81,19 +91,19 @@ solver::FurnaceResponse furnace_response(const LiveLoad& load) {
     while (std::next(run) != place.runs().rend() && run->from_us > point.from_us) ++run;
     const Recipe& recipe = def.recipe_of(run->plan);
     const double elapsed_min = minutes(point.from_us - run->from_us);
-    const SetPoints set = set_points(recipe, run->index, elapsed_min);
     if (elapsed_min < recipe.segments[run->index].ramp_min) return true;
-    if (elapsed_min < followed_after_min &&
-        !(std::next(run) != place.runs().rend() && same(set, *std::next(run), def)))
-      return true;
-    // On its way from elsewhere it shows no offset yet.
-    if (std::fabs(point.input.furnace_temperature_degc - response.temperature_degc) > steady_k ||
-        std::fabs(point.input.carbon_potential_wt_pct - response.carbon_potential_wt_pct) > steady_wt_pct)
-      return true;
-    if (static_cast<double>(points) * def.lattice_s >= mean_of_min * 60) return false;
-    sum_k += point.input.furnace_temperature_degc - set.temperature_degc;
-    sum_wt_pct += point.input.carbon_potential_wt_pct - set.carbon_potential_wt_pct;
-    ++points;
+    const SetPoints set = set_points(recipe, run->index, elapsed_min);
+    // Before the first run there was nothing to follow from.
+    SetPoints before{-1e9, -1e9};
+    if (const auto earlier = std::next(run); earlier != place.runs().rend())
+      before = end_points(def.recipe_of(earlier->plan).segments[earlier->index]);
+    const double shown_degc = point.input.furnace_temperature_degc;
+    // One that heated or cooled by more than control does was on its way.
+    if (had_time(elapsed_min, set.temperature_degc, before.temperature_degc, 2) &&
+        std::fabs(shown_degc - response.temperature_degc) <= steady_k)
+      temperature.add(shown_degc, set.temperature_degc, def.lattice_s);
+    if (had_time(elapsed_min, set.carbon_potential_wt_pct, before.carbon_potential_wt_pct, 0.015))
+      carbon.add(point.input.carbon_potential_wt_pct, set.carbon_potential_wt_pct, def.lattice_s);
     return true;
   });
 
@@ -101,10 +111,8 @@ solver::FurnaceResponse furnace_response(const LiveLoad& load) {
   const bool heating =
       rise_k_per_min > heating_k_per_min && response.temperature_degc < present.temperature_degc - near_set_k;
   if (heating) response.fastest_rise_k_per_s = std::clamp(rise_k_per_min, 0.3, 20.0) / 60.0;
-  if (!heating && points >= least_points) {
-    response.offset_k = sum_k / static_cast<double>(points);
-    response.offset_carbon_potential_wt_pct = sum_wt_pct / static_cast<double>(points);
-  }
+  if (!heating) response.offset_k = temperature.mean();
+  response.offset_carbon_potential_wt_pct = carbon.mean();
   return response;
 }
 

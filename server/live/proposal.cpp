@@ -212,8 +212,8 @@ Proposal propose(const OutlookBase& base, const ProposalAsk& ask) {
     proposal.found =
         found.end == solver::SearchEnd::found && proposal.confirmed_joint_chance >= ask.asked_chance;
     if (proposal.found || found.end != solver::SearchEnd::found) break;
-    limits.asked_chance =
-        std::min(0.995, limits.asked_chance + ask.asked_chance - proposal.confirmed_joint_chance + 0.003);
+    limits.asked_chance = std::min(0.995, limits.asked_chance + ask.asked_chance -
+                                              proposal.confirmed_joint_chance + 0.003 * (1 + round));
     limits.nearby = true;
     plan = found.plan;
   }

@@ -34,10 +34,6 @@ bool reads_like(const FurnaceSight& sight, const SetPoints& set) {
          std::fabs(*sight.carbon_potential_wt_pct - set.carbon_potential_wt_pct) <= near_wt_pct;
 }
 
-SetPoints end_points(const Segment& segment) {
-  return {segment.temperature_degc, segment.carbon_potential_wt_pct};
-}
-
 void since(std::optional<std::int64_t>& mark, bool holds, std::int64_t from_us) {
   if (!holds)
     mark.reset();
@@ -46,6 +42,10 @@ void since(std::optional<std::int64_t>& mark, bool holds, std::int64_t from_us) 
 }
 
 }  // namespace
+
+SetPoints end_points(const Segment& segment) {
+  return {segment.temperature_degc, segment.carbon_potential_wt_pct};
+}
 
 SetPoints set_points(const Recipe& recipe, std::size_t index, double elapsed_min) {
   const Segment& segment = recipe.segments[index];

@@ -32,6 +32,7 @@ struct SegmentRun {
   std::size_t plan = 0;  // which recipe `index` counts in: LoadDefinition::recipe_of
 };
 
+SetPoints end_points(const Segment& segment);  // after its ramp
 // Set points of segment `index`, `elapsed_min` into it, its ramp included.
 SetPoints set_points(const Recipe& recipe, std::size_t index, double elapsed_min);
 

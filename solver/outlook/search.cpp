@@ -83,13 +83,18 @@ class Search {
     return 2 * sum + 6 * 3600;
   }
 
+  // A furnace that runs below its set point holds less carbon without carbides or soot.
+  PotentialCeiling ceiling_in(const PlannedSegment& segment) const {
+    return potential_ceiling(items_, segment.temperature_degc + std::min(0.0, furnace_.offset_k), limits_);
+  }
+
   // Of one control, as long as the segment's other values stand.
   double high(const Control& control, const PlannedSegment& segment) const {
     switch (control.kind) {
       case Control::Kind::duration:
         return 1e7;
       case Control::Kind::carbon_potential:
-        return potential_ceiling(items_, segment.temperature_degc, limits_).carbon_potential_wt_pct;
+        return ceiling_in(segment).carbon_potential_wt_pct;
       case Control::Kind::temperature:
         return limits_.highest_temperature_degc;
     }
@@ -116,8 +121,7 @@ class Search {
 
   void fit_under_ceiling(std::vector<PlannedSegment>& plan, std::size_t i) const {
     if (!potential_is_free(i)) return;
-    const double ceiling =
-        potential_ceiling(items_, plan[i].temperature_degc, limits_).carbon_potential_wt_pct;
+    const double ceiling = ceiling_in(plan[i]).carbon_potential_wt_pct;
     if (plan[i].carbon_potential_wt_pct > ceiling)
       plan[i].carbon_potential_wt_pct = std::floor(ceiling * 100 + 1e-9) / 100;
   }
@@ -251,7 +255,7 @@ class Search {
     for (const Control& control : controls_) {
       if (control.kind != Control::Kind::carbon_potential) continue;
       const PlannedSegment& segment = result.plan[control.segment];
-      const PotentialCeiling ceiling = potential_ceiling(items_, segment.temperature_degc, limits_);
+      const PotentialCeiling ceiling = ceiling_in(segment);
       const ItemOutlook& item = end.items[result.item];
       const bool poor = item.surface_carbon.below > telling && item.surface_carbon.above < telling;
       if (segment.carbon_potential_wt_pct < ceiling.carbon_potential_wt_pct - 0.011 || !poor) continue;

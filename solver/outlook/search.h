@@ -28,7 +28,7 @@ struct SearchLimits {
   bool nearby = false;  // the plan given is nearly the one: look around it only
 };
 
-// The highest carbon potential that a segment may have: furnace, soot (activity 0.95, common practice) and
+// The highest carbon potential that a segment may have at a furnace temperature: furnace, soot (activity 0.95, common practice) and
 // carbide (98 % of what the items' steels hold); and which of them it is.
 enum class Ceiling { furnace, soot, carbide };
 struct PotentialCeiling {
