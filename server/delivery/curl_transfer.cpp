@@ -74,19 +74,35 @@ void CurlTransfer::begin(const std::string& url, const std::string& protocol, in
   set(CURLOPT_OPENSOCKETDATA, static_cast<void*>(this));
   set(CURLOPT_CLOSESOCKETFUNCTION, &CurlTransfer::on_close);
   set(CURLOPT_CLOSESOCKETDATA, static_cast<void*>(this));
+  set(CURLOPT_NOPROGRESS, 0L);
+  set(CURLOPT_XFERINFOFUNCTION, &CurlTransfer::on_progress);
+  set(CURLOPT_XFERINFODATA, static_cast<void*>(this));
 }
 
 // Sockets are kept account of, so that a stop request can cut them.
 curl_socket_t CurlTransfer::on_open(void* self, curlsocktype, curl_sockaddr* address) {
   const int made = socket(address->family, address->socktype | SOCK_CLOEXEC, address->protocol);
   if (made < 0) return CURL_SOCKET_BAD;
-  static_cast<CurlTransfer*>(self)->sockets_.push_back(made);
+  auto& transfer = *static_cast<CurlTransfer*>(self);
+  const std::scoped_lock lock(transfer.sockets_mutex_);
+  transfer.sockets_.push_back(made);
   return made;
 }
 
 int CurlTransfer::on_close(void* self, curl_socket_t socket) {
-  std::erase(static_cast<CurlTransfer*>(self)->sockets_, socket);
+  auto& transfer = *static_cast<CurlTransfer*>(self);
+  const std::scoped_lock lock(transfer.sockets_mutex_);
+  std::erase(transfer.sockets_, socket);
   return close(socket);
+}
+
+void CurlTransfer::cut() {
+  const std::scoped_lock lock(sockets_mutex_);
+  for (const curl_socket_t each : sockets_) shutdown(each, SHUT_RDWR);
+}
+
+int CurlTransfer::on_progress(void* self, curl_off_t, curl_off_t, curl_off_t, curl_off_t) {
+  return static_cast<CurlTransfer*>(self)->stop_.stop_requested() ? 1 : 0;
 }
 
 void CurlTransfer::upload(std::string text) {
@@ -103,6 +119,10 @@ CurlTransfer::Ended CurlTransfer::run(const std::stop_token& stop) {
   answer_.clear();
   lines_.clear();
   Ended ended;
+  // The library waits inside itself for a mail server's last answer, and for its leave: there only a cut
+  // socket and the progress function reach it.
+  stop_ = stop;
+  const std::stop_callback cut_at_once(stop, [this] { cut(); });
   if (curl_multi_add_handle(multi_, easy_) != CURLM_OK) throw std::runtime_error("libcurl takes no transfer");
   int running = 1;
   while (running != 0 && !ended.stopped) {
@@ -115,12 +135,13 @@ CurlTransfer::Ended CurlTransfer::run(const std::stop_token& stop) {
     }
     ended.stopped = stop.stop_requested() && running != 0;
   }
-  // Or the library would take its leave of a mail server that is silent, and wait for the answer.
-  if (ended.stopped)
-    for (const curl_socket_t each : sockets_) shutdown(each, SHUT_RDWR);
+  // Also a socket that was opened since.
+  if (ended.stopped) cut();
   int left = 0;
   while (const CURLMsg* message = curl_multi_info_read(multi_, &left))
     if (message->msg == CURLMSG_DONE) ended.code = message->data.result;
+  // What the cut did to it is no answer of the other side.
+  if (stop.stop_requested() && ended.code != CURLE_OK) ended.stopped = true;
   curl_easy_getinfo(easy_, CURLINFO_RESPONSE_CODE, &ended.status);
   curl_off_t retry_after = 0;
   curl_easy_getinfo(easy_, CURLINFO_RETRY_AFTER, &retry_after);

@@ -6,6 +6,7 @@
 
 #include <cstddef>
 #include <memory>
+#include <mutex>
 #include <stop_token>
 #include <string>
 #include <string_view>
@@ -62,12 +63,16 @@ class CurlTransfer {
   static std::size_t on_upload(char* into, std::size_t size, std::size_t count, void* self);
   static curl_socket_t on_open(void* self, curlsocktype purpose, curl_sockaddr* address);
   static int on_close(void* self, curl_socket_t socket);
+  static int on_progress(void* self, curl_off_t, curl_off_t, curl_off_t, curl_off_t);
+  void cut();  // every open socket; any thread
 
   CURL* easy_ = nullptr;
   CURLM* multi_ = nullptr;
   char words_[CURL_ERROR_SIZE] = "";
   std::string upload_, answer_;
+  std::mutex sockets_mutex_;            // guards sockets_
   std::vector<curl_socket_t> sockets_;  // open ones, at most a few
+  std::stop_token stop_;                // of the transfer under way
   std::size_t uploaded_ = 0, answer_bytes_ = 0;
   std::vector<std::string> lines_;
 };
