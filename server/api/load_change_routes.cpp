@@ -66,6 +66,8 @@ void Api::refuse_ended(const FoundLoad& found) const {
 
 Response Api::changed(const FoundLoad& found, const LoadDefinition& load, storage::AuditRow audit,
                       bool cancelled) {
+  // What cannot be read again must never be stored: not the load nor its line could go on.
+  as_stored(load);
   storage::LoadRow row = row_of(load);
   row.id = found.row.id;
   row.cancelled = cancelled;
@@ -132,7 +134,8 @@ Response Api::correct_load(const Request& request) {
     if (!plant.furnace(copy.id)) plant.furnaces.push_back(copy);
   LoadDefinition load = read_load_body(with_rework(wanted.dump()), plant);
   // Adopted plans are acts of people; a correction that says nothing of them leaves them.
-  if (!wanted.contains("plans")) load.plans = found.definition->plans;
+  if (!wanted.contains("plans") || wanted["plans"].is_null()) load.plans = found.definition->plans;
+  if (load.ended_us) load.end_at(*load.ended_us);
   check_times(load);
   return changed(found, load,
                  {parts_.clock.now_us(), person, "correct load", "", "", Json{{"reason", reason}}.dump()});
@@ -183,7 +186,7 @@ Response Api::cancel_load(const Request& request) {
   if (found.row.cancelled) refuse_ended(found);
   LoadDefinition load = *found.definition;
   const std::int64_t now = parts_.clock.now_us();
-  load.ended_us = load.ended_us.value_or(std::max(now, load.last_place().from_us + 1));
+  if (!load.ended_us) load.end_at(std::max(now, load.last_place().from_us + 1));
   return changed(found, load, {now, person, "cancel load", "", "", Json{{"reason", reason}}.dump()}, true);
 }
 

@@ -131,7 +131,7 @@ Response Api::end_load(const Request& request) {
                       ") and not in the future; it is " + format_time(now) + " now.",
                   "ended_at"};
   LoadDefinition load = *found.definition;
-  load.ended_us = ended;
+  load.end_at(ended);
   if (load.last_place().from_us >= ended)
     throw Problem{422, invalid_request, "The end cannot be right",
                   "ended_at: the load moved at " + format_time(load.last_place().from_us) +

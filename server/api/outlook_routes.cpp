@@ -22,6 +22,19 @@ Problem busy() {
           "Other trials are still being worked out. Nothing was changed; try again in a few seconds.", ""};
 }
 
+void refuse_unknown_items(const std::vector<Segment>& segments, const LoadDefinition& load) {
+  for (std::size_t i = 0; i < segments.size(); ++i) {
+    const auto& until = segments[i].until;
+    if (!until || until->item.empty() ||
+        std::any_of(load.items.begin(), load.items.end(),
+                    [&](const Item& item) { return item.name == until->item; }))
+      continue;
+    const std::string path = "segments[" + std::to_string(i) + "].until.item";
+    throw Problem{422, invalid_request, "The segment ends by an item that is not there",
+                  path + ": the load has no item \"" + until->item + "\".", path};
+  }
+}
+
 }  // namespace
 
 void Api::add_outlook_routes() {
@@ -60,6 +73,7 @@ Response Api::trial(const Request& request) {
   const std::vector<Segment> segments = read_segments(fields, "segments");
   fields.finish();
   const auto view = view_with_outlook(found);
+  refuse_unknown_items(segments, *view->result.definition);
   return one_of_few([&] {
     const auto outlook = make_outlook(*view->outlook_base, segments, standing_limits());
     if (!outlook)
@@ -109,11 +123,10 @@ Response Api::adopt_plan(const Request& request) {
   const std::int64_t lattice_us = std::llround(load.lattice_s * 1e6);
   plan.from_us =
       load.started_us + std::max<std::int64_t>(0, (now - load.started_us) / lattice_us) * lattice_us;
-  // Two plans of one minute: the later one is meant.
-  if (!load.plans.empty() && load.plans.back().from_us >= plan.from_us) load.plans.pop_back();
+  // Two plans of one minute, or a clock that was set back: the later one is meant.
+  while (!load.plans.empty() && load.plans.back().from_us >= plan.from_us) load.plans.pop_back();
   load.plans.push_back(plan);
-  // Read back as it will be stored, so that what cannot be read again is never stored.
-  load = read_stored_definition(stored_definition(load));
+  load = as_stored(load);
   return changed(found, load,
                  {now, plan.person, "adopt plan", "", "",
                   Json{{"reason", plan.reason}, {"segments", rest_json(plan.recipe.segments)}}.dump()});

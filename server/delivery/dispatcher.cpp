@@ -28,15 +28,19 @@ Dispatcher::~Dispatcher() {
 void Dispatcher::start() {
   storage::Reader reader(store_.path());
   for (const storage::TargetState& known : reader.targets()) {
-    if (known.waiting == 0 || find(known.target) != nullptr) continue;
+    if (known.waiting + known.stuck == 0 || find(known.target) != nullptr) continue;
     const std::string why = "the settings no longer have a target of this name";
+    // Stuck ones too: nobody could have them tried again, and that they are stuck would be said for ever.
+    if (known.stuck > 0)
+      store_.retry_stuck(known.target,
+                         {clock_.now_us(), "Settings", "give up target", "target " + known.target, "", ""});
     for (auto rows = reader.outbox_waiting(known.target, 1000); !rows.empty();
          rows = reader.outbox_waiting(known.target, 1000))
       for (const storage::OutboxRow& row : rows)
         store_.note_delivery(
             {row.id, storage::DeliveryState::dropped, row.attempts, row.next_try_us, {}, why});
     log_warn("messages to a target were given up",
-             {{"target", known.target}, {"messages", known.waiting}, {"what", why}});
+             {{"target", known.target}, {"messages", known.waiting + known.stuck}, {"what", why}});
   }
   for (const DeliveryTarget& target : targets_) {
     if (const std::string wrong = fault(target); !wrong.empty())

@@ -14,9 +14,14 @@ namespace hearthfront::server {
 // Throws Problem: broken-json, invalid-load (with the member), unknown-furnace, unknown-steel.
 LoadDefinition read_load_body(std::string_view body, const Plant& plant);
 
-// The stored copy, and back. The copy holds everything; no plant is needed.
+// The stored copy, and back. The copy holds everything; no plant is needed. Throws std::runtime_error where
+// it cannot be read: to those who run loads that is a broken load, no answer to a client.
 std::string stored_definition(const LoadDefinition& load);
 LoadDefinition read_stored_definition(std::string_view stored);
+
+// As it will be read back once it is stored. Throws Problem where it could not be: to be asked before a
+// change is stored.
+LoadDefinition as_stored(const LoadDefinition& load);
 
 // The body again, with every default filled in, for clients (as JSON text).
 std::string load_body(const LoadDefinition& load);

@@ -1,6 +1,7 @@
 #include <algorithm>
 #include <cmath>
 #include <set>
+#include <stdexcept>
 
 #include "server/base/time_text.h"
 #include "server/live/definition_fields.h"
@@ -164,7 +165,9 @@ LoadDefinition read_load_body(std::string_view body, const Plant& plant) {
   return read_load(parse_body(body), plant);
 }
 
-LoadDefinition read_stored_definition(std::string_view stored) {
+namespace {
+
+LoadDefinition read_copy(std::string_view stored) {
   const Json json = Json::parse(stored.begin(), stored.end());
   Plant copy;
   if (json.contains("furnace")) copy.furnaces.push_back(read_furnace_copy(json.at("furnace")));
@@ -173,6 +176,20 @@ LoadDefinition read_stored_definition(std::string_view stored) {
   LoadDefinition load = read_load(json.at("load"), copy);
   load.model_version = json.at("model_version");
   return load;
+}
+
+}  // namespace
+
+LoadDefinition read_stored_definition(std::string_view stored) {
+  try {
+    return read_copy(stored);
+  } catch (const Problem& problem) {
+    throw std::runtime_error("the stored load cannot be read: " + problem.detail);
+  }
+}
+
+LoadDefinition as_stored(const LoadDefinition& load) {
+  return read_copy(stored_definition(load));
 }
 
 }  // namespace hearthfront::server

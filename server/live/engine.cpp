@@ -105,6 +105,7 @@ void Engine::run() {
       parts_.metrics.add(Total::engine_failures);
       reader.reset();
       tracked_.clear();
+      members_behind_ = false;  // or the next try would come without a pause
       loads_dirty_ = true;
     }
     ++rounds_;

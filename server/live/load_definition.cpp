@@ -38,6 +38,11 @@ solver::Section ItemSection::in_metres() const {
   return {shape, reach_mm() * 1e-3, bore_diameter_mm / 2 * 1e-3};
 }
 
+void LoadDefinition::end_at(std::int64_t time_us) {
+  ended_us = time_us;
+  std::erase_if(plans, [&](const AdoptedPlan& plan) { return plan.from_us >= time_us; });
+}
+
 const Furnace* LoadDefinition::furnace(std::string_view id) const {
   for (const Furnace& each : furnaces)
     if (each.id == id) return &each;

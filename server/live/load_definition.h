@@ -141,6 +141,9 @@ struct LoadDefinition {
   std::vector<MaskSpan> masks;
   std::string model_version;
 
+  // Plans from then on never came into force and are dropped.
+  void end_at(std::int64_t time_us);
+
   // 0: the recipe that the load began with; n: the n-th adopted plan.
   const Recipe& recipe_of(std::size_t plan) const { return plan == 0 ? recipe : plans[plan - 1].recipe; }
   const Furnace& first_furnace() const { return furnaces.front(); }

@@ -45,9 +45,11 @@ std::vector<Segment> rest_of(const LiveLoad& load) {
   first.duration_min = place.segment_left_min(recipe, load.state_us());
   first.ramp_min = std::clamp(first.ramp_min - elapsed_min, 0.0, first.duration_min);
   if (first.until) first.longest_min = std::max(first.duration_min, first.longest_min - elapsed_min);
-  // A segment that is over, and that the furnace has only not left yet, is nobody's plan any more.
+  // A segment that is over, and that the furnace has only not left yet, is nobody's plan any more. One that
+  // waits for its `until` is not over with its estimate.
   constexpr double over_min = 0.5;
-  if (rest.size() > 1 && first.duration_min < over_min) rest.erase(rest.begin());
+  const bool waits = first.until && first.longest_min >= over_min;
+  if (rest.size() > 1 && first.duration_min < over_min && !waits) rest.erase(rest.begin());
   return rest;
 }
 
@@ -164,6 +166,14 @@ std::shared_ptr<LoadOutlook> make_outlook(const OutlookBase& base, const std::ve
   outlook->ends_us = base.at_us + us(outlook->ahead.end.at_s);
   outlook->best_us = base.at_us + us(outlook->ahead.best_at_s);
   outlook->rest = rest;
+  // To people the length of a segment that waits is what is projected, not what the recipe once guessed.
+  double before_s = 0;
+  for (std::size_t i = 0; i < outlook->rest.size(); ++i) {
+    Segment& segment = outlook->rest[i];
+    if (segment.until) segment.duration_min = (outlook->ahead.segment_ends_s[i] - before_s) / 60;
+    if (segment.until) segment.ramp_min = std::min(segment.ramp_min, segment.duration_min);
+    before_s = outlook->ahead.segment_ends_s[i];
+  }
   outlook->now = solver::read_moment(items, limits);
   outlook->offset_k = base.furnace.offset_k;
   outlook->offset_carbon_potential_wt_pct = base.furnace.offset_carbon_potential_wt_pct;

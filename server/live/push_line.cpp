@@ -105,7 +105,7 @@ bool follow_line(LoadDefinition& load, storage::Reader& reader, std::int64_t unt
     if (zone == load.last_place().chamber) continue;
     moved = true;
     if (!zone) {
-      load.ended_us = push.at_us;
+      load.end_at(push.at_us);
       break;
     }
     load.path.push_back({push.at_us, line->id, *zone});
@@ -162,7 +162,7 @@ std::vector<MovedLoad> push_once(const Furnace& line, storage::Store& store, sto
     if (zone)
       load.path.push_back({push.at_us, line.id, *zone});
     else
-      load.ended_us = push.at_us;
+      load.end_at(push.at_us);
     changes.push_back({on.revision, row_of(load), stays_of(load)});
     changes.back().row.id = on.load;
     audits.push_back({now_us, push.person, zone ? "push to " + *zone : "push off the line", "", "",

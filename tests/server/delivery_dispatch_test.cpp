@@ -327,3 +327,15 @@ TEST_CASE("messages to a target that the settings no longer name are given up at
   CHECK(shop.messages(1).at(0).last_error == "the settings no longer have a target of this name");
   CHECK(shop.within(10, [&] { return shop.messages(1).at(1).state == DeliveryState::delivered; }));
 }
+
+TEST_CASE("also what got stuck on the way to a target that is gone: it would be told of for ever") {
+  Shop shop;
+  shop.raise({"gone"});
+  const std::int64_t stuck = shop.messages(1).at(0).id;
+  shop.store.note_delivery({stuck, DeliveryState::stuck, 9, shop.clock.now_us(), {}, "refused"});
+  const std::vector<DeliveryTarget> targets;
+  Dispatcher dispatcher(targets, shop.store, shop.clock, [] {});
+  dispatcher.start();
+  CHECK(shop.messages(1).at(0).state == DeliveryState::dropped);
+  CHECK(storage::Reader(shop.store.path()).targets().at(0).stuck == 0);
+}

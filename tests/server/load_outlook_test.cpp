@@ -102,6 +102,28 @@ TEST_CASE("outlook: what is left of the recipe begins with the rest of the prese
 }
 
 TEST_CASE(
+    "outlook: a segment that waits for a depth beyond its estimate is not over, and shows how long it "
+    "waits") {
+  LoadDefinition waits = *definition();
+  Segment& boost = waits.recipe.segments[0];
+  boost.until = Until{Until::Kind::case_depth, "A", 0.8};
+  boost.longest_min = 600;
+  const auto def = std::make_shared<const LoadDefinition>(waits);
+  // At 930 degC and 1.1 % C a depth of 0.8 mm takes about five hours; the estimate was two.
+  const auto live = running(def, 140, [](int) { return SetPoints{930, 1.1}; });
+  REQUIRE(live->recipe_place().now().index == 0);
+  const OutlookStart start = outlook_start(*live, def);
+  REQUIRE(start.base);
+  REQUIRE(start.base->rest.size() == 2);
+  const auto outlook = make_outlook(*start.base, start.base->rest, {});
+  CHECK(outlook->ends_us > def->started_us + (140 + 60 + 20) * minute);
+  // What is shown is fixed times along which the load ends the same, so that a trial can begin from them.
+  double shown_min = 0;
+  for (const Segment& segment : outlook->rest) shown_min += segment.duration_min;
+  CHECK(shown_min == doctest::Approx(static_cast<double>(outlook->ends_us - outlook->at_us) / minute));
+}
+
+TEST_CASE(
     "outlook: there is none of an ended load, none outside a furnace, none before the members have "
     "followed") {
   const auto def = definition();

@@ -65,6 +65,13 @@ test('the body of a trial has no empty segment and no member of our own', () => 
   assert.ok(!complete({ ...draft, segments: [{ ...draft.segments[1]!, duration_min: NaN }] }));
 });
 
+test('what is nearly over when a trial is sent is never refused for it', () => {
+  const one = { name: 'diffuse', temperature_degc: 930, carbon_potential_wt_pct: 0.8 };
+  // The daemon takes segments from half a minute on, and ramps no longer than their segment.
+  assert.deepEqual(bodyOf(draftOf([{ ...one, duration_min: 0.3, ramp_min: 0 }, { ...one, duration_min: 12.3449, ramp_min: 12.3449 }], 0)), [{ ...one, duration_min: 12.34, ramp_min: 12.34 }]);
+  assert.deepEqual(bodyOf(draftOf([{ ...one, duration_min: 0 }], 0)), [{ ...one, duration_min: 0.5 }]);
+});
+
 test('a change of a segment in words', () => {
   assert.equal(segmentChanges({ ...rest[1]!, duration_min: 115, carbon_potential_wt_pct: 0.85 }, rest[1], 'degc'), '25 min longer, 0.05 % C more');
   assert.equal(segmentChanges({ ...rest[1]!, temperature_degc: 920 }, rest[1], 'degf'), '18 °F cooler');

@@ -24,11 +24,16 @@ export function movedTo(draft: DraftRest, atMs: number): DraftRest {
 
 export const totalMinutes = (segments: readonly RestSegment[]): number => segments.reduce((sum, each) => sum + each.duration_min, 0);
 
-// As the contract takes it. A segment without time is left out, unless it is the only one.
+// As the contract takes it: nothing shorter than half a minute, no ramp longer than its segment. A segment without time
+// is left out, unless it is the only one.
+const shortestMin = 0.5;
 export function bodyOf(draft: DraftRest): RestSegment[] {
-  const plain = draft.segments.map(({ from: _, ...each }) => ({ ...each, duration_min: Number(each.duration_min.toFixed(2)) }));
-  const lasting = plain.filter((each) => each.duration_min > 0);
-  return lasting.length > 0 ? lasting : plain.slice(-1);
+  const plain = draft.segments.map(({ from: _, ...each }) => {
+    const duration_min = Number(each.duration_min.toFixed(2));
+    return { ...each, duration_min, ...(each.ramp_min === undefined ? {} : { ramp_min: Math.min(each.ramp_min, duration_min) }) };
+  });
+  const lasting = plain.filter((each) => each.duration_min >= shortestMin);
+  return lasting.length > 0 ? lasting : plain.slice(-1).map((each) => ({ ...each, duration_min: shortestMin }));
 }
 
 export const complete = (draft: DraftRest): boolean => draft.segments.length > 0
