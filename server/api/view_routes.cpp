@@ -43,11 +43,12 @@ std::shared_ptr<LoadView> Api::derive_view(const FoundLoad& found, storage::Read
     return parts_.acceptor.channel_id(furnace, channel).value_or(-1);
   });
   const std::int64_t now = parts_.clock.now_us();
-  const auto load = derive(found.definition, source, found.row.ended_us.value_or(now));
+  // An open one is soon on the board with all its bands; here nobody waits for them, or for an outlook.
+  const auto load = derive(found.definition, source, found.row.ended_us.value_or(now),
+                           found.row.ended_us ? Members::with : Members::without);
   auto view =
       std::make_shared<LoadView>(make_view(*load, found.definition, now, parts_.settings.live.stale_after_s));
-  add_outlook(*view, *load, offered_joint_chance(*found.definition, *load->members()->members()),
-              {parts_.settings.outlook.inside_from, parts_.settings.outlook.missed_from});
+  view->outlook_missing = outlook_start(*load, found.definition).missing;
   view->row = found.row;
   if (!found.row.ended_us) view->line_position = line_position(*found.definition, reader, now);
   view->sequence = parts_.board.sequence();

@@ -28,11 +28,11 @@ void read_all(LiveLoad& load, const ReadingSource& source) {
 }
 
 std::unique_ptr<LiveLoad> derive(std::shared_ptr<const LoadDefinition> definition,
-                                 const ReadingSource& source, std::int64_t now_us) {
+                                 const ReadingSource& source, std::int64_t now_us, Members members) {
   auto load = std::make_unique<LiveLoad>(std::move(definition));
   read_all(*load, source);
   load->advance_to(now_us);
-  load->bring_members_up();
+  if (members == Members::with) load->bring_members_up();
   return load;
 }
 

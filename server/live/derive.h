@@ -36,7 +36,10 @@ void read_all(LiveLoad& load, const ReadingSource& source);
 // What is known now of one channel in [from, to], marks in the whole of reading_span.
 void read_again(LiveLoad& load, const ReadingSource& source, std::size_t used, std::int64_t from_us,
                 std::int64_t to_us);
+// Without members there are no bands: for a look that may not take long.
+enum class Members { with, without };
 std::unique_ptr<LiveLoad> derive(std::shared_ptr<const LoadDefinition> definition,
-                                 const ReadingSource& source, std::int64_t now_us);
+                                 const ReadingSource& source, std::int64_t now_us,
+                                 Members members = Members::with);
 
 }  // namespace hearthfront::server
