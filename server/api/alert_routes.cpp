@@ -131,7 +131,9 @@ Response Api::list_alerts(const Request& request) {
   std::optional<std::int64_t> next;
   if (filter.past == false) {
     // All at once, in the order of need: they are as few as the conditions there can be.
-    for (const storage::AlertRow& row : parts_.alerts.list()->active)
+    // Held here: the keeper may publish another list meanwhile.
+    const auto list = parts_.alerts.list();
+    for (const storage::AlertRow& row : list->active)
       if ((filter.furnace.empty() || row.furnace == filter.furnace) &&
           (filter.load == 0 || row.load == filter.load))
         rows.push_back(row);

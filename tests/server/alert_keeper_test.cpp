@@ -139,7 +139,8 @@ TEST_CASE(
   // The clear hold of silence is a minute of this clock; its steps are an alert of their own.
   CHECK(within_seconds(10, [&] {
     daemon.clock.now += minute_us / 60;
-    for (const storage::AlertRow& row : daemon.keeper->list()->active)
+    const auto list = daemon.keeper->list();
+    for (const storage::AlertRow& row : list->active)
       if (row.id == raised.id) return false;
     return true;
   }));
