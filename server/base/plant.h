@@ -75,8 +75,8 @@ struct Furnace {
                                            CarbonSource::dew_point};
   double source_tolerance_wt_pct = 0.08;  // sources further apart than this disagree
   // How well it is known, for the band: solver/outlook/draws.h says where the defaults are from.
-  double thermocouple_tolerance_k = 3.7;  // by the couple's class at working temperature, +/-
-  double uniformity_k = 6;                // by the last survey, +/-
+  double thermocouple_tolerance_k = 3.7;      // by the couple's class at working temperature, +/-
+  double uniformity_k = 6;                    // by the last survey, +/-
   double carbon_potential_sd_wt_pct = 0.025;  // of a logged carbon potential, one sigma
   // What a proposal may ask of it.
   double highest_temperature_degc = 950;

@@ -79,8 +79,8 @@ int serve(const Settings& settings, const Plant& plant) {
   Api api({settings, plant, *clock, store, board, acceptor, metrics, http, dispatcher, state,
            [&running] {
              if (running) running->loads_changed();
-            },
-            alerts});
+           },
+           alerts});
   Engine engine({plant,
                  *clock,
                  store,

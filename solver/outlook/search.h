@@ -28,8 +28,8 @@ struct SearchLimits {
   bool nearby = false;  // the plan given is nearly the one: look around it only
 };
 
-// The highest carbon potential that a segment may have at a furnace temperature: furnace, soot (activity 0.95, common practice) and
-// carbide (98 % of what the items' steels hold); and which of them it is.
+// The highest carbon potential that a segment may have at a furnace temperature: furnace, soot (activity
+// 0.95, common practice) and carbide (98 % of what the items' steels hold); and which of them it is.
 enum class Ceiling { furnace, soot, carbide };
 struct PotentialCeiling {
   double carbon_potential_wt_pct = 0;

@@ -47,8 +47,9 @@ void every_plan(const SituationLoad& load, const Situation& situation, double to
     if (!takes_rest && situation.freedom[i].duration)
       durations = spread(situation.freedom[i].shortest_s, left_s, 12);
     if (situation.freedom[i].carbon_potential) {
-      const auto ceiling =
-          solver::potential_ceiling(load.items(), plan[i].temperature_degc, situation.limits);
+      // The same controls: a furnace that runs below its set point is held to what it really holds.
+      const double shown_degc = plan[i].temperature_degc + std::min(0.0, load.furnace().offset_k);
+      const auto ceiling = solver::potential_ceiling(load.items(), shown_degc, situation.limits);
       potentials = spread(0.7, ceiling.carbon_potential_wt_pct, 5);
     }
     for (const double duration : durations)

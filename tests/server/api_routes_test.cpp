@@ -58,7 +58,8 @@ TEST_CASE("the API description and the routes are the same list") {
     const std::atomic<ServiceState> state{ServiceState::ready};
     Dispatcher dispatcher(settings.targets, store, clock, [] {});
     AlertKeeper alerts({settings, plant, clock, store, board, {}, {}, [] { return false; }, {}});
-    Api api({settings, plant, clock, store, board, acceptor, metrics, http, dispatcher, state, [] {}, alerts});
+    Api api(
+        {settings, plant, clock, store, board, acceptor, metrics, http, dispatcher, state, [] {}, alerts});
     api.add_routes();
 
     Routes served;
