@@ -58,8 +58,8 @@ await check('a reader that ends its side is let go at once (RFC 9112 9.6)', asyn
   reader.destroy();
 });
 
-await check('what a reader sends after its request is neither read nor answered, and costs no memory (+16 MB at most)', () =>
-  memoryBounded(daemon, 16, async () => {
+await check('what a reader sends after its request is neither read nor answered, and costs no memory (+8 MB at most)', () =>
+  memoryBounded(daemon, 8, async () => {
     const [reader] = streams(1);
     await streamsBecome(1);
     const took = await reader.pour(Buffer.from(get('/api/v1/status').repeat(800)), 20 * MB);
