@@ -58,8 +58,10 @@ await check('a reader that ends its side is let go at once (RFC 9112 9.6)', asyn
   reader.destroy();
 });
 
-await check('what a reader sends after its request is neither read nor answered, and costs no memory (+8 MB at most)', () =>
-  memoryBounded(daemon, 8, async () => {
+// The daemon's own threads (alerts, delivery) touch memory for the first time meanwhile: up to 9.5 MB were seen. What is
+// poured is 20 MB, so that a daemon which kept it would be found out.
+await check('what a reader sends after its request is neither read nor answered, and is not kept (+14 MB at most)', () =>
+  memoryBounded(daemon, 14, async () => {
     const [reader] = streams(1);
     await streamsBecome(1);
     const took = await reader.pour(Buffer.from(get('/api/v1/status').repeat(800)), 20 * MB);
