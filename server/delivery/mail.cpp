@@ -25,16 +25,12 @@ class MailSender final : public Sender {
   MailSender(const MailTarget& target, int timeout_s) : target_(target), timeout_s_(timeout_s) {}
 
   std::string fault() const override {
-    std::string fault = target_.user.empty() ? "" : read_secret(target_.password_file, 1).fault;
-    return fault.empty() ? unreadable(target_.ca_file) : fault;
+    return read_login(target_.user, target_.password_file, target_.ca_file).fault;
   }
 
   SendResult send(const Message& message, const std::stop_token& stop) override {
-    Secret password;
-    if (!target_.user.empty()) password = read_secret(target_.password_file, 1);
+    const Secret password = read_login(target_.user, target_.password_file, target_.ca_file);
     if (!password.fault.empty()) return {SendOutcome::refused, password.fault, 0};
-    if (std::string fault = unreadable(target_.ca_file); !fault.empty())
-      return {SendOutcome::refused, std::move(fault), 0};
 
     const AlertMail alert = alert_mail(message.payload_json);
     Mail mail{

@@ -133,16 +133,12 @@ class MqttSender final : public Sender {
   }
 
   std::string fault() const override {
-    std::string fault = target_.user.empty() ? "" : read_secret(target_.password_file, 1).fault;
-    return fault.empty() ? unreadable(target_.ca_file) : fault;
+    return read_login(target_.user, target_.password_file, target_.ca_file).fault;
   }
 
   SendResult send(const Message& message, const std::stop_token& stop) override {
-    Secret password;
-    if (!target_.user.empty()) password = read_secret(target_.password_file, 1);
+    const Secret password = read_login(target_.user, target_.password_file, target_.ca_file);
     if (!password.fault.empty()) return {SendOutcome::refused, password.fault, 0};
-    if (std::string fault = unreadable(target_.ca_file); !fault.empty())
-      return {SendOutcome::refused, std::move(fault), 0};
 
     const Instant until = std::chrono::steady_clock::now() + std::chrono::seconds(timeout_s_);
     const std::string fault = unresolvable(target_.host, until, stop);

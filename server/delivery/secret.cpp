@@ -50,4 +50,11 @@ std::string unreadable(const std::string& path) {
   return because(path, errno);
 }
 
+Secret read_login(const std::string& user, const std::string& password_file, const std::string& ca_file) {
+  Secret password;
+  if (!user.empty()) password = read_secret(password_file, 1);
+  if (password.fault.empty()) password.fault = unreadable(ca_file);
+  return password;
+}
+
 }  // namespace hearthfront::server

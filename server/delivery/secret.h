@@ -18,4 +18,8 @@ Secret read_secret(const std::string& path, std::size_t least_bytes);
 // Why a file that is only named to a library cannot be read; empty: it can, or `path` is empty.
 std::string unreadable(const std::string& path);
 
+// What a server that is logged in to needs: the password (empty without a user), and an authority's
+// certificate that can be read. The fault is that of either.
+Secret read_login(const std::string& user, const std::string& password_file, const std::string& ca_file);
+
 }  // namespace hearthfront::server

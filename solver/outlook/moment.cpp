@@ -4,7 +4,6 @@
 
 #include "solver/outlook/members.h"
 #include "solver/outlook/outlook.h"
-#include "solver/section/cubic.h"
 
 namespace hearthfront::solver {
 namespace {
